@@ -1,0 +1,123 @@
+import type { Writable } from 'node:stream';
+import { CAUTION } from '../caution.js';
+import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
+import { compareDesignators } from './rank-conjunctions.js';
+
+/** One object of a pair that flies together. */
+export type CompanionObject = {
+  readonly designator: string;
+  readonly name: string;
+};
+
+/**
+ * Two objects that stay within the screening distance of each other over the whole window, docked ones
+ * for instance: told once instead of as an endless encounter.
+ */
+export type CompanionPair = {
+  readonly object1: CompanionObject;
+  readonly object2: CompanionObject;
+  /** When they are closest, milliseconds of UTC since 1970-01-01. */
+  readonly closestMs: number;
+  readonly closestDistanceM: number;
+  readonly farthestDistanceM: number;
+  readonly fastestMPerS: number;
+  readonly slowestMPerS: number;
+  /** Short codes, as those of a conjunction. */
+  readonly remarks: readonly string[];
+};
+
+const CAUTION_CELL = textCell(CAUTION);
+
+/** The columns of `companions.csv`. */
+export const COMPANION_COLUMNS: readonly CsvColumn<CompanionPair>[] = [
+  {
+    name: 'object1_designator',
+    unit: '',
+    meaning: 'Catalog number of object 1, in decimal',
+    cell: (row) => textCell(row.object1.designator),
+  },
+  {
+    name: 'object1_name',
+    unit: '',
+    meaning: 'Name of object 1, empty if the elements give none',
+    cell: (row) => textCell(row.object1.name),
+  },
+  {
+    name: 'object2_designator',
+    unit: '',
+    meaning: 'Catalog number of object 2, in decimal',
+    cell: (row) => textCell(row.object2.designator),
+  },
+  {
+    name: 'object2_name',
+    unit: '',
+    meaning: 'Name of object 2, empty if the elements give none',
+    cell: (row) => textCell(row.object2.name),
+  },
+  {
+    name: 'closest_utc',
+    unit: 'UTC',
+    meaning: 'When the two are closest in the window, ISO 8601 to the millisecond',
+    cell: (row) => utcCell(row.closestMs),
+  },
+  {
+    name: 'closest_distance_m',
+    unit: 'm',
+    meaning: 'Their smallest distance in the window, 3 decimals',
+    cell: (row) => fixedCell(row.closestDistanceM, 3),
+  },
+  {
+    name: 'farthest_distance_m',
+    unit: 'm',
+    meaning: 'Their greatest distance in the window, 3 decimals',
+    cell: (row) => fixedCell(row.farthestDistanceM, 3),
+  },
+  {
+    name: 'slowest_relative_speed_m_s',
+    unit: 'm/s',
+    meaning: 'Their smallest relative speed in the window, 4 decimals',
+    cell: (row) => fixedCell(row.slowestMPerS, 4),
+  },
+  {
+    name: 'fastest_relative_speed_m_s',
+    unit: 'm/s',
+    meaning: 'Their greatest relative speed in the window, 4 decimals',
+    cell: (row) => fixedCell(row.fastestMPerS, 4),
+  },
+  {
+    name: 'remarks',
+    unit: '',
+    meaning:
+      'Codes of what makes the figures less trustworthy, one blank between them; empty if there is none',
+    cell: (row) => textCell(row.remarks.join(' ')),
+  },
+  {
+    name: 'caution',
+    unit: '',
+    meaning: 'What the figures are, and where to decide',
+    cell: () => CAUTION_CELL,
+  },
+];
+
+/** Closest pair first, then by designators; the given array stays as it is. */
+export function sortCompanions(pairs: readonly CompanionPair[]): CompanionPair[] {
+  return pairs.toSorted(
+    (a, b) =>
+      a.closestDistanceM - b.closestDistanceM ||
+      compareDesignators(a.object1.designator, b.object1.designator) ||
+      compareDesignators(a.object2.designator, b.object2.designator),
+  );
+}
+
+/**
+ * Writes `companions.csv` to `output` and ends it, the pairs in the order given.
+ *
+ * @returns the number of pairs written
+ * @throws what `output` throws
+ */
+export async function writeCompanionsCsv(
+  output: Writable,
+  pairs: Iterable<CompanionPair> | AsyncIterable<CompanionPair>,
+): Promise<number> {
+  return writeCsv(output, COMPANION_COLUMNS, pairs);
+}

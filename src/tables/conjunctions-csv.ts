@@ -1,0 +1,258 @@
+import type { Writable } from 'node:stream';
+import { CAUTION } from '../caution.js';
+import type { Conjunction } from './conjunction.js';
+import {
+  type CsvColumn,
+  csvHeader,
+  csvRow,
+  exponentCell,
+  fixedCell,
+  textCell,
+  utcCell,
+  writeCsv,
+} from './csv-text.js';
+
+const CAUTION_CELL = textCell(CAUTION);
+
+/**
+ * The columns of `conjunctions.csv`. The order is fixed: loaders go by position, so new columns only ever
+ * follow the last one.
+ */
+export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
+  {
+    name: 'rank',
+    unit: '',
+    meaning:
+      'Place in the order of the file, from 1: collision probability from high to low, then miss distance, ' +
+      'time of closest approach and designators from low to high; rows without a probability come last',
+    cell: (_row, number) => String(number),
+  },
+  {
+    name: 'tca_utc',
+    unit: 'UTC',
+    meaning: 'Time of closest approach, ISO 8601 to the millisecond',
+    cell: (row) => utcCell(row.tcaMs),
+  },
+  {
+    name: 'object1_designator',
+    unit: '',
+    meaning: 'Catalog number of object 1, in decimal',
+    cell: (row) => textCell(row.object1.designator),
+  },
+  {
+    name: 'object1_name',
+    unit: '',
+    meaning: 'Name of object 1, empty if the elements give none',
+    cell: (row) => textCell(row.object1.name),
+  },
+  {
+    name: 'object2_designator',
+    unit: '',
+    meaning: 'Catalog number of object 2, in decimal',
+    cell: (row) => textCell(row.object2.designator),
+  },
+  {
+    name: 'object2_name',
+    unit: '',
+    meaning: 'Name of object 2, empty if the elements give none',
+    cell: (row) => textCell(row.object2.name),
+  },
+  {
+    name: 'miss_distance_m',
+    unit: 'm',
+    meaning: 'Distance between the two objects at closest approach, 3 decimals',
+    cell: (row) => fixedCell(row.missDistanceM, 3),
+  },
+  {
+    name: 'relative_speed_m_s',
+    unit: 'm/s',
+    meaning: 'Magnitude of the relative velocity at closest approach, 4 decimals',
+    cell: (row) => fixedCell(row.relativeSpeedMPerS, 4),
+  },
+  {
+    name: 'relative_position_r_m',
+    unit: 'm',
+    meaning: 'Position of object 2 minus object 1, radial component in the RTN frame of object 1, 3 decimals',
+    cell: (row) => fixedCell(row.relativePositionRtnM[0], 3),
+  },
+  {
+    name: 'relative_position_t_m',
+    unit: 'm',
+    meaning: 'The same, transverse component',
+    cell: (row) => fixedCell(row.relativePositionRtnM[1], 3),
+  },
+  {
+    name: 'relative_position_n_m',
+    unit: 'm',
+    meaning: 'The same, normal component',
+    cell: (row) => fixedCell(row.relativePositionRtnM[2], 3),
+  },
+  {
+    name: 'relative_velocity_r_m_s',
+    unit: 'm/s',
+    meaning:
+      'Inertial velocity of object 2 minus object 1, radial component in the RTN frame of object 1, 4 decimals',
+    cell: (row) => fixedCell(row.relativeVelocityRtnMPerS[0], 4),
+  },
+  {
+    name: 'relative_velocity_t_m_s',
+    unit: 'm/s',
+    meaning: 'The same, transverse component',
+    cell: (row) => fixedCell(row.relativeVelocityRtnMPerS[1], 4),
+  },
+  {
+    name: 'relative_velocity_n_m_s',
+    unit: 'm/s',
+    meaning: 'The same, normal component',
+    cell: (row) => fixedCell(row.relativeVelocityRtnMPerS[2], 4),
+  },
+  {
+    name: 'collision_probability',
+    unit: '0 to 1',
+    meaning:
+      'Probability of collision in this encounter by the method named beside it, six significant digits; ' +
+      'empty where no figure can be given',
+    cell: (row) => exponentCell(row.collisionProbability),
+  },
+  {
+    name: 'collision_probability_method',
+    unit: '',
+    meaning: 'Method of collision_probability, in the words of CCSDS 508.0-B-1 where it has one',
+    cell: (row) => textCell(row.collisionProbabilityMethod),
+  },
+  {
+    name: 'collision_probability_max',
+    unit: '0 to 1',
+    meaning:
+      'The highest probability that any common scaling of the two covariances gives at this miss distance, ' +
+      'six significant digits',
+    cell: (row) => exponentCell(row.collisionProbabilityMax),
+  },
+  {
+    name: 'mahalanobis_distance',
+    unit: '',
+    meaning: 'Miss distance in sigmas of the combined covariance in the encounter plane, 4 decimals',
+    cell: (row) => fixedCell(row.mahalanobisDistance, 4),
+  },
+  {
+    name: 'hard_body_radius_m',
+    unit: 'm',
+    meaning: 'Sum of the radii of the two objects, 3 decimals',
+    cell: (row) => fixedCell(row.hardBodyRadiusM, 3),
+  },
+  {
+    name: 'object1_sigma_r_m',
+    unit: 'm',
+    meaning:
+      'One-sigma position uncertainty of object 1 at closest approach, radial in its own RTN frame, 3 decimals',
+    cell: (row) => fixedCell(row.object1.sigmaRtnM[0], 3),
+  },
+  {
+    name: 'object1_sigma_t_m',
+    unit: 'm',
+    meaning: 'The same, transverse',
+    cell: (row) => fixedCell(row.object1.sigmaRtnM[1], 3),
+  },
+  {
+    name: 'object1_sigma_n_m',
+    unit: 'm',
+    meaning: 'The same, normal',
+    cell: (row) => fixedCell(row.object1.sigmaRtnM[2], 3),
+  },
+  {
+    name: 'object2_sigma_r_m',
+    unit: 'm',
+    meaning:
+      'One-sigma position uncertainty of object 2 at closest approach, radial in its own RTN frame, 3 decimals',
+    cell: (row) => fixedCell(row.object2.sigmaRtnM[0], 3),
+  },
+  {
+    name: 'object2_sigma_t_m',
+    unit: 'm',
+    meaning: 'The same, transverse',
+    cell: (row) => fixedCell(row.object2.sigmaRtnM[1], 3),
+  },
+  {
+    name: 'object2_sigma_n_m',
+    unit: 'm',
+    meaning: 'The same, normal',
+    cell: (row) => fixedCell(row.object2.sigmaRtnM[2], 3),
+  },
+  {
+    name: 'object1_element_age_d',
+    unit: 'd',
+    meaning:
+      'Age of the elements of object 1 at closest approach, negative when their epoch lies after it, 4 decimals',
+    cell: (row) => fixedCell(row.object1.elementAgeDays, 4),
+  },
+  {
+    name: 'object2_element_age_d',
+    unit: 'd',
+    meaning: 'The same for object 2',
+    cell: (row) => fixedCell(row.object2.elementAgeDays, 4),
+  },
+  {
+    name: 'remarks',
+    unit: '',
+    meaning:
+      'Codes of what makes the figures less trustworthy, one blank between them; empty if there is none',
+    cell: (row) => textCell(row.remarks.join(' ')),
+  },
+  {
+    name: 'caution',
+    unit: '',
+    meaning: 'What the figures are, and where to decide',
+    cell: () => CAUTION_CELL,
+  },
+  {
+    name: 'collision_probability_foster',
+    unit: '0 to 1',
+    meaning:
+      "Foster's two-dimensional probability, also where another method gives collision_probability, " +
+      'six significant digits',
+    cell: (row) => exponentCell(row.collisionProbabilityFoster),
+  },
+  {
+    name: 'pair_probability',
+    unit: '0 to 1',
+    meaning:
+      'Probability of collision over all encounters of this pair in the window, six significant digits',
+    cell: (row) => exponentCell(row.pairProbability),
+  },
+  {
+    name: 'screen_entry_utc',
+    unit: 'UTC',
+    meaning: 'When object 2 enters the screening volume around object 1; empty where no volume was asked for',
+    cell: (row) => utcCell(row.screenEntryMs),
+  },
+  {
+    name: 'screen_exit_utc',
+    unit: 'UTC',
+    meaning: 'When object 2 leaves the screening volume; empty where no volume was asked for',
+    cell: (row) => utcCell(row.screenExitMs),
+  },
+];
+
+/** The header record of `conjunctions.csv` with its CRLF. */
+export function formatConjunctionHeader(): string {
+  return csvHeader(CONJUNCTION_COLUMNS);
+}
+
+/** One record of `conjunctions.csv` with its CRLF. */
+export function formatConjunctionRow(rank: number, conjunction: Conjunction): string {
+  return csvRow(CONJUNCTION_COLUMNS, conjunction, rank);
+}
+
+/**
+ * Writes `conjunctions.csv` to `output` and ends it; the ranks count the conjunctions as they come, so
+ * they come in the order of `rankConjunctions`.
+ *
+ * @returns the number of conjunctions written
+ * @throws what `output` throws, for instance when the disk is full
+ */
+export async function writeConjunctionsCsv(
+  output: Writable,
+  conjunctions: Iterable<Conjunction> | AsyncIterable<Conjunction>,
+): Promise<number> {
+  return writeCsv(output, CONJUNCTION_COLUMNS, conjunctions);
+}

@@ -1,0 +1,121 @@
+import type { Writable } from 'node:stream';
+import { CAUTION } from '../caution.js';
+import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
+
+/** How the probability of one conjunction changes when all its sigmas are scaled by one factor. */
+export type ConjunctionSensitivity = {
+  /** Rank in `conjunctions.csv`. */
+  readonly rank: number;
+  readonly tcaMs: number;
+  readonly object1Designator: string;
+  readonly object2Designator: string;
+  /** At half, once and twice the sigmas; `undefined` where no figure can be given. */
+  readonly probabilityAtHalf: number | undefined;
+  readonly probabilityAtOnce: number | undefined;
+  readonly probabilityAtTwice: number | undefined;
+  /** Factor on the sigmas at which the probability is highest, and its value there. */
+  readonly peakScale: number | undefined;
+  readonly peakProbability: number | undefined;
+};
+
+const CAUTION_CELL = textCell(CAUTION);
+/** Within this of 1 the sigmas count as standing at the peak, where the curve is flat. */
+const PEAK_TOLERANCE = 0.05;
+
+/**
+ * Says in words what better orbits would do to the probability. Left of the peak (scale over 1) smaller
+ * sigmas lower it; right of it (scale under 1, the dilution region: Alfano, "Relating Position Uncertainty
+ * to Maximum Conjunction Probability", J. Astronautical Sciences 53(2), 2005) a low probability tells of
+ * poor orbits, not of safety.
+ *
+ * @param peakScale factor on the sigmas at which the probability is highest, `undefined` if there is none
+ */
+export function describeSensitivity(peakScale: number | undefined): string {
+  if (peakScale === undefined || Number.isNaN(peakScale)) return 'no figure';
+  if (peakScale > 1 + PEAK_TOLERANCE) return 'better orbits would lower the probability';
+  if (peakScale < 1 - PEAK_TOLERANCE) return 'diluted: better orbits may raise the probability';
+  return 'at its peak: any other sigmas would lower the probability';
+}
+
+/** The columns of `sensitivity.csv`. */
+export const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] = [
+  {
+    name: 'rank',
+    unit: '',
+    meaning: 'Rank of the conjunction in conjunctions.csv',
+    cell: (row) => String(row.rank),
+  },
+  {
+    name: 'tca_utc',
+    unit: 'UTC',
+    meaning: 'Time of closest approach, ISO 8601 to the millisecond',
+    cell: (row) => utcCell(row.tcaMs),
+  },
+  {
+    name: 'object1_designator',
+    unit: '',
+    meaning: 'Catalog number of object 1, in decimal',
+    cell: (row) => textCell(row.object1Designator),
+  },
+  {
+    name: 'object2_designator',
+    unit: '',
+    meaning: 'Catalog number of object 2, in decimal',
+    cell: (row) => textCell(row.object2Designator),
+  },
+  {
+    name: 'collision_probability_half_sigma',
+    unit: '0 to 1',
+    meaning: 'Probability with all sigmas halved, six significant digits; empty where no figure can be given',
+    cell: (row) => exponentCell(row.probabilityAtHalf),
+  },
+  {
+    name: 'collision_probability_once_sigma',
+    unit: '0 to 1',
+    meaning: 'Probability with the sigmas as they are',
+    cell: (row) => exponentCell(row.probabilityAtOnce),
+  },
+  {
+    name: 'collision_probability_twice_sigma',
+    unit: '0 to 1',
+    meaning: 'Probability with all sigmas doubled',
+    cell: (row) => exponentCell(row.probabilityAtTwice),
+  },
+  {
+    name: 'peak_sigma_scale',
+    unit: '',
+    meaning: 'Factor on all sigmas at which the probability is highest, 4 decimals',
+    cell: (row) => fixedCell(row.peakScale, 4),
+  },
+  {
+    name: 'collision_probability_peak',
+    unit: '0 to 1',
+    meaning: 'Probability at that factor, six significant digits',
+    cell: (row) => exponentCell(row.peakProbability),
+  },
+  {
+    name: 'direction',
+    unit: '',
+    meaning: 'In words: what smaller sigmas, that is better orbits, would do to the probability',
+    cell: (row) => textCell(describeSensitivity(row.peakScale)),
+  },
+  {
+    name: 'caution',
+    unit: '',
+    meaning: 'What the figures are, and where to decide',
+    cell: () => CAUTION_CELL,
+  },
+];
+
+/**
+ * Writes `sensitivity.csv` to `output` and ends it, the rows in the order given.
+ *
+ * @returns the number of rows written
+ * @throws what `output` throws
+ */
+export async function writeSensitivityCsv(
+  output: Writable,
+  rows: Iterable<ConjunctionSensitivity> | AsyncIterable<ConjunctionSensitivity>,
+): Promise<number> {
+  return writeCsv(output, SENSITIVITY_COLUMNS, rows);
+}
