@@ -1,0 +1,57 @@
+import type { Vector3 } from '../vector.js';
+import type { Log } from './log.js';
+
+/** What counts as close: a sphere of a miss distance, or a volume in RTN of the first object (CCSDS 508 terms). */
+export type ScreeningVolume =
+  | { readonly shape: 'SPHERE'; readonly missKm: number }
+  | { readonly shape: 'BOX' | 'ELLIPSOID'; readonly halfSizeRtnKm: Vector3 };
+
+/** Everything a screening depends on; checked and complete, paths as the process can open them (`-`: standard input). */
+export type ScreenOptions = {
+  /** Element-set files of the fleet; empty exactly when `allOnAll`. */
+  readonly fleetPaths: readonly string[];
+  /** Element-set files of everything else; may be empty with `withinFleet`. */
+  readonly catalogPaths: readonly string[];
+  /** Every object of the catalog against every other. */
+  readonly allOnAll: boolean;
+  /** Also the members of the fleet against each other. */
+  readonly withinFleet: boolean;
+  /** Start of the window, milliseconds of UTC since 1970-01-01. */
+  readonly startMs: number;
+  readonly days: number;
+  readonly volume: ScreeningVolume;
+  readonly objectsPath: string | undefined;
+  readonly sigmaPath: string | undefined;
+  /** Element sets older than this at the start of the window are not trusted. */
+  readonly maxAgeDays: number;
+  readonly workers: number;
+  readonly outPath: string;
+  readonly historyPath: string | undefined;
+  /** Past runs to keep in the history; `undefined` deletes nothing. */
+  readonly keepRuns: number | undefined;
+  /** An encounter of this collision probability or more makes the command end with status 3. */
+  readonly alertPc: number | undefined;
+  /** Encounters of this collision probability or more get a conjunction message. */
+  readonly cdmFromPc: number | undefined;
+  /** Rows of the ranked table on standard output. */
+  readonly top: number;
+};
+
+/** The outside world of a job, so that tests can put their own in its place. */
+export type JobPorts = {
+  readonly log: Log;
+  /** Tells how far the job is, `fraction` from 0 to 1 within the named stage. */
+  readonly progress: (stage: string, fraction: number) => void;
+  /** Registers what must be undone if the process is asked to stop; the returned function takes it back. */
+  readonly onStop: (undo: () => void) => () => void;
+  /** Wall clock, milliseconds since 1970-01-01; for `run.json` and the lock only, never for results. */
+  readonly nowMs: () => number;
+  readonly version: string;
+};
+
+export type ScreenOutcome = {
+  /** What goes to standard output. */
+  readonly lines: readonly string[];
+  /** At least one encounter reaches `alertPc`. */
+  readonly alertReached: boolean;
+};
