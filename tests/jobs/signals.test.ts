@@ -25,7 +25,7 @@ test.each([
     throw new Error('cannot');
   });
   forget();
-  running.emit(signal);
+  running.emit(signal, signal);
   expect(undone).toEqual(['second', 'first']);
   expect(running.exits).toEqual([status]);
   expect(messages).toEqual([`stopped by ${signal}: nothing of this run is kept`, 'while stopping: cannot']);
@@ -37,10 +37,10 @@ test('a second signal does not disturb the undoing', () => {
   const undone: string[] = [];
   onStop(() => {
     undone.push('begun');
-    running.emit('SIGINT');
+    running.emit('SIGINT', 'SIGINT');
     undone.push('done');
   });
-  running.emit('SIGTERM');
+  running.emit('SIGTERM', 'SIGTERM');
   expect(undone).toEqual(['begun', 'done']);
   expect(running.exits).toEqual([143]);
 });
