@@ -1,5 +1,6 @@
 import { chmodSync, mkdirSync, readdirSync, realpathSync, renameSync, rmSync, statSync } from 'node:fs';
 import { basename, dirname, join, resolve } from 'node:path';
+import { Writable } from 'node:stream';
 import { InputError } from '../input-error.js';
 import { onFiles } from './file-errors.js';
 import { nativeFileSystem } from './native-file-system.js';
@@ -9,11 +10,12 @@ import {
   foreignEntries,
   freeName,
   moveForeignEntries,
+  type OpenRunFile,
+  openRunFile,
   RUN_RECORD,
   type RunFile,
   syncFolder,
   syncFolders,
-  writeRunFile,
 } from './run-folder.js';
 import { type RunLock, takeLock } from './run-lock.js';
 import type { JobPorts } from './screen-options.js';
@@ -23,6 +25,8 @@ export type OutputFolder = {
   readonly staging: string;
   /** Writes one file of the run; `name` may lie in a subfolder (`cdm/0001.kvn`). */
   readonly write: (name: string, content: string | Iterable<string>) => void;
+  /** The same for what comes bit by bit: the file counts when the stream has finished. */
+  readonly stream: (name: string) => Writable;
   /** Writes `run.json` last, from the list of all other files; after it nothing can be written. */
   readonly seal: (record: (files: readonly RunFile[]) => string) => void;
   /** Puts the run in the place of the one before, as a whole. */
@@ -79,21 +83,45 @@ export async function openOutputFolder(out: string, ports: JobPorts): Promise<Ou
 
 function openFolder(places: Places, lock: RunLock, ports: JobPorts): OutputFolder {
   const files: RunFile[] = [];
+  const unfinished = new Map<string, OpenRunFile>();
   let sealed = false;
   const close = (): void => {
     forget();
+    for (const file of unfinished.values()) file.abandon();
     rmSync(places.staging, { recursive: true, force: true });
     lock.release();
   };
   const forget = ports.onStop(close);
-  const write = (name: string, content: string | Iterable<string>): void => {
+  const open = (name: string): OpenRunFile => {
     if (sealed) throw new Error(`${name} comes after ${RUN_RECORD}`);
-    files.push(onFiles(join(places.named, name), () => writeRunFile(places.staging, name, content)));
+    const file = openRunFile(places.staging, name);
+    unfinished.set(name, file);
+    return file;
   };
+  const finish = (name: string, file: OpenRunFile): void => {
+    files.push(file.finish());
+    unfinished.delete(name);
+  };
+  const write = (name: string, content: string | Iterable<string>): void =>
+    onFiles(join(places.named, name), () => {
+      const file = open(name);
+      for (const chunk of typeof content === 'string' ? [content] : content) file.append(chunk);
+      finish(name, file);
+    });
   return {
     staging: places.staging,
     write,
+    stream: (name) => {
+      const onFile = <T>(work: () => T): T => onFiles(join(places.named, name), work);
+      const file = onFile(() => open(name));
+      return sinkOf(
+        (chunk) => onFile(() => file.append(chunk)),
+        () => onFile(() => finish(name, file)),
+      );
+    },
     seal: (record) => {
+      if (unfinished.size > 0) throw new Error(`${[...unfinished.keys()]} not finished before ${RUN_RECORD}`);
+      files.sort((a, b) => (a.name < b.name ? -1 : 1));
       write(RUN_RECORD, record([...files]));
       sealed = true;
       onFiles(places.named, () => syncFolders(places.staging));
@@ -109,6 +137,21 @@ function openFolder(places: Places, lock: RunLock, ports: JobPorts): OutputFolde
     },
     close,
   };
+}
+
+function sinkOf(append: (chunk: Uint8Array) => void, finish: () => void): Writable {
+  const attempt = (work: () => void, done: (error?: Error) => void): void => {
+    try {
+      work();
+      done();
+    } catch (error) {
+      done(error as Error);
+    }
+  };
+  return new Writable({
+    write: (chunk: Uint8Array, _encoding, done) => attempt(() => append(chunk), done),
+    final: (done) => attempt(finish, done),
+  });
 }
 
 function placesOf(out: string): Places {

@@ -23,25 +23,44 @@ export type RunFile = {
   readonly sha256: string;
 };
 
-/** Writes one new file, to the disk and not only to the cache, and tells its size and hash. */
-export function writeRunFile(folder: string, name: string, content: string | Iterable<string>): RunFile {
+export type OpenRunFile = {
+  readonly append: (chunk: string | Uint8Array) => void;
+  /** Brings the file to the disk, not only to the cache, and tells its size and hash. */
+  readonly finish: () => RunFile;
+  /** Closes it as it stands; after `finish` or a second time it does nothing. */
+  readonly abandon: () => void;
+};
+
+/**
+ * Opens one new file of a run. All its work is synchronous, so that nothing is under way in the background
+ * when a signal has everything removed.
+ */
+export function openRunFile(folder: string, name: string): OpenRunFile {
   const path = join(folder, name);
   mkdirSync(dirname(path), { recursive: true });
   const hash = createHash('sha256');
   let bytes = 0;
   const fd = openSync(path, 'wx', 0o666);
-  try {
-    for (const text of typeof content === 'string' ? [content] : content) {
-      const chunk = Buffer.from(text, 'utf8');
-      hash.update(chunk);
-      for (let written = 0; written < chunk.length; ) written += writeSync(fd, chunk, written);
-      bytes += chunk.length;
-    }
-    fsyncSync(fd);
-  } finally {
+  let open = true;
+  const abandon = (): void => {
+    if (!open) return;
+    open = false;
     closeSync(fd);
-  }
-  return { name, bytes, sha256: hash.digest('hex') };
+  };
+  return {
+    append: (text) => {
+      const chunk = typeof text === 'string' ? Buffer.from(text, 'utf8') : text;
+      for (let written = 0; written < chunk.length; ) written += writeSync(fd, chunk, written);
+      hash.update(chunk);
+      bytes += chunk.length;
+    },
+    finish: () => {
+      fsyncSync(fd);
+      abandon();
+      return { name, bytes, sha256: hash.digest('hex') };
+    },
+    abandon,
+  };
 }
 
 /** Makes sure that the entries of a folder, new names among them, are on the disk. */

@@ -102,6 +102,32 @@ describe('publishing', () => {
     expect(readdirSync(folder)).toEqual(['tonight', 'tonight.unpublished']);
   });
 
+  test('takes files as streams too, and lists them only when they are whole', async () => {
+    const output = await openOutputFolder(out, silentPorts());
+    const stream = output.stream('conjunctions.csv');
+    stream.write('one\n');
+    expect(() => output.seal(() => '')).toThrow('conjunctions.csv not finished before run.json');
+    await new Promise<void>((resolve) => stream.end('two\n', resolve));
+    output.write('a.csv', 'ä');
+    let listed: unknown;
+    output.seal((files) => {
+      listed = files;
+      return JSON.stringify({ program: 'wideberth', files });
+    });
+    output.publish();
+    output.close();
+    expect(readFileSync(join(out, 'conjunctions.csv'), 'utf8')).toBe('one\ntwo\n');
+    // printf 'ä' | sha256sum; printf 'one\ntwo\n' | sha256sum
+    expect(listed).toEqual([
+      { name: 'a.csv', bytes: 2, sha256: '33e6d73fee82904c8d7afb78de1154d1e8dc2a0edb08120e63df5b9385c2d9cc' },
+      {
+        name: 'conjunctions.csv',
+        bytes: 8,
+        sha256: 'c3f9c8c283a2b1f2f1896f27a01cbe3cddc0c9d93f752e4639035a0f5b36f6e8',
+      },
+    ]);
+  });
+
   test('refuses a file after the record, and a run without one', async () => {
     const output = await openOutputFolder(out, silentPorts());
     expect(() => output.publish()).toThrow('nothing is published before it is sealed');
