@@ -1,7 +1,12 @@
 import { availableParallelism } from 'node:os';
 import { InputError } from '../input-error.js';
 import { screen } from '../jobs/screen.js';
-import type { JobPorts, ScreeningVolume, ScreenOptions } from '../jobs/screen-options.js';
+import {
+  type JobPorts,
+  LONGEST_WINDOW_DAYS,
+  type ScreeningVolume,
+  type ScreenOptions,
+} from '../jobs/screen-options.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
 import { MAX_HALF_SIZE_KM, type Options, optionsHelp, type Values } from './options.js';
@@ -19,7 +24,14 @@ export const SCREEN_OPTIONS = {
   'all-on-all': { kind: 'flag', help: 'no fleet: every catalog object against every other' },
   'within-fleet': { kind: 'flag', help: 'also the fleet against itself' },
   start: { kind: 'time', value: 'UTC', help: 'start of the window', defaultInWords: 'now, to the minute' },
-  days: { kind: 'number', value: 'N', default: 7, above: 0, max: 60, help: 'length of the window' },
+  days: {
+    kind: 'number',
+    value: 'N',
+    default: 7,
+    above: 0,
+    max: LONGEST_WINDOW_DAYS,
+    help: 'length of the window',
+  },
   'miss-km': {
     kind: 'number',
     value: 'KM',

@@ -76,6 +76,16 @@ export function syncFolder(folder: string): void {
   }
 }
 
+/** Brings a file that something else wrote to the disk. */
+export function syncFile(path: string): void {
+  const fd = openSync(path, 'r+');
+  try {
+    fsyncSync(fd);
+  } finally {
+    closeSync(fd);
+  }
+}
+
 /** `syncFolder` for a folder and all folders in it. */
 export function syncFolders(folder: string): void {
   for (const entry of readdirSync(folder, { withFileTypes: true })) {

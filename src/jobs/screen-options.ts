@@ -1,6 +1,9 @@
 import type { Vector3 } from '../vector.js';
 import type { Log } from './log.js';
 
+/** The longest window that can be screened, days. */
+export const LONGEST_WINDOW_DAYS = 60;
+
 /** What counts as close: a sphere of a miss distance, or a volume in RTN of the first object (CCSDS 508 terms). */
 export type ScreeningVolume =
   | { readonly shape: 'SPHERE'; readonly missKm: number }
