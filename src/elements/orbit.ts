@@ -1,0 +1,39 @@
+import type { SatRec } from 'satellite.js';
+import { type MeanElements, roundedSgp4RecordOf } from './sgp4-record.js';
+
+/** Equatorial radius of WGS-72, the Earth of SGP4; heights are above this sphere. */
+export const EARTH_RADIUS_KM = 6378.135;
+/** WGS-72, km^3/s^2. */
+const GRAVITATIONAL_PARAMETER = 398_600.8;
+const SECONDS_PER_MINUTE = 60;
+
+/** Size and shape of a mean orbit. */
+export type OrbitSummary = {
+  readonly semiMajorAxisKm: number;
+  readonly eccentricity: number;
+  /** Perigee radius less the equatorial radius of WGS-72. */
+  readonly perigeeHeightKm: number;
+  readonly apogeeHeightKm: number;
+  readonly inclinationDeg: number;
+  /** 2 pi over the Brouwer mean motion. */
+  readonly periodS: number;
+};
+
+/**
+ * The mean orbit as SGP4 sees it: from its own (Brouwer) mean motion, which differs from the published
+ * (Kozai) one by up to some 0.1 %. Osculating heights swing by some 10 km about these.
+ *
+ * @param record the SGP4 record of the set, if there is one already
+ */
+export function orbitOf(set: MeanElements, record: SatRec = roundedSgp4RecordOf(set)): OrbitSummary {
+  const meanMotionRadPerS = record.no / SECONDS_PER_MINUTE;
+  const semiMajorAxisKm = Math.cbrt(GRAVITATIONAL_PARAMETER / meanMotionRadPerS ** 2);
+  return {
+    semiMajorAxisKm,
+    eccentricity: set.eccentricity,
+    perigeeHeightKm: semiMajorAxisKm * (1 - set.eccentricity) - EARTH_RADIUS_KM,
+    apogeeHeightKm: semiMajorAxisKm * (1 + set.eccentricity) - EARTH_RADIUS_KM,
+    inclinationDeg: set.inclinationDeg,
+    periodS: (2 * Math.PI) / meanMotionRadPerS,
+  };
+}
