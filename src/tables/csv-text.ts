@@ -43,7 +43,7 @@ export function textCell(text: string): string {
 }
 
 /** A number with `decimals` digits after the point, no exponent; empty where there is no finite figure. */
-export function fixedCell(value: number | undefined, decimals: 1 | 2 | 3 | 4 | 5 | 6): string {
+export function fixedCell(value: number | undefined, decimals: 1 | 3 | 4 | 6 | 9): string {
   if (value === undefined || !Number.isFinite(value)) return '';
   const unit = 10 ** decimals;
   const digits = Math.round(Math.abs(value) * unit);

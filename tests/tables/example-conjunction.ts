@@ -1,4 +1,5 @@
 import type { Conjunction, ConjunctionObject } from '../../src/tables/conjunction.js';
+import type { MessageRun } from '../../src/tables/conjunction-message.js';
 
 const MS_PER_DAY = 86_400_000;
 /** 2026-12-02T03:14:15.926Z and a fraction, as a search for the closest approach gives it. */
@@ -57,3 +58,12 @@ export function exampleConjunction(changes: Partial<Conjunction> = {}): Conjunct
     ...changes,
   };
 }
+
+/** An invented run that the example could come from. */
+export const MESSAGE_RUN: MessageRun = {
+  originator: 'LARKSPUR OPERATIONS',
+  creationMs: Date.UTC(2026, 11, 1, 6, 7, 8, 9),
+  screenStartMs: Date.UTC(2026, 11, 1),
+  screenStopMs: Date.UTC(2026, 11, 8),
+  volume: { shape: 'BOX', halfSizeRtnKm: [0.4, 25, 25] },
+};
