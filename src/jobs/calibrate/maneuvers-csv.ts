@@ -1,0 +1,52 @@
+import { CAUTION } from '../../caution.js';
+import { type CsvColumn, fixedCell, textCell, utcCell } from '../../tables/csv-text.js';
+
+/** A change of an orbit that pairs are not formed across. */
+export type ManeuverRow = {
+  readonly designator: number;
+  readonly lastEpochBeforeMs: number;
+  readonly firstEpochAfterMs: number;
+  readonly semiMajorAxisChangeM: number;
+  readonly planeChangeM: number;
+};
+
+const CAUTION_CELL = textCell(CAUTION);
+
+export const MANEUVER_COLUMNS: readonly CsvColumn<ManeuverRow>[] = [
+  {
+    name: 'object_designator',
+    unit: '',
+    meaning: 'Catalog number',
+    cell: (row) => String(row.designator),
+  },
+  {
+    name: 'last_epoch_before_utc',
+    unit: 'UTC',
+    meaning: 'Epoch of the last set before the change',
+    cell: (row) => utcCell(row.lastEpochBeforeMs),
+  },
+  {
+    name: 'first_epoch_after_utc',
+    unit: 'UTC',
+    meaning: 'Epoch of the first set after it',
+    cell: (row) => utcCell(row.firstEpochAfterMs),
+  },
+  {
+    name: 'semi_major_axis_change_m',
+    unit: 'm',
+    meaning: 'Change of the mean semi-major axis from one to the other, drag taken off, 1 decimal',
+    cell: (row) => fixedCell(row.semiMajorAxisChangeM, 1),
+  },
+  {
+    name: 'plane_change_m',
+    unit: 'm',
+    meaning: 'Largest displacement normal to the orbit that the change of the plane makes, 1 decimal',
+    cell: (row) => fixedCell(row.planeChangeM, 1),
+  },
+  {
+    name: 'caution',
+    unit: '',
+    meaning: 'What the figures are, and where to decide',
+    cell: () => CAUTION_CELL,
+  },
+];
