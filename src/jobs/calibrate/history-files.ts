@@ -1,5 +1,5 @@
 import { stat } from 'node:fs/promises';
-import { normalize, resolve, sep } from 'node:path';
+import { isAbsolute, normalize, resolve, sep } from 'node:path';
 import { glob } from 'tinyglobby';
 import { InputError } from '../../input-error.js';
 
@@ -33,6 +33,7 @@ async function matches(pattern: string): Promise<string[]> {
   }
   if (found !== undefined) return [pattern];
   const paths = await glob(sep === '/' ? pattern : pattern.replaceAll(sep, '/'), {
+    absolute: isAbsolute(pattern),
     expandDirectories: false,
   });
   if (paths.length === 0) {
