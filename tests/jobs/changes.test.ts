@@ -111,10 +111,10 @@ describe('the same encounter', () => {
   });
 
   test('has one counterpart at most, the nearest in time first', () => {
-    const tonight = [seen({ tcaMs: TCA_MS }), seen({ tcaMs: TCA_MS + 20 * MINUTE_MS })];
+    const tonight = [seen({ tcaMs: TCA_MS }), seen({ tcaMs: TCA_MS + 10 * MINUTE_MS })];
     const before = [
-      known({ tcaMs: TCA_MS + 18 * MINUTE_MS, runsSeen: 7 }),
-      known({ tcaMs: TCA_MS - 20 * MINUTE_MS, runsSeen: 3 }),
+      known({ tcaMs: TCA_MS + 9 * MINUTE_MS, runsSeen: 7 }),
+      known({ tcaMs: TCA_MS + 24 * MINUTE_MS, runsSeen: 3 }),
     ];
     const inTwoOrders = [
       compare(tonight, [run(...before)]),
@@ -125,7 +125,7 @@ describe('the same encounter', () => {
       expect(runsSeen).toEqual(
         new Map([
           [TCA_MS, 4],
-          [TCA_MS + 20 * MINUTE_MS, 8],
+          [TCA_MS + 10 * MINUTE_MS, 8],
         ]),
       );
     }

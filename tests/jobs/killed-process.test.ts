@@ -87,23 +87,6 @@ test('killed at any moment, a process leaves a whole run, and the next one takes
   expect(inTheMiddle).toBeGreaterThan(0);
 });
 
-test('the folder is there at every moment while runs replace each other', async () => {
-  await publishHere('first');
-  const child = start(out, 'loop', 'next');
-  await ready(child);
-  const untilMs = performance.now() + 500;
-  let looks = 0;
-  while (performance.now() < untilMs) {
-    for (let i = 0; i < 500; i++, looks++) {
-      if (!existsSync(join(out, 'run.json'))) throw new Error(`nothing there at look ${looks}`);
-    }
-    await pause(0);
-  }
-  child.kill('SIGKILL');
-  await once(child, 'close');
-  expect(nightIn(out)).toMatch(/^next-/);
-});
-
 test.each([
   ['SIGINT', 130],
   ['SIGTERM', 143],
