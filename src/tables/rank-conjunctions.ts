@@ -11,7 +11,7 @@ const NUMBER = /^\d+$/;
  */
 export function compareConjunctions(a: Conjunction, b: Conjunction): number {
   return (
-    rankValue(b.collisionProbability) - rankValue(a.collisionProbability) ||
+    rankValue(b) - rankValue(a) ||
     a.missDistanceM - b.missDistanceM ||
     a.tcaMs - b.tcaMs ||
     compareDesignators(a.object1.designator, b.object1.designator) ||
@@ -33,6 +33,11 @@ export function compareDesignators(a: string, b: string): number {
   return a < b ? -1 : a > b ? 1 : 0;
 }
 
-function rankValue(probability: number | undefined): number {
-  return probability === undefined || Number.isNaN(probability) ? -1 : probability;
+/** Whether there is a figure; not so for a singular covariance. */
+export function hasProbability({ collisionProbability }: Conjunction): boolean {
+  return collisionProbability !== undefined && !Number.isNaN(collisionProbability);
+}
+
+function rankValue(conjunction: Conjunction): number {
+  return hasProbability(conjunction) ? (conjunction.collisionProbability as number) : -1;
 }

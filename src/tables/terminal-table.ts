@@ -3,6 +3,7 @@ import type { FileCount } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
 import type { Conjunction, ConjunctionObject } from './conjunction.js';
 import { exponentText } from './csv-text.js';
+import { hasProbability } from './rank-conjunctions.js';
 import { padOrCut, terminalText, wrapWords } from './terminal-text.js';
 
 /*
@@ -33,7 +34,7 @@ export function formatConjunctionTable(ranked: readonly Conjunction[], limit: nu
   if (ranked.length === 0) return 'No conjunctions in the window.\n';
   const shown = Math.min(limit, ranked.length);
   let firstWithout = ranked.length;
-  while (firstWithout > 0 && ranked[firstWithout - 1].collisionProbability === undefined) firstWithout--;
+  while (firstWithout > 0 && !hasProbability(ranked[firstWithout - 1])) firstWithout--;
   const without = ranked.length - firstWithout;
   const firstNearest = Math.max(firstWithout, shown);
   const nearest = ranked.slice(firstNearest, firstNearest + NEAREST_WITHOUT_PROBABILITY);
@@ -158,7 +159,7 @@ function object(side: ConjunctionObject, rankColumns: number): string {
 }
 
 function probability(value: number | undefined): string {
-  return value === undefined ? 'none' : exponentText(value, 1);
+  return value === undefined || Number.isNaN(value) ? 'none' : exponentText(value, 1);
 }
 
 function days(value: number): string {

@@ -72,7 +72,7 @@ describe('a written message', () => {
     expect(valuesOf(text, 'STOP_SCREEN_PERIOD')).toEqual(['2026-12-08T00:00:00.000']);
     expect(valuesOf(text, 'SCREEN_VOLUME_SHAPE')).toEqual(['BOX']);
     expect(valuesOf(text, 'SCREEN_VOLUME_X')).toEqual(['400.000 [m]']);
-    expect(valuesOf(text, 'SCREEN_VOLUME_Z')).toEqual(['25000.000 [m]']);
+    expect(valuesOf(text, 'SCREEN_VOLUME_Z')).toEqual(['26000.000 [m]']);
     expect(valuesOf(text, 'SCREEN_ENTRY_TIME')).toEqual(['2026-12-02T03:14:15.586']);
     expect(valuesOf(text, 'SCREEN_EXIT_TIME')).toEqual(['2026-12-02T03:14:16.266']);
     const sphere = written(

@@ -65,5 +65,5 @@ export const MESSAGE_RUN: MessageRun = {
   creationMs: Date.UTC(2026, 11, 1, 6, 7, 8, 9),
   screenStartMs: Date.UTC(2026, 11, 1),
   screenStopMs: Date.UTC(2026, 11, 8),
-  volume: { shape: 'BOX', halfSizeRtnKm: [0.4, 25, 25] },
+  volume: { shape: 'BOX', halfSizeRtnKm: [0.4, 25, 26] },
 };

@@ -58,7 +58,7 @@ at closest approach.
       ...Array.from({ length: 12_000 }, () => exampleConjunction()),
       ...Array.from({ length: 5 }, (_, i) =>
         exampleConjunction({
-          collisionProbability: undefined,
+          collisionProbability: i === 0 ? Number.NaN : undefined,
           collisionProbabilityMax: undefined,
           missDistanceM: 10 + i,
           remarks: ['no-covariance'],
