@@ -1,8 +1,4 @@
-import type { MeanElements } from '../../elements/sgp4-record.js';
-
-const EARTH_RADIUS_KM = 6378.135;
-const MU_KM3_PER_S2 = 398_600.8;
-const SECONDS_PER_DAY = 86_400;
+import type { OrbitSummary } from '../../elements/orbit.js';
 
 /** Bounds of a class; the lower ones belong to it, the upper ones do not. */
 export type OrbitClass = {
@@ -29,16 +25,13 @@ export const ORBIT_CLASSES: readonly OrbitClass[] = [0.1, 1].flatMap((eccentrici
 );
 
 /** Index of the class in `ORBIT_CLASSES`; -1 for an orbit of none. */
-export function orbitClassOf(set: MeanElements): number {
-  const radiansPerSecond = (set.meanMotionRevPerDay * 2 * Math.PI) / SECONDS_PER_DAY;
-  const semiMajorAxisKm = Math.cbrt(MU_KM3_PER_S2 / radiansPerSecond ** 2);
-  const perigeeKm = semiMajorAxisKm * (1 - set.eccentricity) - EARTH_RADIUS_KM;
+export function orbitClassOf(orbit: OrbitSummary): number {
   return ORBIT_CLASSES.findIndex(
     (each) =>
-      perigeeKm >= each.perigeeMinKm &&
-      perigeeKm < each.perigeeMaxKm &&
-      set.eccentricity < each.eccentricityMax &&
-      set.inclinationDeg >= each.inclinationMinDeg &&
-      set.inclinationDeg < each.inclinationMaxDeg,
+      orbit.perigeeHeightKm >= each.perigeeMinKm &&
+      orbit.perigeeHeightKm < each.perigeeMaxKm &&
+      orbit.eccentricity < each.eccentricityMax &&
+      orbit.inclinationDeg >= each.inclinationMinDeg &&
+      orbit.inclinationDeg < each.inclinationMaxDeg,
   );
 }

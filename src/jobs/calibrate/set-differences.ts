@@ -1,8 +1,10 @@
-import { sgp4RecordOf } from '../../elements/sgp4-record.js';
+import { orbitOf } from '../../elements/orbit.js';
+import { roundedSgp4RecordOf } from '../../elements/sgp4-record.js';
 import { rtnFrame } from '../../ephemeris/rtn-frame.js';
 import { AGE_KNOTS_DAYS, knotWindow } from '../../uncertainty/calibrate-age-knots.js';
 import { rotate, type Vector3 } from '../../vector.js';
 import { MEAN_STATE_SIZE, meanStateAt } from './mean-state.js';
+import { orbitClassOf } from './orbit-classes.js';
 import { elementsAt, epochMsAt, type SetRecords } from './set-records.js';
 
 const MS_PER_MINUTE = 60_000;
@@ -23,6 +25,8 @@ export type SetDifferences = {
   /** Sets for which it gives none. */
   readonly rejected: readonly number[];
   readonly epochMs: Float64Array;
+  /** Index of the orbit class, -1 for none. */
+  readonly orbitClasses: Int16Array;
   /** At [set x knots + knot]: position in `sets` of the newer set, -1 where there is none. */
   readonly newer: Int32Array;
   /** At [(set x knots + knot) x 3]: older minus newer in RTN of the newer, meters. */
@@ -48,6 +52,7 @@ export type SetDifferences = {
 export function setDifferences(records: SetRecords, sets: readonly number[]): SetDifferences {
   const count = sets.length;
   const epochMs = new Float64Array(count);
+  const orbitClasses = new Int16Array(count);
   const states = new Float64Array(count * MEAN_STATE_SIZE);
   const newer = new Int32Array(count * KNOTS).fill(-1);
   const rtnM = new Float64Array(count * KNOTS * 3);
@@ -61,13 +66,15 @@ export function setDifferences(records: SetRecords, sets: readonly number[]): Se
   let first = count;
   for (let i = count - 1; i >= 0; i--) {
     const ownEpochMs = epochMsAt(records, sets[i]);
-    const record = sgp4RecordOf(elementsAt(records, sets[i]));
+    const elements = elementsAt(records, sets[i]);
+    const record = roundedSgp4RecordOf(elements);
     if (record.error !== 0 || !meanStateAt(record, 0, states, (first - 1) * MEAN_STATE_SIZE)) {
       rejected.push(sets[i]);
       continue;
     }
     first--;
     epochMs[first] = ownEpochMs;
+    orbitClasses[first] = orbitClassOf(orbitOf(elements, record));
     valid.push(sets[i]);
     const carryTo = (other: number) =>
       meanStateAt(record, (epochMs[other] - ownEpochMs) / MS_PER_MINUTE, carried, 0);
@@ -90,6 +97,7 @@ export function setDifferences(records: SetRecords, sets: readonly number[]): Se
     sets: valid.reverse(),
     rejected: rejected.reverse(),
     epochMs: epochMs.subarray(first),
+    orbitClasses: orbitClasses.subarray(first),
     newer: newer.subarray(first * KNOTS).map((partner) => (partner < 0 ? -1 : partner - first)),
     rtnM: rtnM.subarray(first * KNOTS * 3),
     failedPairs,

@@ -7,11 +7,11 @@ import type { FileTally } from './history-counts.js';
 import type { ManeuverRow } from './maneuvers-csv.js';
 import { type ObjectHistory, objectHistories } from './object-histories.js';
 import { type ObjectResult, type ObjectWork, workOnObject } from './object-result.js';
-import { ORBIT_CLASSES, orbitClassOf } from './orbit-classes.js';
+import { ORBIT_CLASSES } from './orbit-classes.js';
 import { pairAgeDays } from './pairs.js';
 import { PARTITION_COUNT, readPartition } from './partitions.js';
 import type { PairCounts } from './report.js';
-import { elementsAt, fileAt, lineAt, type SetRecords } from './set-records.js';
+import { fileAt, lineAt, type SetRecords } from './set-records.js';
 import type { UnusedSets } from './unused-sets.js';
 
 /** What all objects together showed. */
@@ -77,8 +77,8 @@ export async function studyHistory(
         });
       }
       countPairs(pairs, work);
-      addFittedToClasses(classBins, records, work);
-      uncheckedHeldBack += passHeldBack(records, work, ownCoverage, sinks);
+      addFittedToClasses(classBins, work);
+      uncheckedHeldBack += passHeldBack(work, ownCoverage, sinks);
     }
     progress((partition + 1) / PARTITION_COUNT);
   }
@@ -130,14 +130,14 @@ function countPairs(counts: { -readonly [K in keyof PairCounts]: number }, work:
 }
 
 /** An orbit may pass from class to class: each pair belongs to the class of its older set. */
-function addFittedToClasses(classBins: ClassBins, records: SetRecords, work: ObjectWork): void {
+function addFittedToClasses(classBins: ClassBins, work: ObjectWork): void {
   const { differences, pairs } = work;
-  const classes = differences.sets.map((set) => orbitClassOf(elementsAt(records, set)));
   for (let knot = 0; knot < AGE_KNOTS_DAYS.length; knot++) {
     const byClass = new Map<number, number[]>();
     for (const older of pairs.fitted[knot]) {
-      const olders = byClass.get(classes[older]);
-      if (olders === undefined) byClass.set(classes[older], [older]);
+      const orbitClass = differences.orbitClasses[older];
+      const olders = byClass.get(orbitClass);
+      if (olders === undefined) byClass.set(orbitClass, [older]);
       else olders.push(older);
     }
     for (const [orbitClass, olders] of byClass) {
@@ -147,7 +147,7 @@ function addFittedToClasses(classBins: ClassBins, records: SetRecords, work: Obj
 }
 
 /** @returns how many no law can be held against: neither that of the object nor that of a class */
-function passHeldBack(records: SetRecords, work: ObjectWork, ownCoverage: Coverage, sinks: Sinks): number {
+function passHeldBack(work: ObjectWork, ownCoverage: Coverage, sinks: Sinks): number {
   const { result, differences, pairs } = work;
   const hasOwnRows = result.growth !== undefined;
   let unchecked = 0;
@@ -156,7 +156,7 @@ function passHeldBack(records: SetRecords, work: ObjectWork, ownCoverage: Covera
       const at = (older * AGE_KNOTS_DAYS.length + knot) * 3;
       const differenceRtnM = differences.rtnM.subarray(at, at + 3);
       const ageDays = pairAgeDays(differences, older, knot);
-      const orbitClass = orbitClassOf(elementsAt(records, differences.sets[older]));
+      const orbitClass = differences.orbitClasses[older];
       if (orbitClass >= 0) sinks.heldBack.add({ hasOwnRows, orbitClass, knot, ageDays, differenceRtnM });
       if (result.growth !== undefined && reaches(result.growth, knot)) {
         addToCoverage(ownCoverage, result.growth, knot, ageDays, differenceRtnM);

@@ -7,7 +7,7 @@ import { type SyntheticManeuver, syntheticHistory } from './synthetic-history.js
 
 const MS_PER_DAY = 86_400_000;
 const START_MS = Date.UTC(2030, 0, 1);
-const ERRORS = { eccentricityM: 60, alongTrackM: 200, driftMPerDay: 400, planeM: 100 };
+const LAW = { radialM: 60, transverseM: 250, transverseMPerDay: 400, normalM: 100 };
 /** Scatter of the axis from one set to the next: sqrt 2 times 2/3 of the drift over the phase rate. */
 const AXIS_STEP_M = (Math.SQRT2 * (2 / 3) * 400) / (2 * Math.PI * 14.6);
 
@@ -18,7 +18,7 @@ function history(seed: number, maneuvers: readonly SyntheticManeuver[] = [], day
     startMs: START_MS,
     days,
     setsPerDay: 2,
-    errors: ERRORS,
+    law: LAW,
     meanMotionRevPerDay: 14.6,
     inclinationDeg: 55,
     maneuvers,

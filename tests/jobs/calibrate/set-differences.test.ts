@@ -14,15 +14,15 @@ import { syntheticHistory } from './synthetic-history.js';
 
 const MS_PER_DAY = 86_400_000;
 const KNOTS = AGE_KNOTS_DAYS.length;
-const NO_ERRORS = { eccentricityM: 0, alongTrackM: 0, driftMPerDay: 0, planeM: 0 };
-const SOME_ERRORS = { eccentricityM: 60, alongTrackM: 200, driftMPerDay: 500, planeM: 100 };
+const NO_ERRORS = { radialM: 0, transverseM: 0, transverseMPerDay: 0, normalM: 0 };
+const SOME_ERRORS = { radialM: 60, transverseM: 250, transverseMPerDay: 500, normalM: 100 };
 const request = {
   designator: 310_001,
   seed: 1,
   startMs: Date.UTC(2030, 0, 1),
   days: 40,
   setsPerDay: 2,
-  errors: SOME_ERRORS,
+  law: SOME_ERRORS,
   meanMotionRevPerDay: 14.6,
   inclinationDeg: 55,
 };
@@ -78,14 +78,14 @@ describe('differences of sets', () => {
   });
 
   test('sets without errors agree with one another at all ages to centimeters', () => {
-    const { newer, rtnM, jumpsM } = differencesOf(syntheticHistory({ ...request, errors: NO_ERRORS }));
+    const { newer, rtnM, jumpsM } = differencesOf(syntheticHistory({ ...request, law: NO_ERRORS }));
     expect(newer.filter((partner) => partner >= 0).length).toBeGreaterThan(400);
     expect(Math.max(...rtnM.map(Math.abs))).toBeLessThan(0.05);
     expect(Math.max(...jumpsM.filter((value) => !Number.isNaN(value)).map(Math.abs))).toBeLessThan(0.05);
   });
 
   test('an older set ahead along its track gives a positive T, one that lies higher a positive R', () => {
-    const [first, second] = syntheticHistory({ ...request, errors: NO_ERRORS, setsPerDay: 1, days: 2.2 });
+    const [first, second] = syntheticHistory({ ...request, law: NO_ERRORS, setsPerDay: 1, days: 2.2 });
     const ahead = { ...first, meanAnomalyDeg: first.meanAnomalyDeg + 0.01 };
     const knot = AGE_KNOTS_DAYS.indexOf(1);
     const { rtnM } = differencesOf([ahead, second]);
@@ -96,7 +96,7 @@ describe('differences of sets', () => {
   });
 
   test('pairs a set with the one nearest to the knot, and none outside the window', () => {
-    const base = syntheticHistory({ ...request, errors: NO_ERRORS, days: 1 })[0];
+    const base = syntheticHistory({ ...request, law: NO_ERRORS, days: 1 })[0];
     const at = (day: number): ElementSet => ({ ...base, epochMs: base.epochMs + day * MS_PER_DAY });
     const { newer } = differencesOf([at(0), at(0.85), at(1.05), at(1.19), at(3.7), at(12.5)]);
     const partnersOfFirst = Object.fromEntries(AGE_KNOTS_DAYS.map((age, knot) => [age, newer[knot]]));
@@ -129,7 +129,7 @@ describe('differences of sets', () => {
   });
 
   test('a set that decays before the next is counted, not paired', () => {
-    const [first, , , , fifth] = syntheticHistory({ ...request, errors: NO_ERRORS });
+    const [first, , , , fifth] = syntheticHistory({ ...request, law: NO_ERRORS });
     const doomed = { ...first, meanMotionRevPerDay: 16.4, bstar: 0.2 };
     const { failedPairs, newer, rejected } = differencesOf([doomed, fifth]);
     expect(rejected).toEqual([]);
@@ -140,7 +140,7 @@ describe('differences of sets', () => {
   test('jumps show a change of axis and plane in meters', () => {
     const sets = syntheticHistory({
       ...request,
-      errors: NO_ERRORS,
+      law: NO_ERRORS,
       maneuvers: [{ day: 10, semiMajorAxisM: 250, inclinationDeg: 0.01 }],
     });
     const { epochMs, jumpsM } = differencesOf(sets);

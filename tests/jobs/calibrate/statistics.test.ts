@@ -38,6 +38,7 @@ function daily(values: readonly number[]): SetDifferences {
     sets: Array.from({ length: count }, (_, i) => i),
     rejected: [],
     epochMs: Float64Array.from({ length: count }, (_, i) => i * MS_PER_DAY),
+    orbitClasses: new Int16Array(count),
     newer,
     rtnM,
     failedPairs: 0,
