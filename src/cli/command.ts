@@ -84,9 +84,7 @@ async function runCommand<S extends Options>(
   const configPath = commandLine.get('config')?.value as string | undefined;
   const configFile =
     configPath === undefined ? new Map<string, Given>() : readConfigFile(configPath, optionsOfFile);
-  const notes = decideAlternatives(definition.alternatives ?? [], commandLine, configFile);
   const common = checkedValues({ log: COMMON_OPTIONS.log }, commandLine, configFile);
-  const values = checkedValues(definition.options, commandLine, configFile);
 
   const { stderr } = surroundings;
   const bar =
@@ -104,6 +102,8 @@ async function runCommand<S extends Options>(
   });
   const listener = surroundings.listenForStop(log);
   try {
+    const notes = decideAlternatives(definition.alternatives ?? [], commandLine, configFile);
+    const values = checkedValues(definition.options, commandLine, configFile);
     for (const note of notes) log.info(note);
     const ports: JobPorts = {
       log,
@@ -125,7 +125,7 @@ async function runCommand<S extends Options>(
 }
 
 /** Says in the log what went wrong, and which exit status that is. */
-function reportError(error: unknown, log: Log): number {
+export function reportError(error: unknown, log: Log): number {
   if (error instanceof InputError) {
     log.error(error.message);
     return EXIT_STATUS.input;
@@ -134,9 +134,7 @@ function reportError(error: unknown, log: Log): number {
     log.error(error.message);
     return EXIT_STATUS.locked;
   }
-  log.error(`unexpected error: ${error instanceof Error ? error.message : String(error)}`, {
-    stack: error instanceof Error ? error.stack : undefined,
-  });
+  log.error('unexpected error', { err: error });
   log.error('this is a fault of wideberth: please report it with the lines above and the command line');
   return EXIT_STATUS.unexpected;
 }

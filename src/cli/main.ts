@@ -1,6 +1,5 @@
 import { readFileSync } from 'node:fs';
 import { listenForStop } from '../jobs/signals.js';
-import { EXIT_STATUS } from './exit-status.js';
 import { runCommandLine } from './run-command-line.js';
 
 const { version } = JSON.parse(readFileSync(new URL('../../package.json', import.meta.url), 'utf8')) as {
@@ -14,19 +13,11 @@ for (const stream of [process.stdout, process.stderr]) {
   });
 }
 
-try {
-  process.exitCode = await runCommandLine(process.argv.slice(2), {
-    stdout: process.stdout,
-    stderr: process.stderr,
-    environment: process.env,
-    nowMs: Date.now,
-    version,
-    listenForStop,
-  });
-} catch (error) {
-  process.stderr.write(
-    `wideberth: unexpected error: please report it with these lines and the command line\n`,
-  );
-  process.stderr.write(`${error instanceof Error ? error.stack : error}\n`);
-  process.exitCode = EXIT_STATUS.unexpected;
-}
+process.exitCode = await runCommandLine(process.argv.slice(2), {
+  stdout: process.stdout,
+  stderr: process.stderr,
+  environment: process.env,
+  nowMs: Date.now,
+  version,
+  listenForStop,
+});

@@ -1,13 +1,15 @@
 import yargs from 'yargs';
 import { InputError } from '../input-error.js';
-import type { Command } from './command.js';
+import { createLog, mayColor } from '../jobs/log.js';
+import { calibrateCommand } from './calibrate-command.js';
+import { type Command, reportError } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
 import { nearestName } from './options.js';
 import { screenCommand } from './screen-command.js';
 import type { Surroundings } from './surroundings.js';
 
 /** Every subcommand, in the order of the help. */
-const COMMANDS: readonly Command[] = [screenCommand];
+const COMMANDS: readonly Command[] = [screenCommand, calibrateCommand];
 
 /**
  * Runs one command line.
@@ -19,9 +21,13 @@ export async function runCommandLine(args: readonly string[], surroundings: Surr
   try {
     return await dispatch(args, surroundings);
   } catch (error) {
-    if (!(error instanceof InputError)) throw error;
-    surroundings.stderr.write(`wideberth: ${error.message}\n`);
-    return EXIT_STATUS.input;
+    const log = createLog({
+      format: /(^| )--log[ =]json( |$)/.test(args.join(' ')) ? 'json' : 'text',
+      write: (line) => surroundings.stderr.write(line),
+      color: mayColor(surroundings.stderr, surroundings.environment),
+      nowMs: surroundings.nowMs,
+    });
+    return reportError(error, log);
   }
 }
 

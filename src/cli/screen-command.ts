@@ -1,4 +1,5 @@
 import { availableParallelism } from 'node:os';
+import { resolve } from 'node:path';
 import { InputError } from '../input-error.js';
 import { screen } from '../jobs/screen.js';
 import {
@@ -155,6 +156,9 @@ export function screenOptions(
     throw new InputError(
       `--keep-runs is ${values['keep-runs']}, but there is no --history DIR to keep runs in`,
     );
+  }
+  if (values.history !== undefined && resolve(values.history) === resolve(values.out)) {
+    throw new InputError(`--out and --history are both ${values.out}: name two folders`);
   }
   return {
     fleetPaths: values.fleet,

@@ -79,15 +79,16 @@ describe('screen', () => {
   test.each([
     [new InputError('fleet.tle, line 3: no'), 2, 'ERROR: fleet.tle, line 3: no'],
     [new RunLockedError('another run'), 4, 'ERROR: another run'],
-    [new TypeError('oops'), 1, 'ERROR: unexpected error: oops'],
+    [new TypeError('oops'), 1, 'ERROR: unexpected error'],
   ])('turns %s into status %i', async (error, status, line) => {
     screenJob.mockRejectedValue(error);
     const outcome = await runInMemory('screen', ...NEEDED);
     expect(outcome).toMatchObject({ status, stdout: '' });
     expect(outcome.stderr).toContain(line);
-    expect(outcome.stderr.includes('please report it') && outcome.stderr.includes('TypeError: oops\\n')).toBe(
-      status === 1,
+    const isReportable = ['please report it', 'TypeError: oops', 'run-command-line.test.ts'].every((text) =>
+      outcome.stderr.includes(text),
     );
+    expect(isReportable).toBe(status === 1);
   });
 
   test('logs JSON objects when asked to, on standard error', async () => {
@@ -111,6 +112,7 @@ describe('screen', () => {
     [['--fleet', '-', '--catalog', '-', '--out', 'o'], '- (standard input) is named more than once'],
     [['--fleet', 'f', '--catalog', 'c'], 'no place for the results: give --out DIR'],
     [[...NEEDED, '--keep-runs', '3'], '--keep-runs is 3, but there is no --history DIR'],
+    [[...NEEDED, '--history', './tonight/'], '--out and --history are both tonight'],
     [[...NEEDED, '--volume-shape', 'BOX'], '--volume-shape is BOX, but its size is missing'],
     [
       [...NEEDED, '--miss-km', '1', '--volume-rtn-km', '1,2,3'],
@@ -134,6 +136,17 @@ describe('screen', () => {
     expect(outcome.stderr.trim().split('\n')).toHaveLength(1);
     expect(screenJob).not.toHaveBeenCalled();
   });
+});
+
+test('a mistake in the options is a JSON line too when JSON is asked for', async () => {
+  for (const args of [
+    ['--log', 'json', '--bogus'],
+    ['--log=json', '--days', '-1'],
+  ]) {
+    const { status, stderr } = await runInMemory('screen', ...NEEDED, ...args);
+    expect(status).toBe(2);
+    expect(JSON.parse(stderr)).toMatchObject({ level: 'error', message: expect.any(String) });
+  }
 });
 
 describe('a configuration file', () => {
