@@ -28,27 +28,30 @@ export const CALIBRATE_OPTIONS = {
 
 const HELP = `wideberth calibrate --history FILE --out CSV [options]
 
-Measures how fast the errors of public element sets grow: flies each past set to the
-epochs of later ones of the same object, takes the differences in RTN, leaves out
-those across maneuvers, and fits robust one-sigmas that grow with age, for each
-object that has enough sets and for each class of orbits.
+Measures how fast the errors of public element sets grow: flies each past set
+to the epochs of later ones of the same object, takes the differences in RTN,
+leaves out those across maneuvers, and fits robust one-sigmas that grow with
+age, for each object that has enough sets and for each class of orbits.
 
 ${optionsHelp({ ...CALIBRATE_OPTIONS, ...COMMON_OPTIONS })}
 
 Beside sigma.csv
-  sigma.report.txt     how it was done, how much data, bias, how well the fit covers
-                       a part of the history that was held back
-  sigma.bins.csv       samples, bias, measured and fitted sigma by object, class, age
+  sigma.report.txt     how it was done, how much data, bias, how well the fit
+                       covers a part of the history that was held back
+  sigma.bins.csv       samples, bias, measured and fitted sigma by object,
+                       class and age
   sigma.maneuvers.csv  changes of orbit that no pair was formed across
   sigma.inputs.csv     what became of the sets of each file
-  sigma.unused.csv     rejected and superseded sets, with file, line and reason
+  sigma.unused.csv     rejected and superseded sets: file, line and reason
 
-Differences cannot show errors that both sets share, such as those of the model:
---common-error-factor is for what you know of them from other sources.
+Differences cannot show errors that both sets share, such as those of SGP4
+itself: --common-error-factor is for what you know of them otherwise.
 
 Exit status
-  0 done   2 a mistake in options or input, output that cannot be written, or a history
-  too thin for any row   1 unexpected error   130, 143 stopped by SIGINT, SIGTERM
+  0 done             1 unexpected error
+  2 a mistake in the options or the input, output that cannot be written, or a
+    history too thin for any row
+  130, 143 stopped by SIGINT, SIGTERM: nothing of the run is kept
 
 ${CAUTION_IN_HELP}`;
 
