@@ -16,7 +16,8 @@ const CLOSING_BRACE = 0x7d;
 /** Far more than a message needs; a brace too few must not swallow the file. */
 const LONGEST_RECORD_BYTES = 65_536;
 const LONGEST_SCRAP_BYTES = 1000;
-const BETWEEN_RECORDS = /\}\s*(?:,\s*)?\{/;
+/** A brace after a comma or another brace opens a record; inside one it would be the value of no key. */
+const BETWEEN_RECORDS = /,\s*(?=\{)|(?<=\})\s*(?=\{)/;
 
 /**
  * Decoder of OMM in JSON: an array of objects, one object, or objects one after the other. Objects are cut
@@ -73,9 +74,7 @@ export function ommJsonDecoder(file: string, options: ReadOptions): Decoder {
   /** One object, or several that a missing quote or brace made look like one. */
   function addObjects(text: string): void {
     const pieces = parseObject(text) === undefined ? text.split(BETWEEN_RECORDS) : [text];
-    for (let i = 0; i < pieces.length; i++) {
-      addObject(`${i > 0 ? '{' : ''}${pieces[i]}${i < pieces.length - 1 ? '}' : ''}`);
-    }
+    for (const piece of pieces) addObject(piece);
   }
 
   function endRecord(): void {
@@ -92,12 +91,15 @@ export function ommJsonDecoder(file: string, options: ReadOptions): Decoder {
   }
 
   /** A record that does not end: cut before the next one if it can be seen, else given up. */
-  function resynchronise(): void {
-    const text = buffer.toString('latin1', 0, position);
-    const boundary = BETWEEN_RECORDS.exec(text);
-    const end = boundary === null ? position : boundary.index + 1;
-    reject(decodeText(buffer, 0, end), `not valid JSON: no closing brace within ${end} bytes`);
-    position = boundary === null ? position : boundary.index + boundary[0].length - 1;
+  function resynchronize(): void {
+    // One character a byte, so that places in the text are places in the buffer.
+    const boundary = BETWEEN_RECORDS.exec(buffer.toString('latin1', 0, position));
+    if (boundary === null) {
+      reject(decodeText(buffer, 0, position), `not valid JSON: no closing brace within ${position} bytes`);
+    } else {
+      addObject(decodeText(buffer, 0, boundary.index));
+      position = boundary.index + boundary[0].length;
+    }
     dropScanned();
   }
 
@@ -122,7 +124,7 @@ export function ommJsonDecoder(file: string, options: ReadOptions): Decoder {
         }
       }
       if (position > LONGEST_RECORD_BYTES) {
-        resynchronise();
+        resynchronize();
         return;
       }
     }

@@ -185,7 +185,9 @@ function fieldsOf(text: string, firstLine: number): OmmFields {
   const validity = XMLValidator.validate(text);
   if (validity !== true) {
     const { msg, line } = validity.err;
-    throw new Rejection(`not valid XML in line ${firstLine + line - 1}: ${msg}`);
+    // The message counts lines from the start of the element, and would contradict ours.
+    const message = msg.replace(/ \(opened in [^)]*\)/, '');
+    throw new Rejection(`not valid XML in line ${firstLine + line - 1}: ${message}`);
   }
   const segment = child(child(child(parse(text), 'omm'), 'body'), 'segment');
   const data = child(segment, 'data');

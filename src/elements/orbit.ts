@@ -21,7 +21,7 @@ export type OrbitSummary = {
 
 /**
  * The mean orbit as SGP4 sees it: from its own (Brouwer) mean motion, which differs from the published
- * (Kozai) one by up to some 0.1 %. Osculating heights swing by some 10 km about these.
+ * (Kozai) one by up to 0.15 %. Osculating heights swing by some 10 to 20 km about these.
  *
  * @param record the SGP4 record of the set, if there is one already
  */

@@ -38,10 +38,11 @@ export function selectSets({
   });
   const chosenCatalog = catalog.filter((set) => {
     const own = fleetWinners.get(set.designator);
-    const winner = own ?? catalogWinners.get(set.designator);
-    if (winner === undefined || winner === set) return true;
-    const why = own === undefined ? reasonFor(winner, set, startMs) : 'the fleet has elements of its own';
-    superseded.push(supersededBy(winner, set, why));
+    const winner = catalogWinners.get(set.designator);
+    if (own === undefined && (winner === undefined || winner === set)) return true;
+    if (own !== undefined) superseded.push(supersededBy(own, set, 'the fleet has elements of its own'));
+    else if (winner !== undefined)
+      superseded.push(supersededBy(winner, set, reasonFor(winner, set, startMs)));
     return false;
   });
   return { fleet: chosenFleet.sort(byDesignator), catalog: chosenCatalog.sort(byDesignator), superseded };
