@@ -1,0 +1,75 @@
+import { EARTH_MU_KM3_PER_S2, EARTH_RADIUS_KM } from '../ephemeris/gravity.js';
+import { WIDEST_TOLERANCE_KM } from '../ephemeris/tracks.js';
+
+/**
+ * Why the search misses nothing.
+ *
+ * The window is cut into steps of 2T. Take an encounter: at a time t + tau, |tau| <= T, around the middle t
+ * of a step, two objects are within D of each other. Then, with eps1 and eps2 the tolerances of their tracks:
+ *
+ * 1. Their tracks are within D' = D + eps1 + eps2 + (what the acceleration of a track may differ from
+ *    gravity over a step, under 0.1 km) at t + tau.
+ * 2. Radius: during the step the radius of each track stays within r(t) +- (|r'(t)| T + A T^2 / 2), A being
+ *    the largest |r''| of its orbit: r'' = (mu / r^2)(p / r - 1), so |r''| <= mu e / perigee^2, with 0.006
+ *    added to e for J2. The two intervals, widened so that both together grow by D', overlap.
+ * 3. Direction: each track turns by at most w T, w the largest angular rate of its orbit during the step;
+ *    so the directions at t differ by at most (w1 + w2) T + (angle under which D' is seen at the Earth's
+ *    radius). No orbit above ground turns faster than the parabola that grazes it.
+ * 4. Relative path: gravity pulls two objects at distance d apart by at most g d, g = 2 mu / r^3 (the
+ *    radial tide, 2.5 percent added for J2). With V the relative speed at t, the straight line through
+ *    the relative position and velocity at t passes, at t + tau, within
+ *    D' + g (D' T^2 / 2 + V' T^3 / 3) of the origin, V' = V (1 + g T^2) + g D' T.
+ *
+ * 2 and 3 choose the pairs that are looked at, 4 those that are refined, on the tracks and then on SGP4.
+ */
+export type StepBounds = {
+  /** T, half a step, seconds. */
+  readonly halfStepS: number;
+  /** D' without the tolerances of the two tracks, km. */
+  readonly baseReachKm: number;
+  /** Edge of a cell of directions: no two ordinary objects further apart than this (chord) can meet. */
+  readonly directionReach: number;
+};
+
+const ACCELERATION_SLACK_KM = 0.1;
+/** Angular rate of a circular orbit at the Earth's surface; only a perigee of an eccentric orbit is faster. */
+export const ORDINARY_RATE_PER_S = 1.25e-3;
+/** A parabola that grazes the Earth's surface: sqrt(2 mu / R^3) is 1.753e-3. */
+export const FASTEST_RATE_PER_S = 1.76e-3;
+/** No two bound objects above ground are faster than this relative to each other, km/s (twice 11.18). */
+export const FASTEST_RELATIVE_KM_PER_S = 22.4;
+
+export function stepBounds(missKm: number, halfStepS: number): StepBounds {
+  const baseReachKm = missKm + ACCELERATION_SLACK_KM;
+  const widestReachKm = baseReachKm + 2 * WIDEST_TOLERANCE_KM;
+  const seenAngle = 2 * Math.asin(Math.min(1, widestReachKm / (2 * (EARTH_RADIUS_KM - 50))));
+  return {
+    halfStepS,
+    baseReachKm,
+    directionReach: 2 * ORDINARY_RATE_PER_S * halfStepS + 1.01 * seenAngle,
+  };
+}
+
+/** g of the bound: the strongest tide at distance `radiusKm` or more from the Earth's center, per s^2. */
+export function tidePerS2(radiusKm: number): number {
+  return (2.05 * EARTH_MU_KM3_PER_S2) / (radiusKm * radiusKm * radiusKm);
+}
+
+/**
+ * How close the straight line must pass for a pair to be refined.
+ *
+ * @param reachKm D' of the pair
+ * @param tide g at the lower of the two
+ * @param speedKmPerS relative speed in the middle of the step
+ */
+export function lineReachKm(halfStepS: number, reachKm: number, tide: number, speedKmPerS: number): number {
+  const t2 = halfStepS * halfStepS;
+  const speed = speedKmPerS * (1 + tide * t2) + tide * reachKm * halfStepS;
+  return reachKm + tide * (0.5 * reachKm * t2 + (speed * t2 * halfStepS) / 3);
+}
+
+/** A: the largest |r''| of an orbit, km/s^2. */
+export function radialAcceleration(eccentricity: number, perigeeRadiusKm: number): number {
+  const lowest = Math.max(EARTH_RADIUS_KM, perigeeRadiusKm - 25);
+  return (1.05 * EARTH_MU_KM3_PER_S2 * (eccentricity + 0.006)) / (lowest * lowest);
+}

@@ -1,0 +1,61 @@
+import type { SatRec } from 'satellite.js';
+import { EARTH_RADIUS_KM, orbitOf } from '../elements/orbit.js';
+import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
+
+/**
+ * What is screened against what. The first `primaryCount` objects are the primaries (the fleet, a launch
+ * batch, or everything); the others are only met by primaries, never by each other.
+ */
+export type SearchObjects = {
+  readonly count: number;
+  readonly primaryCount: number;
+  readonly records: readonly SatRec[];
+  readonly epochMs: Float64Array;
+  /** Mean eccentricity at epoch. */
+  readonly eccentricity: Float64Array;
+  /** Mean perigee distance from the Earth's center at epoch. */
+  readonly perigeeRadiusKm: Float64Array;
+  /** An object exists from here (inclusive) to there (exclusive); infinite where nothing limits it. */
+  readonly validFromMs: Float64Array;
+  readonly validToMs: Float64Array;
+};
+
+export type SearchRules = {
+  /** The window is [startMs, endMs); a closest approach belongs to the window that holds its TCA. */
+  readonly startMs: number;
+  readonly endMs: number;
+  /** Largest distance of a closest approach, km: the radius of the sphere around the screening volume. */
+  readonly missKm: number;
+  /** Whether primaries meet each other. */
+  readonly withinPrimaries: boolean;
+  /** Pairs that are not searched, as `pairKey`. */
+  readonly skippedPairs: ReadonlySet<number>;
+};
+
+/** One number for an unordered pair of object indices. */
+export function pairKey(a: number, b: number, count: number): number {
+  return a < b ? a * count + b : b * count + a;
+}
+
+/** Mean elements with the time in which they stand for their object. */
+export type SearchedSet = MeanElements & { readonly validFromMs?: number; readonly validToMs?: number };
+
+/**
+ * Readies element sets for a search, SGP4 records included.
+ *
+ * @param sets primaries first, all of them accepted by SGP4
+ */
+export function searchObjectsOf(sets: readonly SearchedSet[], primaryCount: number): SearchObjects {
+  const records = sets.map(sgp4RecordOf);
+  const orbits = sets.map((set, i) => orbitOf(set, records[i]));
+  return {
+    count: sets.length,
+    primaryCount,
+    records,
+    epochMs: Float64Array.from(sets, (set) => set.epochMs),
+    eccentricity: Float64Array.from(sets, (set) => set.eccentricity),
+    perigeeRadiusKm: Float64Array.from(orbits, (orbit) => orbit.perigeeHeightKm + EARTH_RADIUS_KM),
+    validFromMs: Float64Array.from(sets, (set) => set.validFromMs ?? Number.NEGATIVE_INFINITY),
+    validToMs: Float64Array.from(sets, (set) => set.validToMs ?? Number.POSITIVE_INFINITY),
+  };
+}

@@ -1,0 +1,57 @@
+import { SLAB_S } from './node-spacing.js';
+import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
+import type { SlabTracks } from './tracks.js';
+
+/**
+ * A place in time on all tracks of a slab: each object's current segment, fitted when the cursor first
+ * comes to it. Times are seconds after the slab's start and must not go back by more than a step.
+ */
+export type TrackCursor = {
+  readonly tracks: SlabTracks;
+  readonly coefficients: Float64Array;
+  readonly segmentStartS: Float64Array;
+  readonly segmentEndS: Float64Array;
+};
+
+export function createTrackCursor(tracks: SlabTracks): TrackCursor {
+  const count = tracks.firstNode.length;
+  return {
+    tracks,
+    coefficients: new Float64Array(SEGMENT_SIZE * count),
+    segmentStartS: new Float64Array(count).fill(Number.NEGATIVE_INFINITY),
+    segmentEndS: new Float64Array(count).fill(Number.NEGATIVE_INFINITY),
+  };
+}
+
+/**
+ * Brings one object's segment to the time. Past the end of its last segment it stays on it: callers go
+ * beyond by half a step at the most.
+ */
+export function moveCursor(cursor: TrackCursor, object: number, timeS: number): void {
+  const { tracks } = cursor;
+  const lengthS = tracks.segmentS[object];
+  const last = tracks.segmentCount[object] - 1;
+  const index = Math.max(0, Math.min(last, Math.floor((timeS - tracks.originS[object]) / lengthS)));
+  const startS = tracks.originS[object] + index * lengthS;
+  cursor.segmentStartS[object] = startS;
+  cursor.segmentEndS[object] = index === last ? Math.max(startS + lengthS, SLAB_S) : startS + lengthS;
+  const node = 6 * (tracks.firstNode[object] + index);
+  fitSegment(tracks.nodes, node, node + 6, lengthS, cursor.coefficients, SEGMENT_SIZE * object);
+}
+
+/**
+ * State of one object on its current segment, which `moveCursor` has brought near the time.
+ *
+ * @param out x, y, z (km) and vx, vy, vz (km/s), TEME, from `outOffset` on
+ */
+export function stateOnTrack(
+  cursor: TrackCursor,
+  object: number,
+  timeS: number,
+  out: Float64Array,
+  outOffset: number,
+): void {
+  const perLength = 1 / cursor.tracks.segmentS[object];
+  const u = (timeS - cursor.segmentStartS[object]) * perLength;
+  evaluateSegment(cursor.coefficients, SEGMENT_SIZE * object, u, perLength, out, outOffset);
+}

@@ -1,0 +1,131 @@
+import { beforeAll, describe, expect, it } from 'vitest';
+import type { ElementSet } from '../../src/elements/element-set.js';
+import { searchObjectsOf } from '../../src/encounters/search-problem.js';
+import {
+  type ClosestApproach,
+  createSlabSearcher,
+  distinctApproaches,
+  searchSlab,
+  slabCount,
+} from '../../src/encounters/search-slab.js';
+import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
+import { syntheticCatalog } from '../synthetic/catalog.js';
+import { type BruteForceEncounter, bruteForceEncounters } from './brute-force.js';
+
+const START_MS = Date.UTC(2026, 11, 1);
+const HOUR_MS = 3_600_000;
+
+type Screening = {
+  readonly fleet: readonly ElementSet[];
+  readonly catalog: readonly ElementSet[];
+  readonly within: boolean;
+  readonly hours: number;
+  readonly missKm: number;
+};
+
+function search({ fleet, catalog, within, hours, missKm }: Screening): ClosestApproach[] {
+  const objects = searchObjectsOf([...fleet, ...catalog], fleet.length);
+  const rules = {
+    startMs: START_MS,
+    endMs: START_MS + hours * HOUR_MS,
+    missKm,
+    withinPrimaries: within,
+    skippedPairs: new Set<number>(),
+  };
+  const searcher = createSlabSearcher(objects, rules);
+  const found: ClosestApproach[] = [];
+  for (let slab = 0; slab < slabCount(rules); slab++) found.push(...searchSlab(searcher, slab).approaches);
+  return distinctApproaches(found, objects.count);
+}
+
+/** Every encounter of either list has its twin in the other: same pair, TCA and distance. */
+function expectSameEncounters(
+  found: readonly ClosestApproach[],
+  expected: readonly BruteForceEncounter[],
+  secondOffset: number,
+): void {
+  const left = [...found];
+  for (const { i, j, tcaMs, missKm, relativeSpeedKmPerS } of expected) {
+    const second = j + secondOffset;
+    // The distance of a slow pair hardly changes around its minimum: SGP4's rounding moves the time by seconds.
+    const toleranceMs = relativeSpeedKmPerS > 0.1 ? 1 : 3000;
+    const index = left.findIndex(
+      (approach) =>
+        approach.first === i && approach.second === second && Math.abs(approach.tcaMs - tcaMs) <= toleranceMs,
+    );
+    expect(
+      index,
+      `missed: ${i} ${second} at ${new Date(tcaMs).toISOString()}, ${missKm} km, ${relativeSpeedKmPerS} km/s`,
+    ).not.toBe(-1);
+    expect(Math.abs(left[index].missKm - missKm)).toBeLessThan(1e-5);
+    left.splice(index, 1);
+  }
+  expect(left, 'found, but not by brute force').toEqual([]);
+}
+
+beforeAll(loadBulkPropagator);
+
+describe('the search finds what brute force finds, and nothing else', () => {
+  it.each([
+    { what: 'the usual mix', seed: 11, mix: undefined, count: 220, missKm: 60, hours: 9 },
+    {
+      what: 'eccentric orbits',
+      seed: 12,
+      mix: { low: 0.3, eccentric: 0.7, medium: 0, geosynchronous: 0, decaying: 0, train: 0 },
+      count: 200,
+      missKm: 100,
+      hours: 8,
+    },
+    {
+      what: 'geosynchronous and medium orbits',
+      seed: 13,
+      mix: { low: 0, eccentric: 0.1, medium: 0.3, geosynchronous: 0.6, decaying: 0, train: 0 },
+      count: 150,
+      missKm: 400,
+      hours: 26,
+    },
+    {
+      what: 'decaying and very low orbits',
+      seed: 14,
+      mix: { low: 0.2, eccentric: 0.05, medium: 0, geosynchronous: 0, decaying: 0.75, train: 0 },
+      count: 200,
+      missKm: 40,
+      hours: 10,
+    },
+    {
+      what: 'trains of co-orbital satellites',
+      seed: 15,
+      mix: { low: 0.2, eccentric: 0, medium: 0, geosynchronous: 0, decaying: 0, train: 0.8 },
+      count: 120,
+      missKm: 50,
+      hours: 7,
+    },
+  ])('all on all: $what', ({ seed, mix, count, missKm, hours }) => {
+    const sets = syntheticCatalog({ seed, count, epochMs: START_MS, ...(mix === undefined ? {} : { mix }) });
+    const found = search({ fleet: sets, catalog: [], within: true, hours, missKm });
+    const expected = bruteForceEncounters({
+      first: sets,
+      startMs: START_MS,
+      endMs: START_MS + hours * HOUR_MS,
+      missKm,
+    });
+    expect(expected.length).toBeGreaterThan(20);
+    expectSameEncounters(found, expected, 0);
+  });
+
+  it('a fleet against a catalog', () => {
+    const sets = syntheticCatalog({ seed: 16, count: 320, epochMs: START_MS });
+    const fleet = sets.slice(0, 20);
+    const catalog = sets.slice(20);
+    const found = search({ fleet, catalog, within: false, hours: 12, missKm: 60 });
+    const expected = bruteForceEncounters({
+      first: fleet,
+      second: catalog,
+      startMs: START_MS,
+      endMs: START_MS + 12 * HOUR_MS,
+      missKm: 60,
+    });
+    expect(expected.length).toBeGreaterThan(20);
+    expectSameEncounters(found, expected, fleet.length);
+  });
+});
