@@ -1,7 +1,7 @@
 import { expect, test } from 'vitest';
 import { norm, subtract } from '../../src/vector.js';
 import { perigeeHeightKm, syntheticCatalog } from './catalog.js';
-import { atEpoch, setThrough, stateAt } from './mean-elements.js';
+import { atEpoch, setThrough, shifted, stateAt } from './mean-elements.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const DAY_MS = 86_400_000;
@@ -38,4 +38,22 @@ test('mean elements are found for a state days after their epoch', () => {
     // Near the equator the node, and with it the split of the tilt, is not well defined.
     if (set.inclinationDeg > 5) expect(found.inclinationDeg).toBeCloseTo(set.inclinationDeg, 2);
   }
+});
+
+test('an orbit tilted through the equator keeps its place', () => {
+  const [base] = SETS.filter((set) => set.meanMotionRevPerDay > 13 && set.eccentricity < 0.01);
+  const still = {
+    meanMotionShare: 0,
+    eccentricityX: 0,
+    eccentricityY: 0,
+    inclinationRad: 0,
+    nodeRad: 0,
+    longitudeRad: 0,
+  };
+  const flat = { ...base, inclinationDeg: 0.001 };
+  const tilted = shifted(flat, { ...still, inclinationRad: (-0.002 * Math.PI) / 180 });
+  expect(tilted.inclinationDeg).toBeCloseTo(0.001, 9);
+  const [before, after] = [flat, tilted].map((set) => stateAt(set, set.epochMs)?.positionKm ?? [0, 0, 0]);
+  // 0.002 degrees are a quarter of a kilometer at most in a low orbit.
+  expect(Math.hypot(...before.map((x, axis) => x - after[axis]))).toBeLessThan(0.3);
 });

@@ -134,6 +134,11 @@ function regular(set: ElementSet): number[] {
 }
 
 function fromRegular(values: readonly number[], set: ElementSet): ElementSet {
+  if (values[3] < 0) {
+    // Tilted through the equator: the other node is the ascending one now, half a turn away.
+    const [meanMotion, x, y, inclination, node, longitude] = values;
+    return fromRegular([meanMotion, -x, -y, -inclination, node + Math.PI, longitude - Math.PI], set);
+  }
   const [meanMotion, x, y, inclination, node, longitude] = values;
   const perigee = Math.atan2(y, x);
   return {

@@ -89,6 +89,7 @@ test('rounding carries over midnight, the year and the full circle', () => {
   expect(lines[1].slice(26, 33)).toBe('1234568');
   expect(lines[1].slice(43, 51)).toBe('  0.0000');
   expect(() => toTwoLine({ ...set, eccentricity: 1 })).toThrow('eccentricity 1');
+  expect(() => toTwoLine({ ...set, inclinationDeg: -0.01 })).toThrow('inclination -0.01');
 });
 
 test('rounding once is enough', () => {

@@ -20,7 +20,7 @@ export function toTwoLine(set: ElementSet): [line1: string, line2: string] {
     `1 ${number}U ${compactInternationalDesignator(set.internationalDesignator).padEnd(8)} ` +
     `${String(year % 100).padStart(2, '0')}${dayText}  .00000000  00000-0 ${exponentField(set.bstar)} 0  999`;
   const line2 =
-    `2 ${number} ${angleField(set.inclinationDeg)} ${angleField(set.rightAscensionDeg)} ` +
+    `2 ${number} ${inclinationField(set.inclinationDeg)} ${angleField(set.rightAscensionDeg)} ` +
     `${eccentricityField(set.eccentricity)} ${angleField(set.argumentOfPerigeeDeg)} ` +
     `${angleField(set.meanAnomalyDeg)} ${fixed(set.meanMotionRevPerDay, 8, 11)}    0`;
   return [line1 + checksum(line1), line2 + checksum(line2)];
@@ -63,9 +63,10 @@ export function checksum(line: string): string {
   return String(sum % 10);
 }
 
+/** `''` becomes zeros: an object that has no number yet. */
 function alpha5(designator: string): string {
   const number = Number(designator);
-  if (!/^\d+$/.test(designator) || number > LARGEST_ALPHA5) {
+  if (!/^\d*$/.test(designator) || number > LARGEST_ALPHA5) {
     throw new RangeError(`designator ${designator} does not fit into two lines (0 to ${LARGEST_ALPHA5})`);
   }
   if (number <= 99_999) return String(number).padStart(5, '0');
@@ -103,6 +104,11 @@ function roundEpochMs(epochMs: number): number {
 
 function angleField(degrees: number): string {
   return fixed(roundAngle(degrees), 4, 8);
+}
+
+function inclinationField(degrees: number): string {
+  if (!(degrees >= 0 && degrees <= 180)) throw new RangeError(`inclination ${degrees} is not in [0, 180]`);
+  return fixed(degrees, 4, 8);
 }
 
 /** To 1e-4 degrees, in [0, 360). */
