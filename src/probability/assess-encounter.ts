@@ -2,7 +2,7 @@ import { rtnFrame } from '../ephemeris/rtn-frame.js';
 import { cross, type Matrix3, norm, rotate, scale, subtract, type Vector3 } from '../vector.js';
 import { requireFinite, requireNotNegative, shown } from './arguments.js';
 import { covarianceOutOf, requireCovariance, sumOf } from './covariance.js';
-import { encounterPlane } from './encounter-plane.js';
+import { type EncounterPlane, encounterPlane } from './encounter-plane.js';
 import { discProbability } from './foster.js';
 import { maximumProbability } from './maximum.js';
 
@@ -52,11 +52,22 @@ export type EncounterAssessment = {
  * orbital plane (so without RTN), covariance not symmetric or not positive semidefinite, negative radius
  */
 export function assessEncounter(encounter: Encounter): EncounterAssessment {
-  const { object1, object2, hardBodyRadiusM } = encounter;
-  requireObject('object1', object1);
-  requireObject('object2', object2);
-  requireNotNegative('hardBodyRadiusM', hardBodyRadiusM);
+  requireObject('object1', encounter.object1);
+  requireObject('object2', encounter.object2);
+  requireNotNegative('hardBodyRadiusM', encounter.hardBodyRadiusM);
+  const { plane: _plane, peakSigmaScale: _scale, ...assessment } = assessInFull(encounter);
+  return assessment;
+}
 
+/** What `assessEncounter` finds on the way and the other figures of a row are made from. */
+export type FullAssessment = EncounterAssessment & {
+  readonly plane: EncounterPlane | undefined;
+  /** The common factor on the combined sigmas at which the probability is largest; see `maximumProbability`. */
+  readonly peakSigmaScale: number | undefined;
+};
+
+/** `assessEncounter` without the checks, for states and covariances that were computed, not given. */
+export function assessInFull({ object1, object2, hardBodyRadiusM }: Encounter): FullAssessment {
   const frame1 = rtnFrame(object1.positionKm, object1.velocityKmPerS);
   const frame2 = rtnFrame(object2.positionKm, object2.velocityKmPerS);
   const positionM = scale(subtract(object2.positionKm, object1.positionKm), 1000);
@@ -66,6 +77,7 @@ export function assessEncounter(encounter: Encounter): EncounterAssessment {
     covarianceOutOf(frame2, object2.covarianceRtnM2),
   );
   const plane = encounterPlane(positionM, velocityMPerS, covarianceM2);
+  const maximum = plane && maximumProbability({ ...plane, hardBodyRadiusM });
   return {
     missDistanceM: norm(positionM),
     relativeSpeedMPerS: norm(velocityMPerS),
@@ -73,8 +85,10 @@ export function assessEncounter(encounter: Encounter): EncounterAssessment {
     relativeVelocityRtnMPerS: rotate(frame1, velocityMPerS),
     collisionProbability:
       plane && discProbability(plane.sigmaXM, plane.sigmaYM, plane.missXM, plane.missYM, hardBodyRadiusM),
-    collisionProbabilityMax: plane && maximumProbability({ ...plane, hardBodyRadiusM }).probability,
+    collisionProbabilityMax: maximum?.probability,
     mahalanobisDistance: plane?.mahalanobisDistance,
+    plane,
+    peakSigmaScale: maximum?.sigmaScale,
   };
 }
 
