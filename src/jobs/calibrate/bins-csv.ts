@@ -2,16 +2,16 @@ import { CAUTION } from '../../caution.js';
 import { type CsvColumn, fixedCell, textCell } from '../../tables/csv-text.js';
 import { AGE_KNOTS_DAYS } from '../../uncertainty/calibrate-age-knots.js';
 import { differenceSigmaM } from '../../uncertainty/calibrate-growth-law.js';
+import type { SigmaClassBounds } from '../../uncertainty/sigma-table.js';
 import type { AgeBin } from './age-bins.js';
 import type { ErrorGrowth } from './error-growth.js';
 import type { ObjectResult } from './object-result.js';
-import type { OrbitClass } from './orbit-classes.js';
-import type { ClassResult } from './sigma-table-csv.js';
+import { boundCell, type ClassResult } from './sigma-table-csv.js';
 
 /** What the differences of one object or class showed at one age. */
 export type BinRow = {
   readonly designator: string;
-  readonly orbitClass: OrbitClass | undefined;
+  readonly orbitClass: SigmaClassBounds | undefined;
   readonly standing: string;
   readonly knot: number;
   readonly bin: AgeBin;
@@ -107,7 +107,7 @@ function bounds(): CsvColumn<BinRow>[] {
     name,
     unit: '',
     meaning: 'Bound of the orbit class, as in the table',
-    cell: ({ orbitClass }) => (orbitClass === undefined ? '' : String(orbitClass[key])),
+    cell: ({ orbitClass }) => (orbitClass === undefined ? '' : boundCell(orbitClass[key])),
   }));
 }
 

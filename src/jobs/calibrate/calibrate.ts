@@ -19,7 +19,7 @@ import { OUTPUT_SUFFIXES, type OutputFiles, type OutputName, openOutputFiles } f
 import { createPartitions } from './partitions.js';
 import { type ReadSets, readHistory } from './read-history.js';
 import { type CalibrationSummary, fullReport, shortReport } from './report.js';
-import { type ClassResult, SIGMA_TABLE_COLUMNS, sigmaTableRows } from './sigma-table-csv.js';
+import { type ClassResult, SIGMA_TABLE_COLUMNS, sigmaTableHead, sigmaTableRows } from './sigma-table-csv.js';
 import { type HistoryStudy, studyHistory } from './study-history.js';
 import { createUnusedSets } from './unused-sets.js';
 
@@ -110,8 +110,10 @@ async function calibrateInto(
     await write('inputs', INPUT_COLUMNS, tallies);
     await writeFile(output.stagedPath('report'), fullReport(summary), { flag: 'wx' });
     const besides: readonly OutputName[] = ['report', 'bins', 'maneuvers', 'inputs', 'unused'];
+    const table = output.createStaged('table');
+    table.write(sigmaTableHead(commonErrorFactor));
     const rows = sigmaTableRows(classes, study.objects, commonErrorFactor);
-    if ((await write('table', SIGMA_TABLE_COLUMNS, rows)) === 0) {
+    if ((await writeCsv(table, SIGMA_TABLE_COLUMNS, rows)) === 0) {
       output.publish(besides);
       throw new InputError(
         `the history is too thin for any row: ${output.finalPath('table')} is not written; ` +

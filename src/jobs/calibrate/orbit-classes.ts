@@ -1,37 +1,19 @@
 import type { OrbitSummary } from '../../elements/orbit.js';
+import { defaultSigmaTable } from '../../uncertainty/default-sigma-table.js';
+import { covers, type SigmaClassBounds } from '../../uncertainty/sigma-table.js';
 
-/** Bounds of a class; the lower ones belong to it, the upper ones do not. */
-export type OrbitClass = {
-  readonly perigeeMinKm: number;
-  readonly perigeeMaxKm: number;
-  readonly eccentricityMax: number;
-  readonly inclinationMinDeg: number;
-  readonly inclinationMaxDeg: number;
-};
-
-const PERIGEES_KM = [0, 800, 25_000, 1_000_000];
-const INCLINATIONS_DEG = [0, 30, 60, 180.0001];
-
-export const ORBIT_CLASSES: readonly OrbitClass[] = [0.1, 1].flatMap((eccentricityMax) =>
-  PERIGEES_KM.slice(1).flatMap((perigeeMaxKm, i) =>
-    INCLINATIONS_DEG.slice(1).map((inclinationMaxDeg, j) => ({
-      perigeeMinKm: PERIGEES_KM[i],
-      perigeeMaxKm,
-      eccentricityMax,
-      inclinationMinDeg: INCLINATIONS_DEG[j],
-      inclinationMaxDeg,
-    })),
-  ),
+/** The classes of the built-in table, so that each one measured takes the place of one assumed. */
+export const ORBIT_CLASSES: readonly SigmaClassBounds[] = defaultSigmaTable().classes.map(
+  ({ perigeeMinKm, perigeeMaxKm, eccentricityMax, inclinationMinDeg, inclinationMaxDeg }) => ({
+    perigeeMinKm,
+    perigeeMaxKm,
+    eccentricityMax,
+    inclinationMinDeg,
+    inclinationMaxDeg,
+  }),
 );
 
-/** Index of the class in `ORBIT_CLASSES`; -1 for an orbit of none. */
+/** Index of the first class in `ORBIT_CLASSES` that covers the orbit, as a screening would choose it; -1 for none. */
 export function orbitClassOf(orbit: OrbitSummary): number {
-  return ORBIT_CLASSES.findIndex(
-    (each) =>
-      orbit.perigeeHeightKm >= each.perigeeMinKm &&
-      orbit.perigeeHeightKm < each.perigeeMaxKm &&
-      orbit.eccentricity < each.eccentricityMax &&
-      orbit.inclinationDeg >= each.inclinationMinDeg &&
-      orbit.inclinationDeg < each.inclinationMaxDeg,
-  );
+  return ORBIT_CLASSES.findIndex((bounds) => covers(bounds, orbit));
 }

@@ -4,6 +4,7 @@ import { formatUtc } from '../../elements/utc.js';
 import { terminalText, wrapWords } from '../../tables/terminal-text.js';
 import { AGE_KNOTS_DAYS } from '../../uncertainty/calibrate-age-knots.js';
 import { differenceSigmaM } from '../../uncertainty/calibrate-growth-law.js';
+import type { SigmaClassBounds } from '../../uncertainty/sigma-table.js';
 import type { AgeBin } from './age-bins.js';
 import { type Coverage, coverageCount, coverageShares, GAUSSIAN_SHARES, sumOfCoverages } from './coverage.js';
 import {
@@ -18,7 +19,6 @@ import {
 import { HELD_BACK_RULE } from './held-back.js';
 import type { FileTally } from './history-counts.js';
 import type { Standing } from './object-result.js';
-import type { OrbitClass } from './orbit-classes.js';
 import type { ClassResult } from './sigma-table-csv.js';
 
 const COLUMNS = 100;
@@ -94,7 +94,13 @@ export function fullReport(summary: CalibrationSummary): string {
     ...coveragePart(summary),
     '',
     ...heading('Classes of orbits'),
+    ...paragraph(
+      'Those of the built-in table; a class without rows keeps its built-in figures in a screening. An orbit ' +
+        'belongs to the first class that covers it.',
+    ),
+    '',
     ...summary.classes.flatMap((each, i) => classPart(each, i + 1, summary.commonErrorFactor)),
+    ...emptyClassesPart(summary.classes),
     ...heading('Bias'),
     ...biasPart(summary),
     '',
@@ -154,7 +160,10 @@ function rowsPart(summary: CalibrationSummary): string[] {
       ['  with the rows of their class: too few pairs', objects['too few pairs']],
       ['  with the rows of their class: biased', objects.biased],
       ['classes with rows', classCount(summary)],
-      ['  without: too few pairs', summary.classes.length - classCount(summary)],
+      [
+        'classes that keep their built-in figures: too few pairs',
+        summary.classes.length - classCount(summary),
+      ],
     ]),
     ...paragraph(
       `An age counts for an object with at least ${OBJECT_DEMAND.minSamples} pairs, ` +
@@ -217,26 +226,23 @@ function classPart({ orbitClass, bins, growth }: ClassResult, number: number, fa
       ],
     ];
   });
+  if (rows.length === 0) return [];
   return [
     `${number}. ${classInWords(orbitClass)}`,
-    ...(growth === undefined ? ['  no rows: too few pairs'] : []),
-    ...(rows.length === 0
-      ? []
-      : aligned([
-          [
-            'age d',
-            'pairs',
-            'disjoint',
-            'objects',
-            ...perAxis('bias'),
-            ...perAxis('diff'),
-            ...perAxis('table'),
-          ],
-          ...rows,
-        ])),
-    ...(growth === undefined ? [] : [`  ${misfit(bins, growth)}`]),
+    ...aligned([
+      ['age d', 'pairs', 'disjoint', 'objects', ...perAxis('bias'), ...perAxis('diff'), ...perAxis('table')],
+      ...rows,
+    ]),
+    growth === undefined ? '  no rows: too few pairs' : `  ${misfit(bins, growth)}`,
     '',
   ];
+}
+
+function emptyClassesPart(classes: readonly ClassResult[]): string[] {
+  const empty = classes.flatMap(({ orbitClass, bins }, i) =>
+    bins.every((bin) => bin === undefined) ? [`  ${i + 1}. ${classInWords(orbitClass)}`] : [],
+  );
+  return empty.length === 0 ? [] : ['Without any pair:', ...empty, ''];
 }
 
 function tableCells(growth: ErrorGrowth | undefined, knot: number, factor: number): string[] {
@@ -333,11 +339,17 @@ function classCount({ classes }: CalibrationSummary): number {
   return classes.filter(({ growth }) => growth !== undefined).length;
 }
 
-function classInWords(orbitClass: OrbitClass): string {
-  return (
-    `Perigee ${orbitClass.perigeeMinKm} to ${orbitClass.perigeeMaxKm} km, eccentricity below ` +
-    `${orbitClass.eccentricityMax}, inclination ${orbitClass.inclinationMinDeg} to ${orbitClass.inclinationMaxDeg} deg`
-  );
+function classInWords(bounds: SigmaClassBounds): string {
+  return [
+    `perigee ${rangeInWords(bounds.perigeeMinKm, bounds.perigeeMaxKm)} km`,
+    ...(Number.isFinite(bounds.eccentricityMax) ? [`eccentricity below ${bounds.eccentricityMax}`] : []),
+    `inclination ${rangeInWords(bounds.inclinationMinDeg, bounds.inclinationMaxDeg)} deg`,
+  ].join(', ');
+}
+
+function rangeInWords(low: number, high: number): string {
+  if (!Number.isFinite(high)) return Number.isFinite(low) ? `from ${low}` : 'of any';
+  return Number.isFinite(low) ? `${low} to ${high}` : `below ${high}`;
 }
 
 function perAxis(name: string): string[] {

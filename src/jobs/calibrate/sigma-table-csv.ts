@@ -1,17 +1,18 @@
+import { CAUTION } from '../../caution.js';
 import { type CsvColumn, fixedCell, textCell } from '../../tables/csv-text.js';
 import { AGE_KNOTS_DAYS } from '../../uncertainty/calibrate-age-knots.js';
+import type { SigmaClassBounds } from '../../uncertainty/sigma-table.js';
 import type { Vector3 } from '../../vector.js';
 import type { AgeBin } from './age-bins.js';
 import { type ErrorGrowth, tableAgesDays, tableSigmaRtnM } from './error-growth.js';
 import type { ObjectResult } from './object-result.js';
-import type { OrbitClass } from './orbit-classes.js';
 
 /** One row of the table that `screen --sigma` reads. */
 export type SigmaTableRow = {
   /** `''` in the row of a class. */
   readonly designator: string;
   /** `undefined` in the row of an object. */
-  readonly orbitClass: OrbitClass | undefined;
+  readonly orbitClass: SigmaClassBounds | undefined;
   readonly ageDays: number;
   readonly sigmaRtnM: Vector3;
   /** Differences measured at this age; 0 at the epoch, where the fit is carried to. */
@@ -20,7 +21,7 @@ export type SigmaTableRow = {
 
 /** What a class of orbits showed. */
 export type ClassResult = {
-  readonly orbitClass: OrbitClass;
+  readonly orbitClass: SigmaClassBounds;
   readonly bins: ReadonlyArray<AgeBin | undefined>;
   /** `undefined` when there is too little for rows. */
   readonly growth: ErrorGrowth | undefined;
@@ -33,7 +34,12 @@ export const SIGMA_TABLE_COLUMNS: readonly CsvColumn<SigmaTableRow>[] = [
     meaning: 'Catalog number; empty in the row of an orbit class',
     cell: (row) => textCell(row.designator),
   },
-  bound('perigee_min_km', 'km', 'Lowest perigee height of the class', (c) => c.perigeeMinKm),
+  bound(
+    'perigee_min_km',
+    'km',
+    'Lowest perigee height of the class; empty for no bound',
+    (c) => c.perigeeMinKm,
+  ),
   bound('perigee_max_km', 'km', 'Perigee height below which the class ends', (c) => c.perigeeMaxKm),
   bound('eccentricity_max', '', 'Eccentricity below which the class ends', (c) => c.eccentricityMax),
   bound('inclination_min_deg', 'deg', 'Lowest inclination of the class', (c) => c.inclinationMinDeg),
@@ -49,6 +55,11 @@ export const SIGMA_TABLE_COLUMNS: readonly CsvColumn<SigmaTableRow>[] = [
     cell: (row) => String(row.samples),
   },
 ];
+
+/** Lines above the header, which readers of the table skip: the caution, and what no column tells. */
+export function sigmaTableHead(commonErrorFactor: number): string {
+  return `# ${CAUTION}\r\n# Measured by pairwise differencing; common-error factor ${commonErrorFactor}\r\n`;
+}
 
 /** The rows of the table: classes first, in their order, then objects by designator. */
 export function* sigmaTableRows(
@@ -66,7 +77,7 @@ export function* sigmaTableRows(
 
 function* rowsOf(
   designator: string,
-  orbitClass: OrbitClass | undefined,
+  orbitClass: SigmaClassBounds | undefined,
   bins: ReadonlyArray<AgeBin | undefined>,
   growth: ErrorGrowth,
   factor: number,
@@ -83,17 +94,22 @@ function* rowsOf(
   }
 }
 
+/** A bound of a class; empty where there is none. */
+export function boundCell(value: number): string {
+  return Number.isFinite(value) ? String(value) : '';
+}
+
 function bound(
   name: string,
   unit: string,
   meaning: string,
-  value: (orbitClass: OrbitClass) => number,
+  value: (orbitClass: SigmaClassBounds) => number,
 ): CsvColumn<SigmaTableRow> {
   return {
     name,
     unit,
     meaning,
-    cell: ({ orbitClass }) => (orbitClass === undefined ? '' : String(value(orbitClass))),
+    cell: ({ orbitClass }) => (orbitClass === undefined ? '' : boundCell(value(orbitClass))),
   };
 }
 

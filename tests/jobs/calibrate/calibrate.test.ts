@@ -3,8 +3,16 @@ import { join } from 'node:path';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { CAUTION } from '../../../src/caution.js';
 import type { ElementSet, UnusedElements } from '../../../src/elements/element-set.js';
+import { orbitOf } from '../../../src/elements/orbit.js';
 import { InputError } from '../../../src/input-error.js';
 import { calibrate } from '../../../src/jobs/calibrate/calibrate.js';
+import { defaultSigmaTable } from '../../../src/uncertainty/default-sigma-table.js';
+import {
+  readSigmaTable,
+  SIGMA_COLUMNS,
+  sigmaAt,
+  sigmaCurveFor,
+} from '../../../src/uncertainty/sigma-table.js';
 import { type ErrorLaw, expectedSigmaRtnM } from '../../synthetic/element-errors.js';
 import { seededRandom } from '../../synthetic/random.js';
 import {
@@ -119,11 +127,24 @@ describe('a history whose errors follow a known law', () => {
     }
   });
 
-  test('the table has the columns that a screening reads, classes before objects', () => {
-    expect(run.results['.csv'].split('\r\n')[0]).toBe(
-      'object_designator,perigee_min_km,perigee_max_km,eccentricity_max,inclination_min_deg,inclination_max_deg,' +
-        'age_d,sigma_r_m,sigma_t_m,sigma_n_m,samples',
-    );
+  test('a screening reads the table: classes, objects, ages', () => {
+    const table = readSigmaTable(run.results['.csv'], 'sigma.csv');
+    expect(table.objects.size).toBe(14);
+    expect(table.classes).toHaveLength(1);
+    const orbit = orbitOf(object(0)[0]);
+    const used = sigmaCurveFor(table, defaultSigmaTable(), { ...orbit, designator: '999' });
+    expect(used.isDefault).toBe(false);
+    expect(sigmaAt(used, 7)[1]).toBe(Number(rows.find((row) => row.age_d === '7')!.sigma_t_m));
+    const own = sigmaCurveFor(table, defaultSigmaTable(), { ...orbit, designator: '310003' });
+    expect(own).toBe(table.objects.get('310003'));
+  });
+
+  test('classes stand before objects, these by designator, below two lines of comment', () => {
+    expect(run.results['.csv'].split('\r\n').slice(0, 3)).toEqual([
+      `# ${CAUTION}`,
+      '# Measured by pairwise differencing; common-error factor 1',
+      SIGMA_COLUMNS.join(','),
+    ]);
     const designators = [...new Set(rows.map((row) => row.object_designator))];
     expect(designators).toEqual(['', ...Array.from({ length: 14 }, (_, i) => String(310_000 + i))]);
   });

@@ -63,9 +63,12 @@ export function resultsIn(folder: string): Record<string, string> {
   );
 }
 
-/** The records of a CSV result by column name; none of those looked at here holds a comma in a cell. */
+/** The records of a CSV result by column name, `#` lines skipped; none of those looked at here holds a comma in a cell. */
 export function csvRecords(text: string): Record<string, string>[] {
-  const [head, ...rows] = text.trimEnd().split('\r\n');
+  const [head, ...rows] = text
+    .trimEnd()
+    .split('\r\n')
+    .filter((line) => !line.startsWith('#'));
   const names = head.split(',');
   return rows.map((row) => {
     const cells = row.split(',');

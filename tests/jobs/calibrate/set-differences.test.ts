@@ -98,18 +98,18 @@ describe('differences of sets', () => {
   test('pairs a set with the one nearest to the knot, and none outside the window', () => {
     const base = syntheticHistory({ ...request, law: NO_ERRORS, days: 1 })[0];
     const at = (day: number): ElementSet => ({ ...base, epochMs: base.epochMs + day * MS_PER_DAY });
-    const { newer } = differencesOf([at(0), at(0.85), at(1.05), at(1.19), at(3.7), at(12.5)]);
+    const { newer } = differencesOf([at(0), at(0.97), at(1.05), at(1.19), at(3.7), at(12.5), at(14.4)]);
     const partnersOfFirst = Object.fromEntries(AGE_KNOTS_DAYS.map((age, knot) => [age, newer[knot]]));
     expect(partnersOfFirst).toEqual({
       0.25: -1,
       0.5: -1,
-      1: 2,
+      1: 1,
       2: -1,
       3: -1,
       5: -1,
       7: -1,
       10: -1,
-      14: 5,
+      14: 6,
       21: -1,
       30: -1,
     });
