@@ -48,6 +48,10 @@ test('they stay small and the text beside them names each', () => {
     expect(readme).toContain(`\`${path}\``);
   }
   expect(bytes).toBeLessThan(2_000_000);
+  for (const { number, missM } of CRAFTED) {
+    const row = readme.split('\n').find((line) => line.includes(`(${number})`));
+    expect(row).toContain(`| ${missM[1]} |`);
+  }
 });
 
 test('the reader finds every set as it was made, and the damaged ones', () => {
