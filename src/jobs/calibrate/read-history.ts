@@ -4,6 +4,8 @@ import type { Partitions } from './partitions.js';
 import { isStorableDesignator } from './set-records.js';
 import type { UnusedSets } from './unused-sets.js';
 
+const SETS_PER_NEWS = 20_000;
+
 /** Reads one file, set by set. */
 export type ReadSets = (path: string) => AsyncIterable<ElementSet | UnusedElements>;
 
@@ -19,13 +21,15 @@ export async function readHistory(
   readSets: ReadSets,
   partitions: Partitions,
   unused: UnusedSets,
-  progress: (fraction: number) => void,
+  progress: (filesDone: number, sets: number) => void,
 ): Promise<FileTally[]> {
   const tallies: FileTally[] = [];
+  let sets = 0;
   for (const [index, file] of files.entries()) {
     const tally = emptyTally(file);
     for await (const item of readSets(file)) {
       tally.read++;
+      if (++sets % SETS_PER_NEWS === 0) progress(index, sets);
       if (!('reason' in item) && isStorableDesignator(item.designator)) {
         partitions.add(item, index);
         continue;
@@ -43,7 +47,7 @@ export async function readHistory(
       tally.rejected++;
     }
     tallies.push(tally);
-    progress((index + 1) / files.length);
+    progress(index + 1, sets);
   }
   return tallies;
 }

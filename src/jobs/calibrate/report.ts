@@ -165,6 +165,9 @@ function rowsPart(summary: CalibrationSummary): string[] {
         summary.classes.length - classCount(summary),
       ],
     ]),
+    ...(objects['own rows'] + classCount(summary) === 0
+      ? ['No row at all: the table is not written, one from before is left as it is.']
+      : []),
     ...paragraph(
       `An age counts for an object with at least ${OBJECT_DEMAND.minSamples} pairs, ` +
         `${OBJECT_DEMAND.minDisjoint} of them disjoint in time; for a class with ${CLASS_DEMAND.minSamples} pairs, ` +

@@ -45,7 +45,7 @@ type Sinks = {
 export async function studyHistory(
   folder: string,
   sinks: Sinks,
-  progress: (fraction: number) => void,
+  progress: (fraction: number, objects: number, maneuvers: number) => void,
 ): Promise<HistoryStudy> {
   const objects: ObjectResult[] = [];
   const maneuvers: ManeuverRow[] = [];
@@ -80,7 +80,7 @@ export async function studyHistory(
       addFittedToClasses(classBins, work);
       uncheckedHeldBack += passHeldBack(work, ownCoverage, sinks);
     }
-    progress((partition + 1) / PARTITION_COUNT);
+    progress((partition + 1) / PARTITION_COUNT, objects.length, maneuvers.length);
   }
   return {
     objects: objects.sort((a, b) => a.designator - b.designator),

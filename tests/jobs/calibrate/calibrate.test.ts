@@ -344,6 +344,7 @@ describe('what is not used', () => {
     expect(results['.csv']).toBe('the table of last night');
     expect(results['.report.txt']).toContain('20 without a partner');
     expect(results['.report.txt']).toContain('the fit is unchecked');
+    expect(results['.report.txt']).toContain('No row at all: the table is not written');
   });
 });
 

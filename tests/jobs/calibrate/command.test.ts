@@ -76,7 +76,7 @@ describe('wideberth calibrate', () => {
     expect(outcome.stdout).toContain(`Read ${sets.length + 2} sets from 2 files:`);
     expect(outcome.stdout).toContain('1 copies, 0 superseded, 1 rejected.');
     expect(outcome.stdout).toContain(CAUTION);
-    expect(outcome.stderr).toContain('1 faulty sets are left out');
+    expect(outcome.stderr).toContain('faulty sets left out: 1, listed in');
     expect(resultsIn(folder)['.unused.csv']).toMatch(/new\.tle,1,300006,rejected,/);
   });
 
