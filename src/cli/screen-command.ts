@@ -1,13 +1,9 @@
 import { availableParallelism } from 'node:os';
 import { resolve } from 'node:path';
+import type { ScreeningVolume } from '../encounters/volume.js';
 import { InputError } from '../input-error.js';
 import { screen } from '../jobs/screen.js';
-import {
-  type JobPorts,
-  LONGEST_WINDOW_DAYS,
-  type ScreeningVolume,
-  type ScreenOptions,
-} from '../jobs/screen-options.js';
+import { type JobPorts, LONGEST_WINDOW_DAYS, type ScreenOptions } from '../jobs/screen-options.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
 import { MAX_HALF_SIZE_KM, type Options, optionsHelp, type Values } from './options.js';
@@ -61,7 +57,7 @@ export const SCREEN_OPTIONS = {
     default: 30,
     above: 0,
     max: 3650,
-    help: 'do not use older element sets',
+    help: 'warn of element sets older than this',
   },
   workers: {
     kind: 'number',

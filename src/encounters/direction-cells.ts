@@ -1,38 +1,163 @@
 /**
- * Cells of directions from the Earth's center: cubes of the unit cube around the unit sphere, so that two
- * directions within one edge of each other lie in the same cell or in touching ones, poles included.
+ * Cells of directions from the Earth's center: rows of latitude, each cut into cells of longitude. Which
+ * cells can hold directions within a given angle of each other is worked out once, from the edges of the
+ * cells, poles included; nothing hangs on the shape of the cells but speed.
  */
 export type DirectionCells = {
-  /** Cells along each axis, with a border of two empty ones so that no neighbor needs a range check. */
-  readonly width: number;
-  readonly cellsPerUnit: number;
+  readonly count: number;
+  /** Row of each band of equal height of the unit sphere. */
+  readonly rowOfBand: Int32Array;
+  readonly firstCell: Int32Array;
+  /** Cells per octant of longitude, by row. */
+  readonly cellsPerOctant: Float64Array;
+  readonly lastCell: Int32Array;
+  /** Edges of the rows, radians of latitude; a row without bands is empty. */
+  readonly south: Float64Array;
+  readonly north: Float64Array;
 };
 
-/** @param reach largest chord between two directions that must lie in touching cells */
-export function directionCells(reach: number): DirectionCells {
-  const cellsPerUnit = 1 / Math.min(reach, 2);
-  return { cellsPerUnit, width: Math.floor(2 * cellsPerUnit) + 5 };
+/** For each cell a list of cells: those of cell c are `cells` from `start[c]` to before `start[c + 1]`. */
+export type CellLists = { readonly start: Int32Array; readonly cells: Int32Array };
+
+const BANDS = 4096;
+/** Height of a row and width of a cell as parts of the angle between two objects that can meet. */
+const ROW_PART = 1;
+const CELL_PART = 1;
+/** Covers the rounding of directions and edges, radians. */
+const EDGE_ANGLE = 1e-9;
+
+/** @param angle the angle that cells are laid out for, radians */
+export function directionCells(angle: number): DirectionCells {
+  const rows = Math.max(1, Math.round(Math.PI / (ROW_PART * angle)));
+  const rowOfBand = new Int32Array(BANDS + 1);
+  const south = new Float64Array(rows).fill(Number.POSITIVE_INFINITY);
+  const north = new Float64Array(rows).fill(Number.NEGATIVE_INFINITY);
+  for (let band = 0; band < BANDS; band++) {
+    const middle = Math.asin((2 * band + 1) / BANDS - 1);
+    const row = Math.floor((middle / Math.PI + 0.5) * rows);
+    rowOfBand[band] = row;
+    south[row] = Math.min(south[row], Math.asin((2 * band) / BANDS - 1));
+    north[row] = Math.max(north[row], Math.asin((2 * band + 2) / BANDS - 1));
+  }
+  rowOfBand[BANDS] = rows - 1;
+  const firstCell = new Int32Array(rows);
+  const lastCell = new Int32Array(rows);
+  const cellsPerOctant = new Float64Array(rows);
+  let count = 0;
+  for (let row = 0; row < rows; row++) {
+    const width = CELL_PART * longitudeReach(angle, Math.max(-south[row], north[row]));
+    const cells = Math.max(1, Math.floor((2 * Math.PI) / width));
+    firstCell[row] = count;
+    cellsPerOctant[row] = cells / 8;
+    count += cells;
+    lastCell[row] = count - 1;
+  }
+  return { count, rowOfBand, firstCell, cellsPerOctant, lastCell, south, north };
 }
 
-/** Cell of a direction given as a unit vector. */
-export function cellOf(cells: DirectionCells, x: number, y: number, z: number): number {
-  const { cellsPerUnit: n, width } = cells;
-  const ix = Math.floor((x + 1) * n) + 2;
-  const iy = Math.floor((y + 1) * n) + 2;
-  const iz = Math.floor((z + 1) * n) + 2;
-  return (iz * width + iy) * width + ix;
+/**
+ * Cell of a direction.
+ *
+ * @param x, y any multiple of the first two components of the unit vector
+ * @param sinLatitude third component of the unit vector
+ */
+export function cellOf(cells: DirectionCells, x: number, y: number, sinLatitude: number): number {
+  const row = cells.rowOfBand[((sinLatitude + 1) * (BANDS / 2)) | 0];
+  const cell = cells.firstCell[row] + ((octantsOf(x, y) * cells.cellsPerOctant[row]) | 0);
+  const last = cells.lastCell[row];
+  return cell > last ? last : cell;
 }
 
-/** Offsets of the 13 cells that, with their opposites, touch a cell. */
-export function halfNeighborOffsets(width: number): Int32Array {
-  return neighborOffsets(width, 1).filter((offset) => offset > 0);
+/** Longitude in octants, 0 to 8, up to a wave of some 0.005: rises with longitude, and costs no arc tangent. */
+function octantsOf(x: number, y: number): number {
+  const absX = Math.abs(x);
+  const absY = Math.abs(y);
+  const tangent = Math.min(absX, absY) / Math.max(absX, absY);
+  let octants = tangent * (1.273 - 0.273 * tangent);
+  if (absY > absX) octants = 2 - octants;
+  if (x < 0) octants = 4 - octants;
+  return y < 0 ? 8 - octants : octants;
 }
 
-/** Offsets of all cells up to `rings` away, the cell itself included, in rising order. */
-export function neighborOffsets(width: number, rings: number): Int32Array {
-  const offsets: number[] = [];
-  for (let z = -rings; z <= rings; z++)
-    for (let y = -rings; y <= rings; y++)
-      for (let x = -rings; x <= rings; x++) offsets.push((z * width + y) * width + x);
-  return Int32Array.from(offsets);
+/**
+ * Cells that can hold a direction within `angle` of one in the cell, itself included, in rising order.
+ *
+ * @param onlyLater only those with a higher number: each pair of cells once
+ */
+export function cellsWithin(cells: DirectionCells, angle: number, onlyLater = false): CellLists {
+  const near: Set<number>[] = Array.from({ length: cells.count }, () => new Set());
+  const rows = cells.firstCell.length;
+  const reach = angle + EDGE_ANGLE;
+  for (let row = 0; row < rows; row++) {
+    const edges = cellEdges(cells, row);
+    for (let other = 0; other < rows; other++) {
+      if (!(cells.south[row] - cells.north[other] <= reach && cells.south[other] - cells.north[row] <= reach))
+        continue;
+      // The circle around the direction that is further from its pole is the narrower one, and holds for both.
+      const latitude = Math.min(
+        Math.max(-cells.south[row], cells.north[row]),
+        Math.max(-cells.south[other], cells.north[other]),
+      );
+      const turn = longitudeReach(reach, latitude) + EDGE_ANGLE;
+      for (let c = 0; c + 1 < edges.length; c++) {
+        const cell = cells.firstCell[row] + c;
+        for (const found of cellsBetween(cells, other, edges[c] - turn, edges[c + 1] + turn)) {
+          near[cell].add(found);
+          near[found].add(cell);
+        }
+      }
+    }
+  }
+  const start = new Int32Array(cells.count + 1);
+  const lists = near.map((set, cell) =>
+    [...set].filter((found) => !onlyLater || found > cell).sort((a, b) => a - b),
+  );
+  for (let cell = 0; cell < cells.count; cell++) start[cell + 1] = start[cell] + lists[cell].length;
+  return { start, cells: Int32Array.from(lists.flat()) };
+}
+
+/** Half the range of longitudes of the circle of radius `angle` around a direction at `latitude`. */
+function longitudeReach(angle: number, latitude: number): number {
+  if (angle + latitude >= Math.PI / 2 - EDGE_ANGLE) return Math.PI;
+  return Math.asin(Math.min(1, Math.sin(angle) / Math.cos(latitude)));
+}
+
+/** Longitudes of the edges of a row's cells, from 0 to 2 pi. */
+function cellEdges(cells: DirectionCells, row: number): number[] {
+  const count = cells.lastCell[row] - cells.firstCell[row] + 1;
+  return Array.from({ length: count + 1 }, (_, c) => {
+    if (c === 0) return 0;
+    if (c === count) return 2 * Math.PI;
+    let low = 0;
+    let high = 2 * Math.PI;
+    for (let iteration = 0; iteration < 50; iteration++) {
+      const middle = (low + high) / 2;
+      if (octantsOf(Math.cos(middle), Math.sin(middle)) * cells.cellsPerOctant[row] < c) low = middle;
+      else high = middle;
+    }
+    return (low + high) / 2;
+  });
+}
+
+/** Cells of a row that a range of longitudes touches. */
+function cellsBetween(cells: DirectionCells, row: number, west: number, east: number): number[] {
+  const first = cells.firstCell[row];
+  const count = cells.lastCell[row] - first + 1;
+  if (east - west >= 2 * Math.PI) return Array.from({ length: count }, (_, c) => first + c);
+  const cellAt = (longitude: number) =>
+    Math.min(
+      count - 1,
+      Math.floor(octantsOf(Math.cos(longitude), Math.sin(longitude)) * cells.cellsPerOctant[row]),
+    );
+  const found: number[] = [];
+  const last = cellAt(east);
+  for (let c = cellAt(west); ; c = (c + 1) % count) {
+    found.push(first + c);
+    if (c === last && (found.length > 1 || count === 1 || spansLittle(west, east))) return found;
+    if (found.length === count) return found;
+  }
+}
+
+function spansLittle(west: number, east: number): boolean {
+  return east - west < Math.PI;
 }

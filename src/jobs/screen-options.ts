@@ -1,13 +1,8 @@
-import type { Vector3 } from '../vector.js';
+import type { ScreeningVolume } from '../encounters/volume.js';
 import type { Log } from './log.js';
 
 /** The longest window that can be screened, days. */
 export const LONGEST_WINDOW_DAYS = 60;
-
-/** What counts as close: a sphere of a miss distance, or a volume in RTN of the first object (CCSDS 508 terms). */
-export type ScreeningVolume =
-  | { readonly shape: 'SPHERE'; readonly missKm: number }
-  | { readonly shape: 'BOX' | 'ELLIPSOID'; readonly halfSizeRtnKm: Vector3 };
 
 /** Everything a screening depends on; checked and complete, paths as the process can open them (`-`: standard input). */
 export type ScreenOptions = {
@@ -40,11 +35,21 @@ export type ScreenOptions = {
   readonly top: number;
 };
 
+/** How far a job is, for someone who waits. */
+export type Progress = {
+  /** What is being done, one or two words. */
+  readonly stage: string;
+  /** From 0 to 1 within the stage. */
+  readonly fraction: number;
+  /** What has come of it so far, such as objects, simulated days and encounters. */
+  readonly detail: string;
+};
+
 /** The outside world of a job, so that tests can put their own in its place. */
 export type JobPorts = {
   readonly log: Log;
-  /** Tells how far the job is, `fraction` from 0 to 1 within the named stage. */
-  readonly progress: (stage: string, fraction: number) => void;
+  /** Tells how far the job is. */
+  readonly progress: (progress: Progress) => void;
   /** Registers what must be undone if the process is asked to stop; the returned function takes it back. */
   readonly onStop: (undo: () => void) => () => void;
   /** Wall clock, milliseconds since 1970-01-01; for `run.json` and the lock only, never for results. */

@@ -24,30 +24,36 @@ const NEAREST_WITHOUT_PROBABILITY = 3;
 /** Age of one object's elements. */
 export type ElementAge = { readonly designator: string; readonly ageDays: number };
 
+/** All conjunctions in the order of `rankConjunctions`; rows are made only where they are shown. */
+export type RankedConjunctions = {
+  readonly count: number;
+  readonly at: (index: number) => Conjunction;
+};
+
 /**
  * The first `limit` conjunctions as a table of 100 columns, then the nearest of those that have no
  * probability and so stand at the end of the ranking. Ends with a line break.
  *
- * @param ranked all conjunctions, in the order of `rankConjunctions`
  */
-export function formatConjunctionTable(ranked: readonly Conjunction[], limit: number): string {
-  if (ranked.length === 0) return 'No conjunctions in the window.\n';
-  const shown = Math.min(limit, ranked.length);
-  let firstWithout = ranked.length;
-  while (firstWithout > 0 && !hasProbability(ranked[firstWithout - 1])) firstWithout--;
-  const without = ranked.length - firstWithout;
+export function formatConjunctionTable(ranked: RankedConjunctions, limit: number): string {
+  const { count, at } = ranked;
+  if (count === 0) return 'No conjunctions in the window.\n';
+  const shown = Math.min(limit, count);
+  let firstWithout = count;
+  while (firstWithout > 0 && !hasProbability(at(firstWithout - 1))) firstWithout--;
+  const without = count - firstWithout;
   const firstNearest = Math.max(firstWithout, shown);
-  const nearest = ranked.slice(firstNearest, firstNearest + NEAREST_WITHOUT_PROBABILITY);
+  const nearest = rowsFrom(ranked, firstNearest, firstNearest + NEAREST_WITHOUT_PROBABILITY);
 
   const rankColumns = Math.max(4, String(firstNearest + nearest.length).length);
   const row = (conjunction: Conjunction, index: number) => tableRow(conjunction, index + 1, rankColumns);
   const lines = [
-    shown < ranked.length
-      ? `The first ${shown} of ${ranked.length} conjunctions, by collision probability:`
-      : `${counted(ranked.length, 'conjunction')}, by collision probability:`,
+    shown < count
+      ? `The first ${shown} of ${count} conjunctions, by collision probability:`
+      : `${counted(count, 'conjunction')}, by collision probability:`,
     '',
     tableHead(rankColumns),
-    ...ranked.slice(0, shown).flatMap(row),
+    ...rowsFrom(ranked, 0, shown).flatMap(row),
   ];
   if (nearest.length > 0)
     lines.push(
@@ -107,6 +113,10 @@ export function formatElementAges(group: string, ages: readonly ElementAge[]): s
 /** The caution on a line of its own, unbroken so that a search finds it. Ends with a line break. */
 export function formatCaution(): string {
   return `${CAUTION}\n`;
+}
+
+function rowsFrom({ count, at }: RankedConjunctions, from: number, to: number): Conjunction[] {
+  return Array.from({ length: Math.max(0, Math.min(to, count) - from) }, (_, i) => at(from + i));
 }
 
 function tableHead(rankColumns: number): string {

@@ -1,6 +1,7 @@
 import stringWidth from 'string-width';
 import { describe, expect, test } from 'vitest';
 import { CAUTION } from '../../src/caution.js';
+import type { Conjunction } from '../../src/tables/conjunction.js';
 import {
   formatCaution,
   formatConjunctionTable,
@@ -10,12 +11,16 @@ import {
 import { padOrCut, terminalText, wrapWords } from '../../src/tables/terminal-text.js';
 import { EXAMPLE_TCA_MS, exampleConjunction, exampleObject } from './example-conjunction.js';
 
+function tableOf(ranked: readonly Conjunction[], limit: number): string {
+  return formatConjunctionTable({ count: ranked.length, at: (index) => ranked[index] }, limit);
+}
+
 const named = (name: string) => exampleConjunction({ object1: exampleObject({ name }) });
 
 describe('the table of conjunctions', () => {
   test('says when, who, how close, how likely and why to distrust it', () => {
     const conjunction = exampleConjunction({ remarks: ['stale-elements', 'slow-encounter'] });
-    expect(formatConjunctionTable([conjunction], 10)).toBe(`1 conjunction, by collision probability:
+    expect(tableOf([conjunction], 10)).toBe(`1 conjunction, by collision probability:
 
 Rank  TCA (UTC)            Objects                         Miss m   Radial m  Speed m/s  Probability
    1  2026-12-02 03:14:16  799990001 LARKSPUR 1             715.7       27.4    14762.1      1.2E-05
@@ -37,7 +42,7 @@ at closest approach.
       '',
       'ｆｕｌｌ　ｗｉｄｔｈ',
     ];
-    const text = formatConjunctionTable(names.map(named), 10);
+    const text = tableOf(names.map(named), 10);
     const lines = text.split('\n').filter((line) => line !== '');
     for (const line of lines) expect(stringWidth(line), line).toBeLessThanOrEqual(100);
     // The figures stand under their heads: the lines of the encounters end in the same column.
@@ -47,7 +52,7 @@ at closest approach.
 
   test('shows the first rows and says how many there are', () => {
     const many = Array.from({ length: 30 }, (_, i) => exampleConjunction({ tcaMs: EXAMPLE_TCA_MS + i }));
-    const text = formatConjunctionTable(many, 5);
+    const text = tableOf(many, 5);
     expect(text).toContain('The first 5 of 30 conjunctions');
     expect(text.match(/^ {3}\d {2}2026/gm)).toHaveLength(5);
     expect(text).not.toContain('without a probability');
@@ -65,17 +70,17 @@ at closest approach.
         }),
       ),
     ];
-    const text = formatConjunctionTable(ranked, 2);
+    const text = tableOf(ranked, 2);
     expect(text).toContain('5 conjunctions without a probability at the end of the ranking, nearest first:');
     expect(text).toMatch(/^12001 .* 10\.0 .* none$/m);
     expect(text).toMatch(/^12003 .* 12\.0 .* none$/m);
     expect(text).not.toMatch(/^12004/m);
     for (const line of text.split('\n')) expect(stringWidth(line)).toBeLessThanOrEqual(100);
-    expect(formatConjunctionTable(ranked.slice(-1), 2)).not.toContain('without a probability');
+    expect(tableOf(ranked.slice(-1), 2)).not.toContain('without a probability');
   });
 
   test('lets no name steer the terminal', () => {
-    const text = formatConjunctionTable([named('\u001B[31mRED\u001B[0m\r\n\tX\u202EY\u009B2J\u2028Z')], 10);
+    const text = tableOf([named('\u001B[31mRED\u001B[0m\r\n\tX\u202EY\u009B2J\u2028Z')], 10);
     // biome-ignore lint/suspicious/noControlCharactersInRegex: they are what must not be there
     expect(text).not.toMatch(/[\u0000-\u0009\u000B-\u001F\u007F-\u009F\u2028\u202A-\u202E]/);
     expect(text).toContain('?[31mRED?[0m??');
@@ -83,7 +88,7 @@ at closest approach.
   });
 
   test('says so when there is nothing', () => {
-    expect(formatConjunctionTable([], 10)).toBe('No conjunctions in the window.\n');
+    expect(tableOf([], 10)).toBe('No conjunctions in the window.\n');
   });
 });
 

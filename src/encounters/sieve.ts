@@ -1,0 +1,81 @@
+import KDBush from 'kdbush';
+import { type SatRec, sgp4 } from 'satellite.js';
+import { EARTH_RADIUS_KM } from '../elements/orbit.js';
+
+/** Distances from the Earth's center between which an object stays during a window, km. */
+export type RadiusBand = { readonly lowKm: number; readonly highKm: number };
+
+const MS_PER_MINUTE = 60_000;
+/** Mean elements are looked at this often; in between they drift by less than the pads. */
+const LONGEST_GAP_MS = 2 * 86_400_000;
+/**
+ * What J2 and J3 swing the radius about the mean ellipse: short periods up to 6 km, the long-period term of
+ * J3 up to 9 km. Twice that, and for deep-space orbits room for the lunar-solar terms.
+ */
+const NEAR_EARTH_PAD_KM = 30;
+const DEEP_SPACE_PAD_KM = 200;
+
+/**
+ * The band of one object: from the mean semi-major axis and eccentricity that SGP4 gives along the window.
+ *
+ * @returns `undefined` where SGP4 gives no state at one of the times: such an object is not sieved
+ */
+export function radiusBand(
+  record: SatRec,
+  epochMs: number,
+  startMs: number,
+  endMs: number,
+): RadiusBand | undefined {
+  let lowKm = Number.POSITIVE_INFINITY;
+  let highKm = 0;
+  const gaps = Math.max(1, Math.ceil((endMs - startMs) / LONGEST_GAP_MS));
+  for (let k = 0; k <= gaps; k++) {
+    const timeMs = startMs + ((endMs - startMs) * k) / gaps;
+    const state = sgp4(record, (timeMs - epochMs) / MS_PER_MINUTE);
+    if (state === null || !(record.tempa > 0)) return undefined;
+    const { am, em } = state.meanElements;
+    lowKm = Math.min(lowKm, am * (1 - em) * EARTH_RADIUS_KM);
+    highKm = Math.max(highKm, am * (1 + em) * EARTH_RADIUS_KM);
+  }
+  const padKm = record.method === 'd' ? DEEP_SPACE_PAD_KM : NEAR_EARTH_PAD_KM;
+  return { lowKm: lowKm - padKm, highKm: highKm + padKm };
+}
+
+/**
+ * Which objects can come within reach of any primary at all: those whose band comes within `reachKm` of the
+ * band of a primary. A two-dimensional range query (low end, high end) for each stretch of radius that the
+ * primaries cover.
+ *
+ * @param bands of the objects; those without one always pass
+ * @param primaryBands of the primaries; one without a band lets every object pass
+ * @returns 1 for each object that passes
+ */
+export function sieve(
+  bands: readonly (RadiusBand | undefined)[],
+  primaryBands: readonly (RadiusBand | undefined)[],
+  reachKm: number,
+): Uint8Array {
+  const passes = new Uint8Array(bands.length);
+  if (primaryBands.includes(undefined) || bands.length === 0) return passes.fill(1);
+  const index = new KDBush(bands.length);
+  for (const band of bands) index.add(band?.lowKm ?? 0, band?.highKm ?? Number.MAX_VALUE);
+  index.finish();
+  for (const { lowKm, highKm } of joined(primaryBands as readonly RadiusBand[])) {
+    for (const i of index.range(0, lowKm - reachKm, highKm + reachKm, Number.MAX_VALUE)) passes[i] = 1;
+  }
+  bands.forEach((band, i) => {
+    if (band === undefined) passes[i] = 1;
+  });
+  return passes;
+}
+
+/** Overlapping bands as one. */
+function joined(bands: readonly RadiusBand[]): RadiusBand[] {
+  const stretches: { lowKm: number; highKm: number }[] = [];
+  for (const { lowKm, highKm } of [...bands].sort((a, b) => a.lowKm - b.lowKm)) {
+    const last = stretches.at(-1);
+    if (last !== undefined && lowKm <= last.highKm) last.highKm = Math.max(last.highKm, highKm);
+    else stretches.push({ lowKm, highKm });
+  }
+  return stretches;
+}

@@ -1,0 +1,115 @@
+import type { SearchObjects } from '../encounters/search-problem.js';
+import type { ClosestApproach } from '../encounters/search-slab.js';
+import { passageThrough } from '../encounters/volume.js';
+import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
+import type { OrbitState } from '../ephemeris/state.js';
+import { assessInFull } from '../probability/assess-encounter.js';
+import { discProbability } from '../probability/foster.js';
+import { remarksOf } from '../probability/remarks.js';
+import { covarianceRtnM2, isBeyond, sigmaAt } from '../uncertainty/sigma-table.js';
+import { type EncounterRecords, extendRecords, FIELD } from './encounter-records.js';
+import { bitsOfRemarks } from './remark-bits.js';
+import type { SearchPlan } from './search-plan.js';
+
+const MS_PER_DAY = 86_400_000;
+
+const states = new Float64Array(12);
+
+/**
+ * Assesses closest approaches: screening volume, uncertainty, probability. Those that do not enter the
+ * volume are left out.
+ *
+ * @param records takes one record for each encounter, in the order of the approaches
+ */
+export function assessApproaches(
+  approaches: readonly ClosestApproach[],
+  objects: SearchObjects,
+  plan: SearchPlan,
+  records: EncounterRecords,
+): void {
+  for (const approach of approaches) assessApproach(approach, objects, plan, records);
+}
+
+function assessApproach(
+  { first, second, tcaMs, missKm }: ClosestApproach,
+  objects: SearchObjects,
+  plan: SearchPlan,
+  records: EncounterRecords,
+): void {
+  const object1 = { record: objects.records[first], epochMs: objects.epochMs[first] };
+  const object2 = { record: objects.records[second], epochMs: objects.epochMs[second] };
+  sgp4StateAt(object1.record, object1.epochMs, tcaMs, states, 0);
+  sgp4StateAt(object2.record, object2.epochMs, tcaMs, states, 6);
+  const speedKmPerS = Math.hypot(states[9] - states[3], states[10] - states[4], states[11] - states[5]);
+  let entryMs = Number.NaN;
+  let exitMs = Number.NaN;
+  if (plan.volume.shape !== 'SPHERE') {
+    const fromMs = Math.max(plan.startMs, objects.validFromMs[first], objects.validFromMs[second]);
+    const toMs = Math.min(plan.endMs, objects.validToMs[first], objects.validToMs[second]);
+    const passage = passageThrough(object1, object2, tcaMs, speedKmPerS, plan.volume, fromMs, toMs);
+    if (passage === undefined) return;
+    ({ entryMs, exitMs } = passage);
+  }
+  const age1 = (tcaMs - object1.epochMs) / MS_PER_DAY;
+  const age2 = (tcaMs - object2.epochMs) / MS_PER_DAY;
+  const curve1 = plan.curves[plan.curveOf[first]];
+  const curve2 = plan.curves[plan.curveOf[second]];
+  const sigma1 = sigmaAt(curve1, age1);
+  const sigma2 = sigmaAt(curve2, age2);
+  const hardBodyRadiusM = plan.hardBodyRadiusM[first] + plan.hardBodyRadiusM[second];
+  const assessed = assessInFull({
+    object1: { ...stateFrom(0), covarianceRtnM2: covarianceRtnM2(sigma1) },
+    object2: { ...stateFrom(6), covarianceRtnM2: covarianceRtnM2(sigma2) },
+    hardBodyRadiusM,
+  });
+  const { plane } = assessed;
+  const scaled = (factor: number) =>
+    plane === undefined
+      ? Number.NaN
+      : discProbability(
+          plane.sigmaXM * factor,
+          plane.sigmaYM * factor,
+          plane.missXM,
+          plane.missYM,
+          hardBodyRadiusM,
+        );
+  const at = extendRecords(records, 1);
+  const { data } = records;
+  data[at + FIELD.first] = first;
+  data[at + FIELD.second] = second;
+  data[at + FIELD.tcaMs] = tcaMs;
+  data.set(states, at + FIELD.state1);
+  data[at + FIELD.missKm] = missKm;
+  data[at + FIELD.probability] = assessed.collisionProbability ?? Number.NaN;
+  data[at + FIELD.probabilityFoster] = assessed.collisionProbability ?? Number.NaN;
+  data[at + FIELD.probabilityMax] = assessed.collisionProbabilityMax ?? Number.NaN;
+  data[at + FIELD.mahalanobis] = assessed.mahalanobisDistance ?? Number.NaN;
+  data[at + FIELD.peakScale] = assessed.peakSigmaScale ?? Number.NaN;
+  data[at + FIELD.probabilityAtHalf] = scaled(0.5);
+  data[at + FIELD.probabilityAtTwice] = scaled(2);
+  data[at + FIELD.method] = plane === undefined ? 0 : 1;
+  data[at + FIELD.entryMs] = entryMs;
+  data[at + FIELD.exitMs] = exitMs;
+  data[at + FIELD.remarks] = bitsOfRemarks(
+    remarksOf({
+      relativeSpeedMPerS: 1000 * speedKmPerS,
+      missDistanceM: 1000 * missKm,
+      hardBodyRadiusM,
+      hasProbability: plane !== undefined,
+      isStraight: undefined,
+      peakSigmaScale: assessed.peakSigmaScale,
+      elementAgeDays: [age1, age2],
+      maxAgeDays: plan.maxAgeDays,
+      hasDefaultSigma: [curve1.isDefault, curve2.isDefault],
+      isBeyondSigmaTable: [isBeyond(curve1, age1), isBeyond(curve2, age2)],
+      hasDefaultRadius: [plan.hasDefaultRadius[first] === 1, plan.hasDefaultRadius[second] === 1],
+    }),
+  );
+}
+
+function stateFrom(offset: number): OrbitState {
+  return {
+    positionKm: [states[offset], states[offset + 1], states[offset + 2]],
+    velocityKmPerS: [states[offset + 3], states[offset + 4], states[offset + 5]],
+  };
+}

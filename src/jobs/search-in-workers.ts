@@ -1,0 +1,150 @@
+import { Worker } from 'node:worker_threads';
+import pLimit from 'p-limit';
+import { slabCount } from '../encounters/search-slab.js';
+import { SLAB_S } from '../ephemeris/node-spacing.js';
+import {
+  createEncounterRecords,
+  type EncounterRecords,
+  extendRecords,
+  FIELD,
+  FIELDS,
+} from './encounter-records.js';
+import type { JobPorts } from './screen-options.js';
+import type { SearchPlan } from './search-plan.js';
+import type { SlabAnswer } from './search-worker.js';
+
+export type SearchOutcome = {
+  /** Every encounter once, in the order of the slabs and of TCA within them. */
+  readonly records: EncounterRecords;
+  /** Objects that SGP4 gave up on in the window, with the last time that has a state. */
+  readonly lastMsOf: ReadonlyMap<number, number>;
+  /** What the search did, for the record of the run. */
+  readonly slabs: number;
+  readonly shortestStepS: number;
+  readonly longestStepS: number;
+  readonly worstDefectKm: number;
+  readonly pairsRefined: number;
+};
+
+const MS_PER_DAY = 86_400_000;
+/** Minima of one pair closer than this in time are one that two slabs found. */
+const SAME_MS = 1;
+
+/**
+ * Searches the window slab by slab in worker threads. Slabs do not depend on the number of workers and are
+ * put together in their order, so that the outcome is the same for any number; each worker has one slab in
+ * hand at a time, which bounds memory.
+ */
+export async function searchInWorkers(
+  plan: SearchPlan,
+  workers: number,
+  ports: Pick<JobPorts, 'onStop' | 'progress'>,
+): Promise<SearchOutcome> {
+  const slabs = slabCount(plan);
+  const answers: (SlabAnswer | undefined)[] = new Array(slabs).fill(undefined);
+  const limit = pLimit(Math.max(1, Math.min(workers, slabs)));
+  const idle: Worker[] = [];
+  const all: Worker[] = [];
+  const stop = () => {
+    limit.clearQueue();
+    for (const worker of all) worker.terminate();
+  };
+  const forget = ports.onStop(stop);
+  let done = 0;
+  let encounters = 0;
+  try {
+    await Promise.all(
+      answers.map((_, slab) =>
+        limit(async () => {
+          let worker = idle.pop();
+          if (worker === undefined) {
+            worker = new Worker(new URL('./search-worker.js', import.meta.url), { workerData: plan });
+            all.push(worker);
+          }
+          const answer = await ask(worker, slab);
+          idle.push(worker);
+          answers[slab] = answer;
+          done++;
+          encounters += answer.records.length / FIELDS;
+          const days = Math.min(done * SLAB_S * 1000, plan.endMs - plan.startMs) / MS_PER_DAY;
+          ports.progress({
+            stage: 'search',
+            fraction: done / slabs,
+            detail: `${plan.hardBodyRadiusM.length} objects, ${days.toFixed(1)} of ${((plan.endMs - plan.startMs) / MS_PER_DAY).toFixed(1)} d, ${encounters} encounters`,
+          });
+        }),
+      ),
+    );
+  } finally {
+    forget();
+    stop();
+  }
+  return joined(answers as SlabAnswer[], plan.hardBodyRadiusM.length);
+}
+
+function ask(worker: Worker, slab: number): Promise<SlabAnswer> {
+  return new Promise((resolve, reject) => {
+    const settle = () => {
+      worker.off('message', onMessage);
+      worker.off('error', onError);
+      worker.off('exit', onExit);
+    };
+    const onMessage = (answer: SlabAnswer) => {
+      settle();
+      resolve(answer);
+    };
+    const onError = (error: Error) => {
+      settle();
+      reject(error);
+    };
+    const onExit = (status: number) => {
+      settle();
+      reject(new Error(`a search worker ended with status ${status}`));
+    };
+    worker.on('message', onMessage);
+    worker.on('error', onError);
+    worker.on('exit', onExit);
+    worker.postMessage(slab);
+  });
+}
+
+function joined(answers: readonly SlabAnswer[], objectCount: number): SearchOutcome {
+  const lastMsOf = new Map<number, number>();
+  for (const { failures } of answers) {
+    for (const { object, lastMs } of failures) {
+      lastMsOf.set(object, Math.min(lastMs, lastMsOf.get(object) ?? Number.POSITIVE_INFINITY));
+    }
+  }
+  const records = createEncounterRecords(
+    answers.reduce((sum, each) => sum + each.records.length / FIELDS, 1),
+  );
+  const edge = new Map<number, number>();
+  for (const { records: data } of answers) {
+    const latest = new Map<number, number>();
+    for (let from = 0; from < data.length; from += FIELDS) {
+      const first = data[from + FIELD.first];
+      const second = data[from + FIELD.second];
+      const tcaMs = data[from + FIELD.tcaMs];
+      // An object that SGP4 gave up on once is gone, even where later states come out again.
+      if (tcaMs > (lastMsOf.get(first) ?? Number.POSITIVE_INFINITY)) continue;
+      if (tcaMs > (lastMsOf.get(second) ?? Number.POSITIVE_INFINITY)) continue;
+      const key = first * objectCount + second;
+      const before = edge.get(key);
+      latest.set(key, tcaMs);
+      if (before !== undefined && tcaMs - before <= SAME_MS) continue;
+      const at = extendRecords(records, 1);
+      records.data.set(data.subarray(from, from + FIELDS), at);
+    }
+    edge.clear();
+    for (const [key, tcaMs] of latest) edge.set(key, tcaMs);
+  }
+  return {
+    records,
+    lastMsOf,
+    slabs: answers.length,
+    shortestStepS: Math.min(...answers.map((answer) => answer.stepS)),
+    longestStepS: Math.max(...answers.map((answer) => answer.stepS)),
+    worstDefectKm: Math.max(...answers.map((answer) => answer.worstDefectKm)),
+    pairsRefined: answers.reduce((sum, answer) => sum + answer.pairsRefined, 0),
+  };
+}
