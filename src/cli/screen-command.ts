@@ -49,7 +49,7 @@ export const SCREEN_OPTIONS = {
     help: 'its shape, BOX or ELLIPSOID',
     defaultInWords: 'BOX',
   },
-  objects: { kind: 'path', value: 'CSV', help: 'per object: name, radius, maneuverable, companions' },
+  objects: { kind: 'path', value: 'CSV', help: 'per object: name, radius, maneuverable' },
   sigma: { kind: 'path', value: 'CSV', help: 'one-sigma table by kind of orbit and element age' },
   'max-age-days': {
     kind: 'number',
