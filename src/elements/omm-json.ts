@@ -4,7 +4,6 @@ import { decodeText } from './file-bytes.js';
 import { type OmmValue, readOmm, rejectedOmm } from './omm.js';
 import { quoted } from './rejection.js';
 
-const LF = 0x0a;
 const BLANK = 0x20;
 const QUOTE = 0x22;
 const COMMA = 0x2c;
@@ -110,8 +109,7 @@ export function ommJsonDecoder(file: string, options: ReadOptions): Decoder {
       if (inString) {
         if (escaped) escaped = false;
         else if (byte === BACKSLASH) escaped = true;
-        // A string cannot run over a line end: a quote is missing.
-        else if (byte === QUOTE || byte === LF) inString = false;
+        else if (byte === QUOTE) inString = false;
       } else if (byte === QUOTE) {
         inString = true;
       } else if (byte === OPENING_BRACE) {
@@ -188,7 +186,12 @@ function endOfRecords(bytes: Buffer): number {
 
 function jsonFault(text: string): string {
   const errors: jsonc.ParseError[] = [];
-  jsonc.parse(text, errors, { disallowComments: true });
+  try {
+    jsonc.parse(text, errors, { disallowComments: true });
+  } catch (error) {
+    if (error instanceof RangeError) return 'nested too deeply';
+    throw error;
+  }
   const first = errors[0];
   if (first === undefined) return 'no closing brace';
   return `${jsonc.printParseErrorCode(first.error)} at character ${first.offset + 1}`;

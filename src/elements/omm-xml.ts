@@ -7,11 +7,19 @@ import { quoted, Rejection } from './rejection.js';
 const LF = 0x0a;
 const CR = 0x0d;
 const BLANK = 0x20;
+const EXCLAMATION_MARK = 0x21;
+const SLASH = 0x2f;
 const OPENING_ANGLE = 0x3c;
+const CLOSING_ANGLE = 0x3e;
+const QUESTION_MARK = 0x3f;
 /** Far more than a message needs; a missing end tag must not swallow the file. */
-const LONGEST_ELEMENT_BYTES = 1 << 20;
-const LONGEST_SCRAP_CHARACTERS = 1000;
-const TAG = /^<(\/?)([A-Za-z_][\w.:-]*)(?:\s[\s\S]*)?(?=>$)/;
+const LONGEST_MESSAGE_BYTES = 1 << 20;
+const LONGEST_SCRAP_BYTES = 1000;
+const TAG_NAME = /^<\/?([A-Za-z_][\w.:-]*)/;
+const COMMENT_START = '<!--';
+const COMMENT_END = '-->';
+const MESSAGE_START = '<omm';
+const MESSAGE_END = '</omm>';
 /** Elements that may stand beside the messages of a combined message (CCSDS 505.0-B). */
 const BESIDE_MESSAGES: ReadonlySet<string> = new Set(['COMMENT', 'MESSAGE_ID']);
 
@@ -26,16 +34,18 @@ const parser = new XMLParser({
 type XmlNode = { readonly [name: string]: unknown };
 
 /**
- * Decoder of OMM in XML: one `omm`, or any number inside an `ndm` or another root. Each `omm` element is cut
- * out of the stream and parsed by itself, so that a damaged one costs only itself; what else stands in the
- * file (an `oem`, text between the elements) becomes one rejected record a run.
+ * Decoder of OMM in XML: one `omm`, or any number inside an `ndm`. Each `omm` element is cut out of the
+ * stream and parsed by itself, so that a damaged one costs only itself; what else stands in the file (an
+ * `oem`, text between the elements) becomes one rejected record a run.
  */
 export function ommXmlDecoder(file: string, options: ReadOptions): Decoder {
   let buffer: Buffer = Buffer.alloc(0);
   let line = 1;
   let lastWasCr = false;
   let openRoots = 0;
-  let scrap: { line: number; text: string; name: string } | undefined;
+  /** The element beside the messages that is open, and of no interest. */
+  let beside: string | undefined;
+  let scrap: { line: number; text: string; element: string | undefined } | undefined;
   let records: SetOrRejection[] = [];
 
   function consume(length: number): void {
@@ -47,18 +57,25 @@ export function ommXmlDecoder(file: string, options: ReadOptions): Decoder {
     buffer = buffer.subarray(length);
   }
 
-  function addScrap(length: number, name: string): void {
-    const text = decodeText(buffer, 0, Math.min(length, LONGEST_SCRAP_CHARACTERS));
-    scrap ??= { line, text: '', name };
-    scrap.text = (scrap.text + text).slice(0, LONGEST_SCRAP_CHARACTERS);
+  function addScrap(length: number, element?: string): void {
+    scrap ??= { line, text: '', element };
+    const room = LONGEST_SCRAP_BYTES - scrap.text.length;
+    if (room > 0) scrap.text += decodeText(buffer, 0, Math.min(length, room));
     consume(length);
   }
 
   function endScrap(): void {
     if (scrap === undefined) return;
-    const what = scrap.name === '' ? quoted(scrap.text.trim()) : `<${scrap.name}>`;
-    reject(scrap.line, scrap.text.trim(), `${what} is no orbit mean-elements message, expected <omm>`);
+    const text = scrap.text.trim();
+    const what = scrap.element === undefined ? quoted(text) : `<${scrap.element}>`;
+    reject(scrap.line, text, `${what} is no orbit mean-elements message, expected <omm>`);
     scrap = undefined;
+  }
+
+  function endBeside(): void {
+    if (beside === undefined) return;
+    reject(line, '', `<${beside}> before this line is not closed`);
+    beside = undefined;
   }
 
   function reject(at: number, text: string, detail: string): void {
@@ -66,7 +83,6 @@ export function ommXmlDecoder(file: string, options: ReadOptions): Decoder {
   }
 
   function addMessage(length: number): void {
-    endScrap();
     const text = decodeText(buffer, 0, length);
     const source = { file, line, text };
     try {
@@ -79,7 +95,6 @@ export function ommXmlDecoder(file: string, options: ReadOptions): Decoder {
   }
 
   function addBroken(length: number, detail: string): void {
-    endScrap();
     reject(line, decodeText(buffer, 0, length).trimEnd(), detail);
     consume(length);
   }
@@ -90,73 +105,72 @@ export function ommXmlDecoder(file: string, options: ReadOptions): Decoder {
     while (blanks < buffer.length && buffer[blanks] <= BLANK) blanks += 1;
     consume(blanks);
     if (buffer.length === 0) return false;
-    const mayWait = !atEnd && buffer.length < LONGEST_ELEMENT_BYTES;
-    if (buffer[0] !== OPENING_ANGLE) {
-      const next = buffer.indexOf('<');
-      addScrap(next < 0 ? buffer.length : next, '');
-      return true;
+    const mayWait = !atEnd && buffer.length < LONGEST_MESSAGE_BYTES;
+    if (mayWait && buffer.length < COMMENT_START.length) return false;
+    if (buffer[0] === OPENING_ANGLE && buffer.toString('latin1', 0, COMMENT_START.length) === COMMENT_START) {
+      return skipComment(mayWait);
     }
-    const tagEnd = buffer.indexOf('>') + 1;
-    if (tagEnd === 0) {
-      if (mayWait) return false;
-      addScrap(buffer.length, '');
-      return true;
-    }
-    const start = buffer.toString('latin1', 0, 4);
-    if (start === '<!--') return skipTo('-->', 3, mayWait);
-    if (start.startsWith('<?') || start.startsWith('<!')) {
-      consume(tagEnd);
-      return true;
-    }
-    const match = TAG.exec(buffer.toString('latin1', 0, tagEnd));
-    if (match === null) {
-      addScrap(tagEnd, '');
-      return true;
-    }
-    const [, slash, name] = match;
-    return slash === '/' ? endTag(tagEnd) : startTag(name, tagEnd, mayWait);
+    const end = tokenEnd();
+    if (end === buffer.length && buffer[end - 1] !== CLOSING_ANGLE && mayWait) return false;
+    return take(end, mayWait);
   }
 
-  function skipTo(text: string, length: number, mayWait: boolean): boolean {
-    const end = buffer.indexOf(text);
+  /** Where the text or tag at the front ends: after `>`, or before `<`. */
+  function tokenEnd(): number {
+    const isTag = buffer[0] === OPENING_ANGLE;
+    for (let i = 1; i < buffer.length; i++) {
+      if (buffer[i] === OPENING_ANGLE) return i;
+      if (isTag && buffer[i] === CLOSING_ANGLE) return i + 1;
+    }
+    return buffer.length;
+  }
+
+  function skipComment(mayWait: boolean): boolean {
+    const end = buffer.indexOf(COMMENT_END, COMMENT_START.length);
     if (end < 0 && mayWait) return false;
-    if (end < 0) addScrap(buffer.length, '');
-    else consume(end + length);
+    if (end < 0) addScrap(buffer.length);
+    else consume(end + COMMENT_END.length);
     return true;
   }
 
-  function endTag(tagEnd: number): boolean {
-    if (openRoots > 0) {
-      openRoots -= 1;
-      consume(tagEnd);
+  function take(end: number, mayWait: boolean): boolean {
+    const name = buffer[end - 1] === CLOSING_ANGLE ? tagName(end) : undefined;
+    const isEnd = buffer[1] === SLASH;
+    if (name === 'omm' && !isEnd) return takeMessage(end, mayWait);
+    if (beside !== undefined) {
+      if (name === beside && isEnd) beside = undefined;
+      consume(end);
+    } else if (name === 'ndm' && (!isEnd || openRoots > 0)) {
+      openRoots += isEnd ? -1 : 1;
+      consume(end);
+    } else if (name !== undefined && BESIDE_MESSAGES.has(name) && !isEnd && scrap === undefined) {
+      if (buffer[end - 2] !== SLASH) beside = name;
+      consume(end);
+    } else if (
+      buffer[0] === OPENING_ANGLE &&
+      (buffer[1] === QUESTION_MARK || buffer[1] === EXCLAMATION_MARK)
+    ) {
+      consume(end);
     } else {
-      addScrap(tagEnd, '');
+      addScrap(end, name);
     }
     return true;
   }
 
-  function startTag(name: string, tagEnd: number, mayWait: boolean): boolean {
-    const closing = `</${name}>`;
-    const end = buffer.indexOf(closing, tagEnd);
-    const nextMessage = buffer.indexOf('<omm', tagEnd);
-    const beforeNext = end >= 0 && (nextMessage < 0 || end < nextMessage);
-    if (name === 'omm') {
-      if (beforeNext) addMessage(end + closing.length);
-      else if (nextMessage >= 0) addBroken(nextMessage, 'no </omm> before the next <omm>');
-      else if (mayWait) return false;
-      else addBroken(buffer.length, 'no </omm>: the file is cut off');
-    } else if (BESIDE_MESSAGES.has(name)) {
-      return skipTo(closing, closing.length, mayWait);
-    } else if (buffer[tagEnd - 2] === 0x2f) {
-      addScrap(tagEnd, name);
-    } else if (name !== 'ndm' && beforeNext) {
-      addScrap(end + closing.length, name);
-    } else if (name !== 'ndm' && nextMessage < 0 && mayWait) {
-      return false;
-    } else {
-      openRoots += 1;
-      consume(tagEnd);
-    }
+  function tagName(end: number): string | undefined {
+    return TAG_NAME.exec(buffer.toString('latin1', 0, end))?.[1];
+  }
+
+  function takeMessage(tagEnd: number, mayWait: boolean): boolean {
+    // The next start first: it bounds the search for the end.
+    const next = buffer.indexOf(MESSAGE_START, tagEnd);
+    const end = buffer.subarray(0, next < 0 ? buffer.length : next).indexOf(MESSAGE_END, tagEnd);
+    if (end < 0 && next < 0 && mayWait) return false;
+    endBeside();
+    endScrap();
+    if (end >= 0) addMessage(end + MESSAGE_END.length);
+    else if (next >= 0) addBroken(next, 'no </omm> before the next <omm>');
+    else addBroken(buffer.length, 'no </omm>: the file is cut off');
     return true;
   }
 
@@ -174,6 +188,7 @@ export function ommXmlDecoder(file: string, options: ReadOptions): Decoder {
     },
     end() {
       while (step(true));
+      endBeside();
       endScrap();
       if (openRoots > 0) reject(line, '', 'the root element is not closed: the file is cut off');
       return taken();

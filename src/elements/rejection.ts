@@ -7,7 +7,8 @@ export class Rejection extends Error {
 
 /** A value as it stood in the file, for a message: control characters escaped, cut when it is long. */
 export function quoted(value: unknown): string {
-  const text = typeof value === 'string' ? value : String(JSON.stringify(value));
+  if (typeof value === 'object' && value !== null) return Array.isArray(value) ? 'an array' : 'an object';
+  const text = String(value);
   const cut = text.length > LONGEST_QUOTE ? `${text.slice(0, LONGEST_QUOTE)}...` : text;
   return JSON.stringify(cut);
 }

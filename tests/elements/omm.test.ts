@@ -201,7 +201,7 @@ describe('OMM in JSON', () => {
     expect(sets.length).toBe(1);
     expect(rejected.map((record) => record.detail)).toEqual([
       '"5,\\"a\\"" stands outside of any object, expected { "EPOCH": ... }',
-      'BSTAR is "{\\"value\\":1}", expected text',
+      'BSTAR is an object, expected text',
     ]);
     expect(rejected.map((record) => [record.source.line, record.designator])).toEqual([
       [2, ''],
@@ -262,6 +262,19 @@ describe('OMM in CSV', () => {
       [3, '22 values, expected 21 as in the header'],
       [4, '20 values, expected 21 as in the header'],
     ]);
+  });
+
+  it('quotes that would close in a later row cost those two rows only', async () => {
+    const rows = [
+      lines[0],
+      lines[1],
+      lines[2].replace('KESTREL-2', '"KESTREL-2'),
+      lines[3].replace('KESTREL-3', 'KESTREL-3"'),
+      lines[4],
+    ];
+    const result = await readText(`${rows.join('\n')}\n`);
+    expect(result.sets.map((set) => set.name)).toEqual(['KESTREL-1', 'KESTREL-4']);
+    expect(result.rejected.map((record) => record.source.line)).toEqual([3, 4]);
   });
 
   it('a header that names a keyword twice is refused, with all that hangs on it', async () => {
@@ -383,6 +396,10 @@ describe('OMM in XML', () => {
     expect(rejected.map((unused) => unused.detail)).toEqual([
       '<oem> is no orbit mean-elements message, expected <omm>',
       'the root element is not closed: the file is cut off',
+    ]);
+    const comment = await readText(`<ndm>\n<COMMENT>open\n${xmlMessage(GOOD)}</ndm>`);
+    expect(comment.rejected.map((unused) => unused.detail)).toEqual([
+      '<COMMENT> before this line is not closed',
     ]);
     const cut = await readText(`<ndm>${xmlMessage(GOOD)}${xmlMessage(record).slice(0, 500)}`);
     expect(cut.rejected.map((unused) => unused.detail)).toEqual([

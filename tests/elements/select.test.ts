@@ -160,12 +160,12 @@ describe('the accounts of the files', () => {
   });
 
   it('have one row for a file that is fleet and catalog at once', async () => {
-    await inFolder({ all: twoLineFile(sets) }, async (path) => {
+    await inFolder({ all: `${twoLineFile(sets)}prose\n` }, async (path) => {
       const reading = await readElementFiles([path('all')]);
       const selection = selectSets({ fleet: reading.sets, catalog: reading.sets, startMs: START_MS });
       const [count, ...others] = countFiles([...reading.files, ...reading.files], selection);
       expect(others).toEqual([]);
-      expect(count).toMatchObject({ read: 20, used: 10, superseded: 10, rejected: 0 });
+      expect(count).toMatchObject({ read: 22, used: 10, superseded: 10, rejected: 2 });
     });
   });
 
