@@ -37,9 +37,11 @@ export type CommandDefinition<S extends Options> = {
   /** Everything that `--help` prints. */
   readonly help: string;
   readonly options: S;
+  /** Name of the one thing that stands without an option, such as a file to read. */
+  readonly argument?: string;
   readonly alternatives?: readonly Alternatives<S>[];
   /** Does the job; a mistake of the user is thrown as InputError. */
-  readonly run: (values: Values<S>, ports: JobPorts) => Promise<CommandResult>;
+  readonly run: (values: Values<S>, ports: JobPorts, argument: string) => Promise<CommandResult>;
 };
 
 export type CommandResult = { readonly lines: readonly string[]; readonly status: number };
@@ -66,7 +68,7 @@ export function defineCommand<const S extends Options>(definition: CommandDefini
     options,
     register: (yargs, surroundings, finish) =>
       yargs.command(
-        definition.name,
+        definition.argument === undefined ? definition.name : `${definition.name} [${definition.argument}]`,
         definition.summary,
         (own) => own.options(yargsOptions(options)),
         async (parsed) => finish(await runCommand(definition, parsed, surroundings)),
@@ -112,7 +114,7 @@ async function runCommand<S extends Options>(
       nowMs: surroundings.nowMs,
       version: surroundings.version,
     };
-    const result = await definition.run(values, ports);
+    const result = await definition.run(values, ports, argumentOf(definition, parsed));
     bar.clear();
     for (const line of result.lines) surroundings.stdout.write(`${line}\n`);
     return result.status;
@@ -122,6 +124,16 @@ async function runCommand<S extends Options>(
   } finally {
     listener.close();
   }
+}
+
+function argumentOf<S extends Options>(
+  { name, argument }: CommandDefinition<S>,
+  parsed: Readonly<Record<string, unknown>>,
+): string {
+  if (argument === undefined) return '';
+  const value = parsed[argument];
+  if (value === undefined || value === '') throw new InputError(`name a ${argument}: wideberth ${name} FILE`);
+  return String(value);
 }
 
 /** Says in the log what went wrong, and which exit status that is. */

@@ -1,6 +1,7 @@
 import yargs from 'yargs';
 import { InputError } from '../input-error.js';
 import { createLog, mayColor } from '../jobs/log.js';
+import { assessCommand } from './assess-command.js';
 import { calibrateCommand } from './calibrate-command.js';
 import { type Command, reportError } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
@@ -9,7 +10,7 @@ import { screenCommand } from './screen-command.js';
 import type { Surroundings } from './surroundings.js';
 
 /** Every subcommand, in the order of the help. */
-const COMMANDS: readonly Command[] = [screenCommand, calibrateCommand];
+const COMMANDS: readonly Command[] = [screenCommand, assessCommand, calibrateCommand];
 
 /**
  * Runs one command line.
