@@ -84,11 +84,8 @@ export async function readElementFiles(
  * @param path a file, or `-` for standard input
  * @throws InputError as `readElementFiles`; that not one set was usable shows only at the end
  */
-export async function* streamElementSets(
-  path: string,
-  options: ReadOptions = {},
-): AsyncGenerator<SetOrRejection> {
-  yield* records(path, options);
+export function streamElementSets(path: string, options: ReadOptions = {}): AsyncGenerator<SetOrRejection> {
+  return records(path, options);
 }
 
 async function* records(path: string, options: ReadOptions, hash?: Hash): AsyncGenerator<SetOrRejection> {
