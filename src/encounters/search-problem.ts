@@ -44,9 +44,13 @@ export type SearchedSet = MeanElements & { readonly validFromMs?: number; readon
  * Readies element sets for a search, SGP4 records included.
  *
  * @param sets primaries first, all of them accepted by SGP4
+ * @param records their SGP4 records, where they are there already
  */
-export function searchObjectsOf(sets: readonly SearchedSet[], primaryCount: number): SearchObjects {
-  const records = sets.map(sgp4RecordOf);
+export function searchObjectsOf(
+  sets: readonly SearchedSet[],
+  primaryCount: number,
+  records: readonly SatRec[] = sets.map(sgp4RecordOf),
+): SearchObjects {
   const orbits = sets.map((set, i) => orbitOf(set, records[i]));
   return {
     count: sets.length,

@@ -77,19 +77,18 @@ async function screenInto(
   const missKm = enclosingRadiusKm(options.volume);
   const objects = [...primaries, ...withinReach(others, primaries, missKm, options.startMs, endMs)];
   const withinPrimaries = options.allOnAll || options.withinFleet;
-  const companions = findCompanions(
-    searchObjectsOf(
-      objects.map(({ set }) => set),
-      primaries.length,
-    ),
-    {
-      startMs: options.startMs,
-      endMs,
-      missKm,
-      withinPrimaries,
-      skippedPairs: new Set(),
-    },
+  const searched = searchObjectsOf(
+    objects.map(({ set }) => set),
+    primaries.length,
+    objects.map(({ record }) => record),
   );
+  const companions = findCompanions(searched, {
+    startMs: options.startMs,
+    endMs,
+    missKm,
+    withinPrimaries,
+    skippedPairs: new Set(),
+  });
   timings.end('preparing');
 
   const plan = searchPlanOf(objects, {
@@ -233,6 +232,7 @@ function withinReach(
   startMs: number,
   endMs: number,
 ): ScreenedObject[] {
+  if (others.length === 0) return [];
   const band = ({ record, set }: ScreenedObject) => radiusBand(record, set.epochMs, startMs, endMs);
   const passes = sieve(others.map(band), primaries.map(band), missKm);
   return others.filter((_, i) => passes[i] === 1);
