@@ -14,6 +14,7 @@ import {
   type Values,
 } from './options.js';
 import { createProgressBar } from './progress-bar.js';
+import { createProgressLog } from './progress-log.js';
 import type { Surroundings } from './surroundings.js';
 
 /** A subcommand, ready to stand in the list of `run-command-line.ts`. */
@@ -92,11 +93,11 @@ async function runCommand<S extends Options>(
   const bar =
     common.log === 'text' && stderr.isTTY === true
       ? createProgressBar(stderr as unknown as NodeJS.WritableStream)
-      : { show: () => {}, clear: () => {} };
+      : undefined;
   const log = createLog({
     format: common.log,
     write: (line) => {
-      bar.clear();
+      bar?.clear();
       stderr.write(line);
     },
     color: mayColor(stderr, surroundings.environment),
@@ -109,17 +110,17 @@ async function runCommand<S extends Options>(
     for (const note of notes) log.info(note);
     const ports: JobPorts = {
       log,
-      progress: bar.show,
+      progress: bar?.show ?? createProgressLog(log, () => performance.now()),
       onStop: listener.onStop,
       nowMs: surroundings.nowMs,
       version: surroundings.version,
     };
     const result = await definition.run(values, ports, argumentOf(definition, parsed));
-    bar.clear();
+    bar?.clear();
     for (const line of result.lines) surroundings.stdout.write(`${line}\n`);
     return result.status;
   } catch (error) {
-    bar.clear();
+    bar?.clear();
     return reportError(error, log);
   } finally {
     listener.close();
