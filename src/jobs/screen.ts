@@ -1,17 +1,11 @@
-import { expectCurrentFleet, summarizeAges } from '../elements/age.js';
-import type { ElementSet, UnusedElements } from '../elements/element-set.js';
+import { expectCurrentFleet } from '../elements/age.js';
 import { formatUtc } from '../elements/utc.js';
-import { type Companions, findCompanions } from '../encounters/companions.js';
+import { findCompanions } from '../encounters/companions.js';
 import { pairKey, searchObjectsOf } from '../encounters/search-problem.js';
-import { radiusBand, sieve } from '../encounters/sieve.js';
 import { enclosingRadiusKm } from '../encounters/volume.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
 import { writeChangesCsv } from '../tables/changes-csv.js';
-import { type CompanionPair, writeCompanionsCsv } from '../tables/companions-csv.js';
-import type { Conjunction } from '../tables/conjunction.js';
-import { conjunctionMessageFileName, formatConjunctionMessage } from '../tables/conjunction-message.js';
-import { writeConjunctionsCsv } from '../tables/conjunctions-csv.js';
-import { writeSensitivityCsv } from '../tables/sensitivity-csv.js';
+import { writeCompanionsCsv } from '../tables/companions-csv.js';
 import {
   formatCaution,
   formatConjunctionTable,
@@ -20,17 +14,25 @@ import {
 } from '../tables/terminal-table.js';
 import { writeUnusedElementsCsv } from '../tables/unused-elements-csv.js';
 import { changeLines, compareWithPast, type SeenEncounter } from './changes.js';
-import { conjunctionOf, fillPairProbabilities, rankRecords, sensitivityOf } from './conjunctions.js';
+import { companionRow } from './companion-row.js';
+import { fillPairProbabilities } from './conjunctions.js';
+import { agesAt, agesOf, warnOfOldElements } from './element-ages.js';
 import { type EncounterRecords, FIELD, FIELDS } from './encounter-records.js';
+import { failedLines, failedSets, warnOfFailures } from './failed-sets.js';
 import { keepInHistory, prepareHistory, readPastRuns } from './history.js';
-import { type ElementInputs, readElementInputs, readKnowledge } from './inputs.js';
+import { readElementInputs, readKnowledge } from './inputs.js';
 import { type OutputFolder, openOutputFolder } from './output-folder.js';
+import { rankedRecords, writeRankedTables } from './ranked-records.js';
 import { RUN_RECORD } from './run-folder.js';
-import { elementAgesOf, environmentOf, recordedOptions, runRecordText } from './run-record.js';
+import { environmentOf, recordedOptions, runRecordText } from './run-record.js';
 import type { JobPorts, ScreenOptions, ScreenOutcome } from './screen-options.js';
 import { type ScreenedObject, screenedObject } from './screened-object.js';
-import { type SearchOutcome, searchInWorkers } from './search-in-workers.js';
+import { searchInWorkers } from './search-in-workers.js';
 import { searchPlanOf } from './search-plan.js';
+import { createTimings } from './timings.js';
+import { warnOfUnlisted } from './unlisted-objects.js';
+import { withinReach } from './within-reach.js';
+import { writeMessages } from './write-messages.js';
 
 const MS_PER_DAY = 86_400_000;
 /** Changes told one by one on the terminal. */
@@ -66,14 +68,20 @@ async function screenInto(
 
   const inputs = await readElementInputs(options.fleetPaths, options.catalogPaths, options.startMs);
   const { knowledge, files: otherFiles } = await readKnowledge(options.objectsPath, options.sigmaPath);
-  warnOfAges(inputs, options, ports);
+  if (!options.allOnAll) expectCurrentFleet(inputs.fleet, options.startMs, options.maxAgeDays);
+  warnOfOldElements(
+    { fleet: options.allOnAll ? [] : inputs.fleet, catalog: inputs.catalog },
+    options.startMs,
+    options.maxAgeDays,
+    ports,
+  );
   timings.end('reading');
 
   const primaries = (options.allOnAll ? inputs.catalog : inputs.fleet).map((set) =>
     screenedObject(set, knowledge),
   );
   const others = (options.allOnAll ? [] : inputs.catalog).map((set) => screenedObject(set, knowledge));
-  warnOfUnlisted(knowledge.listed, primaries, others, options, ports);
+  warnOfUnlisted(knowledge.listed, options.objectsPath, [...primaries, ...others], ports);
   const missKm = enclosingRadiusKm(options.volume);
   const objects = [...primaries, ...withinReach(others, primaries, missKm, options.startMs, endMs)];
   const withinPrimaries = options.allOnAll || options.withinFleet;
@@ -108,23 +116,24 @@ async function screenInto(
 
   const { records } = outcome;
   fillPairProbabilities(records, objects.length);
-  const order = rankRecords(records, objects);
-  const ranked = {
-    count: order.length,
-    at: (index: number): Conjunction => conjunctionOf(records, order[index], objects),
-  };
-  const unused = [...inputs.unused, ...failedSets(outcome, objects, endMs)];
-  await writeConjunctionsCsv(folder.stream('conjunctions.csv'), sequence(ranked.count, ranked.at));
-  await writeSensitivityCsv(
-    folder.stream('sensitivity.csv'),
-    sequence(ranked.count, (index) => sensitivityOf(records, order[index], index + 1, objects)),
-  );
+  const ranked = rankedRecords(records, objects);
+  const { order } = ranked;
+  const failed = failedSets(outcome, objects, options.startMs, endMs);
+  warnOfFailures(failed, inputs.fleet, ports);
+  const unused = [...inputs.unused, ...failed];
+  await writeRankedTables(folder, ranked);
   await writeUnusedElementsCsv(folder.stream('unused-elements.csv'), unused);
   await writeCompanionsCsv(
     folder.stream('companions.csv'),
-    companions.map((pair) => companionPair(pair, objects)),
+    companions.map((pair) => companionRow(pair, objects)),
   );
-  const messages = writeMessages(folder, ranked, options, endMs, ports);
+  const messages = writeMessages(
+    folder,
+    ranked,
+    options.cdmFromPc,
+    { startMs: options.startMs, endMs, volume: options.volume },
+    ports,
+  );
 
   const comparison =
     options.historyPath === undefined
@@ -207,136 +216,6 @@ async function screenInto(
   return { lines: lines.map((line) => line.replace(/\n$/, '')), alertReached };
 }
 
-function createTimings() {
-  const seconds: Record<string, number> = {};
-  let before = performance.now();
-  return {
-    seconds,
-    end: (stage: string) => {
-      const now = performance.now();
-      seconds[stage] = Math.round(now - before) / 1000;
-      before = now;
-    },
-  };
-}
-
-function* sequence<T>(count: number, at: (index: number) => T): Generator<T> {
-  for (let index = 0; index < count; index++) yield at(index);
-}
-
-/** Objects whose height bands come near that of any primary. */
-function withinReach(
-  others: readonly ScreenedObject[],
-  primaries: readonly ScreenedObject[],
-  missKm: number,
-  startMs: number,
-  endMs: number,
-): ScreenedObject[] {
-  if (others.length === 0) return [];
-  const band = ({ record, set }: ScreenedObject) => radiusBand(record, set.epochMs, startMs, endMs);
-  const passes = sieve(others.map(band), primaries.map(band), missKm);
-  return others.filter((_, i) => passes[i] === 1);
-}
-
-function warnOfAges(
-  { fleet, catalog }: ElementInputs,
-  options: ScreenOptions,
-  ports: Pick<JobPorts, 'log'>,
-): void {
-  const { startMs, maxAgeDays } = options;
-  if (!options.allOnAll) expectCurrentFleet(fleet, startMs, maxAgeDays);
-  for (const [group, sets] of [
-    ['fleet', options.allOnAll ? [] : fleet],
-    ['catalog', catalog],
-  ] as const) {
-    const ages = summarizeAges(sets, startMs, maxAgeDays);
-    if (ages === undefined || ages.beyondLimit === 0) continue;
-    ports.log.warn(
-      `${ages.beyondLimit} of ${ages.count} ${group} element sets are further than ${maxAgeDays} days from the start; the worst is ${ages.worst.designator} with ${ages.worstDays.toFixed(1)} days. They are screened, and their rows say old-elements: get fresher sets`,
-    );
-  }
-}
-
-/** A radius given for an object that is not there is most likely a slip of the pen. */
-function warnOfUnlisted(
-  listed: ReadonlyMap<string, { readonly line: number }> | undefined,
-  primaries: readonly ScreenedObject[],
-  others: readonly ScreenedObject[],
-  options: ScreenOptions,
-  ports: Pick<JobPorts, 'log'>,
-): void {
-  if (listed === undefined) return;
-  const present = new Set([...primaries, ...others].map(({ designator }) => designator));
-  const missing = [...listed].filter(([designator]) => !present.has(designator));
-  if (missing.length === 0) return;
-  const [designator, { line }] = missing[0];
-  const more = missing.length === 1 ? '' : ` and ${missing.length - 1} more`;
-  ports.log.warn(
-    `${options.objectsPath}:${line}: ${designator}${more} in no element-set file: check the designator`,
-  );
-}
-
-function failedSets(
-  outcome: SearchOutcome,
-  objects: readonly ScreenedObject[],
-  endMs: number,
-): UnusedElements[] {
-  return [...outcome.lastMsOf]
-    .sort(([a], [b]) => a - b)
-    .map(([index, lastMs]) => {
-      const { set, designator } = objects[index];
-      return {
-        source: set.source,
-        designator,
-        reason: 'failed',
-        detail: `SGP4 gives no state after ${formatUtc(lastMs)} (decayed, or elements too old): screened up to there, not to ${formatUtc(endMs)}`,
-        failedAtMs: lastMs,
-      };
-    });
-}
-
-function companionPair(pair: Companions, objects: readonly ScreenedObject[]): CompanionPair {
-  const side = (index: number) => ({ designator: objects[index].designator, name: objects[index].name });
-  return {
-    object1: side(pair.first),
-    object2: side(pair.second),
-    closestMs: pair.closestMs,
-    closestDistanceM: 1000 * pair.closestKm,
-    farthestDistanceM: 1000 * pair.farthestKm,
-    fastestMPerS: 1000 * pair.fastestKmPerS,
-    slowestMPerS: 1000 * pair.slowestKmPerS,
-    remarks: [],
-  };
-}
-
-/** @returns number of conjunction messages */
-function writeMessages(
-  folder: OutputFolder,
-  ranked: { readonly count: number; readonly at: (index: number) => Conjunction },
-  options: ScreenOptions,
-  endMs: number,
-  ports: Pick<JobPorts, 'nowMs'>,
-): number {
-  if (options.cdmFromPc === undefined) return 0;
-  const run = {
-    originator: 'WIDEBERTH',
-    creationMs: ports.nowMs(),
-    screenStartMs: options.startMs,
-    screenStopMs: endMs,
-    volume: options.volume,
-  };
-  let written = 0;
-  for (; written < ranked.count; written++) {
-    const conjunction = ranked.at(written);
-    if (!((conjunction.collisionProbability ?? -1) >= options.cdmFromPc)) break;
-    folder.write(
-      `cdm/${conjunctionMessageFileName(conjunction)}`,
-      formatConjunctionMessage(conjunction, run),
-    );
-  }
-  return written;
-}
-
 function seenEncounters(
   { data }: EncounterRecords,
   order: Uint32Array,
@@ -374,21 +253,8 @@ function screenedTest(
     (withinPrimaries && own.has(a) && own.has(b));
 }
 
-function agesAt(sets: readonly ElementSet[], startMs: number) {
-  return sets.map(({ designator, epochMs }) => ({ designator, ageDays: (startMs - epochMs) / MS_PER_DAY }));
-}
-
-function agesOf(sets: readonly ElementSet[], startMs: number) {
-  return elementAgesOf(agesAt(sets, startMs));
-}
-
 function companionLines(count: number): string[] {
   if (count === 0) return [];
   const pairs = count === 1 ? '1 pair flies' : `${count} pairs fly`;
   return [`${pairs} together for the whole window: see companions.csv`, ''];
-}
-
-function failedLines(count: number): string[] {
-  if (count === 0) return [];
-  return [`${count} of the used sets failed in the window (decayed): see unused-elements.csv`];
 }
