@@ -50,8 +50,8 @@ function assessApproach(
     if (passage === undefined) return;
     ({ entryMs, exitMs } = passage);
   }
-  const age1 = (tcaMs - object1.epochMs) / MS_PER_DAY;
-  const age2 = (tcaMs - object2.epochMs) / MS_PER_DAY;
+  const age1 = (tcaMs - plan.agesFromMs[first]) / MS_PER_DAY;
+  const age2 = (tcaMs - plan.agesFromMs[second]) / MS_PER_DAY;
   const curve1 = plan.curves[plan.curveOf[first]];
   const curve2 = plan.curves[plan.curveOf[second]];
   const sigma1 = sigmaAt(curve1, age1);

@@ -14,11 +14,19 @@ const MS_PER_DAY = 86_400_000;
 /**
  * Sums the probabilities of each pair over its encounters in the window into every one of its records:
  * 1 - product(1 - p), encounters taken as independent.
+ *
+ * @param identities which object each index stands for, where several stand for one in turn
  */
-export function fillPairProbabilities(records: EncounterRecords, objectCount: number): void {
+export function fillPairProbabilities(
+  records: EncounterRecords,
+  objectCount: number,
+  identities?: ArrayLike<number>,
+): void {
   const logOfNone = new Map<number, number>();
   const { data, size } = records;
-  const keyAt = (at: number) => data[at + FIELD.first] * objectCount + data[at + FIELD.second];
+  const identity = (index: number) => identities?.[index] ?? index;
+  const keyAt = (at: number) =>
+    identity(data[at + FIELD.first]) * objectCount + identity(data[at + FIELD.second]);
   for (let at = 0; at < FIELDS * size; at += FIELDS) {
     const key = keyAt(at);
     logOfNone.set(key, (logOfNone.get(key) ?? 0) + Math.log1p(-data[at + FIELD.probability]));
@@ -127,7 +135,7 @@ export function sensitivityOf(
 }
 
 function conjunctionObject(object: ScreenedObject, state: OrbitState, tcaMs: number): ConjunctionObject {
-  const elementAgeDays = (tcaMs - object.set.epochMs) / MS_PER_DAY;
+  const elementAgeDays = (tcaMs - object.agesFromMs) / MS_PER_DAY;
   return {
     designator: object.designator,
     name: object.name,
@@ -135,6 +143,7 @@ function conjunctionObject(object: ScreenedObject, state: OrbitState, tcaMs: num
     maneuverable: object.maneuverable,
     elementAgeDays,
     elementEpochMs: object.set.epochMs,
+    isPredicted: object.isPredicted,
     sigmaRtnM: sigmaAt(object.curve, elementAgeDays),
     state,
   };

@@ -19,6 +19,10 @@ export type ScreenedObject = {
   /** When the elements stand for the object; infinite where nothing limits it. */
   readonly validFromMs: number;
   readonly validToMs: number;
+  /** The age of the elements counts from here: their epoch, or the release of an object that is yet to fly. */
+  readonly agesFromMs: number;
+  /** The elements are a prediction of what is yet to fly, not public ones. */
+  readonly isPredicted: boolean;
 };
 
 /** What the user told about objects; `undefined` where no file was given. */
@@ -54,5 +58,7 @@ export function screenedObject(
     maneuverable: properties.maneuverable,
     validFromMs: validity.fromMs,
     validToMs: validity.toMs,
+    agesFromMs: set.epochMs,
+    isPredicted: false,
   };
 }

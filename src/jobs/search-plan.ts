@@ -8,6 +8,8 @@ import type { ScreenedObject } from './screened-object.js';
 export type SearchPlan = {
   /** `PLAN_FIELDS` doubles for each object, primaries first. */
   readonly elements: Float64Array;
+  /** When the age of each object's elements counts from. */
+  readonly agesFromMs: Float64Array;
   readonly hardBodyRadiusM: Float64Array;
   /** 1 where the radius is the default. */
   readonly hasDefaultRadius: Uint8Array;
@@ -29,9 +31,13 @@ const PLAN_FIELDS = 10;
 /** @param objects primaries first */
 export function searchPlanOf(
   objects: readonly ScreenedObject[],
-  settings: Omit<SearchPlan, 'elements' | 'hardBodyRadiusM' | 'hasDefaultRadius' | 'curves' | 'curveOf'>,
+  settings: Omit<
+    SearchPlan,
+    'elements' | 'agesFromMs' | 'hardBodyRadiusM' | 'hasDefaultRadius' | 'curves' | 'curveOf'
+  >,
 ): SearchPlan {
   const elements = sharedFloat64(PLAN_FIELDS * objects.length);
+  const agesFromMs = sharedFloat64(objects.length);
   const hardBodyRadiusM = sharedFloat64(objects.length);
   const hasDefaultRadius = new Uint8Array(new SharedArrayBuffer(objects.length));
   const curveOf = new Int32Array(new SharedArrayBuffer(4 * objects.length));
@@ -53,6 +59,7 @@ export function searchPlanOf(
       ],
       PLAN_FIELDS * i,
     );
+    agesFromMs[i] = object.agesFromMs;
     hardBodyRadiusM[i] = object.hardBodyRadiusM;
     hasDefaultRadius[i] = object.isDefaultRadius ? 1 : 0;
     let number = numberOf.get(curve);
@@ -62,7 +69,7 @@ export function searchPlanOf(
     }
     curveOf[i] = number;
   });
-  return { ...settings, elements, hardBodyRadiusM, hasDefaultRadius, curves, curveOf };
+  return { ...settings, elements, agesFromMs, hardBodyRadiusM, hasDefaultRadius, curves, curveOf };
 }
 
 /** SGP4 records and all from the bare numbers, on the side of the worker. */

@@ -157,7 +157,7 @@ function objectPart(which: 'OBJECT1' | 'OBJECT2', object: ConjunctionObject, tca
   const values: Values = {
     OBJECT: which,
     OBJECT_DESIGNATOR: messageText(object.designator),
-    CATALOG_NAME: 'SATCAT',
+    CATALOG_NAME: object.isPredicted === true ? 'LAUNCH BATCH' : 'SATCAT',
     OBJECT_NAME: name,
     INTERNATIONAL_DESIGNATOR:
       object.internationalDesignator === '' ? UNKNOWN : messageText(object.internationalDesignator),
@@ -182,7 +182,9 @@ function objectPart(which: 'OBJECT1' | 'OBJECT2', object: ConjunctionObject, tca
         ? []
         : ['OBJECT_NAME is put into the characters of a message; the full name is in conjunctions.csv.'],
     X: [
-      `State: SGP4 on public mean elements of epoch ${epoch}, ${age} d old at TCA, turned from TEME to EME2000.`,
+      object.isPredicted === true
+        ? `State: SGP4 on mean elements predicted before launch, of epoch ${epoch}, ${age} d after release at TCA, turned from TEME to EME2000.`
+        : `State: SGP4 on public mean elements of epoch ${epoch}, ${age} d old at TCA, turned from TEME to EME2000.`,
       `Position covariance: squares of the one-sigma values that the screening used, R ${sigma(object, 0)} m, T ${sigma(object, 1)} m, ` +
         `N ${sigma(object, 2)} m, not correlated; not the result of an orbit determination.`,
       'Velocity covariance: derived from the position sigmas by orbital motion, with k = mu/(r h): ' +

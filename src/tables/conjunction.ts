@@ -13,6 +13,8 @@ export type ConjunctionObject = {
   /** Age of the element set at TCA, days; negative when its epoch lies after TCA. */
   readonly elementAgeDays: number;
   readonly elementEpochMs: number;
+  /** The elements are a prediction of what is yet to fly, their age counts from its release. Default: no. */
+  readonly isPredicted?: boolean;
   /** One-sigma at TCA in the object's own RTN, meters. */
   readonly sigmaRtnM: Vector3;
   /** TEME state at TCA. */

@@ -1,4 +1,4 @@
-import { parseCatalogNumber } from '../elements/catalog-number.js';
+import { DESIGNATOR_IN_WORDS, parseDesignator } from '../elements/batch-designator.js';
 import { InputError } from '../input-error.js';
 import { numberCell, readCsv } from './read-csv.js';
 
@@ -41,17 +41,17 @@ const COLUMNS = ['name', 'hard_body_radius_m', 'maneuverable'] as const;
  * `maneuverable` (YES, NO or N/A). Empty cells leave the default.
  *
  * @param file as the user named it, for errors
- * @returns rows by designator in decimal without leading zeros (Alpha-5 is the same as the integer)
+ * @returns rows by designator, numbers in decimal without leading zeros (Alpha-5 is the same as the integer)
  * @throws InputError with file, line and value
  */
 export function readObjects(text: string, file: string): Map<string, ListedObject> {
   const objects = new Map<string, ListedObject>();
   for (const record of readCsv(text, file, ['designator'], COLUMNS)) {
     const { line, cells } = record;
-    const designator = parseCatalogNumber(cells.designator);
+    const designator = parseDesignator(cells.designator);
     if (designator === undefined) {
       throw new InputError(
-        `${file}:${line}: designator is ${JSON.stringify(cells.designator)}, expected a catalog number of up to nine digits or in Alpha-5`,
+        `${file}:${line}: designator is ${JSON.stringify(cells.designator)}, expected ${DESIGNATOR_IN_WORDS}`,
       );
     }
     const earlier = objects.get(designator);

@@ -1,4 +1,4 @@
-import { parseCatalogNumber } from '../elements/catalog-number.js';
+import { DESIGNATOR_IN_WORDS, parseDesignator } from '../elements/batch-designator.js';
 import { InputError } from '../input-error.js';
 import type { Matrix3, Vector3 } from '../vector.js';
 import { type CsvRecord, numberCell, readCsv } from './read-csv.js';
@@ -45,7 +45,7 @@ export type SigmaClass = SigmaClassBounds & { readonly curve: SigmaCurve };
 export type SigmaTable = {
   /** In the order of the file: the first class that covers an orbit counts. */
   readonly classes: readonly SigmaClass[];
-  /** By designator in decimal without leading zeros. */
+  /** By designator, numbers in decimal without leading zeros. */
   readonly objects: ReadonlyMap<string, SigmaCurve>;
 };
 
@@ -213,10 +213,10 @@ function rowOf(record: CsvRecord, file: string): SigmaRow {
 function designatorOf(record: CsvRecord, file: string): string {
   const text = record.cells.object_designator;
   if (text === '') return '';
-  const designator = parseCatalogNumber(text);
+  const designator = parseDesignator(text);
   if (designator === undefined) {
     throw new InputError(
-      `${file}:${record.line}: object_designator is ${JSON.stringify(text)}, expected a catalog number of up to nine digits or in Alpha-5, or an empty cell for a class of orbits`,
+      `${file}:${record.line}: object_designator is ${JSON.stringify(text)}, expected ${DESIGNATOR_IN_WORDS}, or an empty cell for a class of orbits`,
     );
   }
   return designator;

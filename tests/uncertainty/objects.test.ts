@@ -35,11 +35,11 @@ describe('readObjects', () => {
   it.each([
     [
       ['SAT,,,'],
-      'objects.csv:2: designator is "SAT", expected a catalog number of up to nine digits or in Alpha-5',
+      'objects.csv:2: designator is "SAT", expected a catalog number of up to nine digits or in Alpha-5, or a designator of a launch batch such as B-NAME',
     ],
     [
       [',X,1,'],
-      'objects.csv:2: designator is "", expected a catalog number of up to nine digits or in Alpha-5',
+      'objects.csv:2: designator is "", expected a catalog number of up to nine digits or in Alpha-5, or a designator of a launch batch such as B-NAME',
     ],
     [['1,,0,'], 'objects.csv:2: hard_body_radius_m is "0", expected a number of meters greater than 0'],
     [['1,,5 m,'], 'objects.csv:2: hard_body_radius_m is "5 m", expected a number of meters greater than 0'],

@@ -145,7 +145,7 @@ describe('readSigmaTable', () => {
     [
       'designator',
       ['SAT-1,,,,,,0,10,1,20,'],
-      'sigma.csv:2: object_designator is "SAT-1", expected a catalog number of up to nine digits or in Alpha-5, or an empty cell for a class of orbits',
+      'sigma.csv:2: object_designator is "SAT-1", expected a catalog number of up to nine digits or in Alpha-5, or a designator of a launch batch such as B-NAME, or an empty cell for a class of orbits',
     ],
     [
       'samples',
