@@ -53,7 +53,7 @@ async function dispatch(args: readonly string[], surroundings: Surroundings): Pr
     .exitProcess(false)
     .showHelpOnFail(false)
     .fail((message, error) => {
-      throw error ?? new InputError(message);
+      throw error ?? new InputError(inOwnWords(message, command.name));
     })
     .parserConfiguration({
       'boolean-negation': false,
@@ -70,6 +70,13 @@ async function dispatch(args: readonly string[], surroundings: Surroundings): Pr
     });
   await parser.strict().parseAsync(withBoundDashes(args));
   return status;
+}
+
+/** What yargs says of words that no option takes, as this program would say it. */
+function inOwnWords(message: string, command: string): string {
+  const words = /^Unknown arguments?: (.*)$/s.exec(message)?.[1];
+  if (words === undefined) return message;
+  return `${words} belongs to no option: name the option before it, see wideberth ${command} --help`;
 }
 
 /** yargs takes a lone `-` for a free argument; here it is the value of the option before it: standard input. */

@@ -2,6 +2,7 @@ import { createHash } from 'node:crypto';
 import { readFile } from 'node:fs/promises';
 import { countFiles } from '../elements/count-files.js';
 import type { ElementSet, FileCount, UnusedElements } from '../elements/element-set.js';
+import { decodeText } from '../elements/file-bytes.js';
 import { readElementFiles } from '../elements/read.js';
 import { selectSets } from '../elements/select.js';
 import { defaultSigmaTable } from '../uncertainty/default-sigma-table.js';
@@ -57,7 +58,7 @@ export async function readKnowledge(
       throw fileError(path, error);
     });
     files.push({ file: path, sha256: createHash('sha256').update(bytes).digest('hex') });
-    return parse(new TextDecoder().decode(bytes), path);
+    return parse(decodeText(bytes, 0, bytes.length), path);
   };
   const listed = await read(objectsPath, readObjects);
   const sigmas = await read(sigmaPath, readSigmaTable);
