@@ -70,3 +70,34 @@ function kronrod(f: (x: number) => number, from: number, to: number): Piece {
   }
   return { from, to, value: fine * half, error: Math.abs(fine - coarse) * half };
 }
+
+type Rule = { readonly nodes: readonly number[]; readonly weights: readonly number[] };
+const LEGENDRE = new Map<number, Rule>();
+
+/** Gauss-Legendre nodes and weights for -1 to 1, by Newton's method on the Legendre polynomial. */
+export function legendreRule(count: number): Rule {
+  let rule = LEGENDRE.get(count);
+  if (rule !== undefined) return rule;
+  const nodes: number[] = [];
+  const weights: number[] = [];
+  for (let i = 0; i < count; i++) {
+    let x = Math.cos((Math.PI * (i + 0.75)) / (count + 0.5));
+    let slope = 0;
+    for (let step = 0; step < 12; step++) {
+      let value = 1;
+      let before = 0;
+      for (let n = 1; n <= count; n++) {
+        const next = ((2 * n - 1) * x * value - (n - 1) * before) / n;
+        before = value;
+        value = next;
+      }
+      slope = (count * (x * value - before)) / (x * x - 1);
+      x -= value / slope;
+    }
+    nodes.push(x);
+    weights.push(2 / ((1 - x * x) * slope * slope));
+  }
+  rule = { nodes, weights };
+  LEGENDRE.set(count, rule);
+  return rule;
+}

@@ -1,0 +1,120 @@
+import { dot, norm, rotate, scale, type Vector3 } from '../vector.js';
+import { massInBall } from './ball-mass.js';
+import { type PathEncounter, requirePathEncounter, turningStateAt } from './encounter-path.js';
+import { encounterPlane } from './encounter-plane.js';
+import { firstEntryProbability } from './first-entry.js';
+import { discProbability } from './foster.js';
+import { inverseOf } from './inverse.js';
+import { integrate } from './quadrature.js';
+
+const SQRT_TWO_PI = Math.sqrt(2 * Math.PI);
+const RELATIVE_TOLERANCE = 1e-5;
+/** First interval about closest approach, in passages of one sigma, and the growth of the ones after it. */
+const FIRST_INTERVAL = 1;
+const INTERVAL_GROWTH = 4;
+/** A density above this part of the largest one on the path counts when the path is asked for its bends. */
+const COUNTING_DENSITY = 1e-3;
+/** A path that never turns by more than this (60 degrees) from its densest point can't come back on itself. */
+const LEAST_COSINE = 0.5;
+/** Part of the sum that the ends of the window may have before the tubes' blunt ends show. */
+const LARGEST_END_PART = 0.01;
+
+export type CurvedPathResult = {
+  /** From 0 to 1. */
+  readonly probability: number;
+  /** `FIRST-ENTRY` where adjoining tubes would count the same errors more than once, or the window ends inside. */
+  readonly method: 'ADJOINING-TUBES' | 'FIRST-ENTRY';
+  /** What adjoining tubes give, their end caps included, not bounded by 1: an expected number of passages. */
+  readonly tubes: number;
+  /** Cosine of the largest turn of the path where the density counts; below 0.5 it may come back on itself. */
+  readonly leastCosine: number;
+};
+
+/**
+ * Collision probability along the true, curved relative path, the covariance of each object turning with its
+ * own RTN (see `PathEncounter` on what is assumed of the errors).
+ *
+ * Method: adjoining tubes. The path is cut into short pieces; each piece with its hard-body circle is a
+ * tube, whose probability is the two-dimensional one of the plane across the piece times the one-dimensional
+ * one between its ends, in the space where the combined covariance is a unit sphere (S. Alfano, "Addressing
+ * Nonlinear Relative Motion for Spacecraft Collision Probability", AIAA 2006-6760; R. P. Patera, "Satellite
+ * Collision Probability for Nonlinear Relative Motion", Journal of Guidance, Control, and Dynamics 26(5),
+ * 2003). Here the pieces are made infinitely short, so that the sum is an integral over time, taken
+ * adaptively, and the half balls at both ends of the window are added. For a straight path this is exactly
+ * `fosterProbability`.
+ *
+ * Limits of the method: tubes count an error once for every time the path comes by, and leave small gaps
+ * and overlaps on either side of a bend, of second order in (radius over radius of curvature). Where the
+ * path turns by more than 60 degrees while the density counts, or the window begins or ends inside the
+ * density, the probability is therefore taken from `firstEntryProbability`, which counts each error once.
+ *
+ * @returns `undefined` where the combined covariance is singular
+ * @throws RangeError for times out of order, or a covariance or radius that is none
+ */
+export function curvedPathProbability(encounter: PathEncounter): CurvedPathResult | undefined {
+  requirePathEncounter(encounter);
+  const { fromMs, tcaMs, toMs, hardBodyRadiusM } = encounter;
+  const atTca = turningStateAt(encounter, tcaMs);
+  if (inverseOf(atTca.covarianceM2) === undefined) return undefined;
+
+  const seen: { readonly density: number; readonly direction: Vector3 }[] = [];
+  const flux = (timeMs: number): number => {
+    const { positionM, velocityMPerS, covarianceM2 } = turningStateAt(encounter, timeMs);
+    const plane = encounterPlane(positionM, velocityMPerS, covarianceM2);
+    const inverse = inverseOf(covarianceM2)?.inverse;
+    if (plane === undefined || inverse === undefined) return 0;
+    const toward = rotate(inverse, velocityMPerS);
+    // Speed and place along the path in the space where the combined covariance is a unit sphere.
+    const rate = Math.sqrt(dot(velocityMPerS, toward));
+    const along = dot(positionM, toward) / rate;
+    const across = discProbability(plane.sigmaXM, plane.sigmaYM, plane.missXM, plane.missYM, hardBodyRadiusM);
+    const density = (across * Math.exp(-0.5 * along * along)) / SQRT_TWO_PI;
+    seen.push({ density, direction: scale(velocityMPerS, 1 / norm(velocityMPerS)) });
+    return (density * rate) / 1000;
+  };
+  const along = integrate(flux, intervalsOf(encounter, atTca), RELATIVE_TOLERANCE);
+  const ends =
+    halfBall(encounter, fromMs, -hardBodyRadiusM, 0) + halfBall(encounter, toMs, 0, hardBodyRadiusM);
+  const tubes = along + ends;
+  const leastCosine = leastCosineOf(seen);
+  if (leastCosine >= LEAST_COSINE && ends <= LARGEST_END_PART * tubes) {
+    return { probability: Math.min(1, tubes), method: 'ADJOINING-TUBES', tubes, leastCosine };
+  }
+  const probability = firstEntryProbability(encounter);
+  return probability === undefined ? undefined : { probability, method: 'FIRST-ENTRY', tubes, leastCosine };
+}
+
+/** Ends of intervals that grow away from closest approach, so that a short passage in a long window is found. */
+function intervalsOf(
+  { fromMs, tcaMs, toMs, hardBodyRadiusM }: PathEncounter,
+  { velocityMPerS, covarianceM2 }: ReturnType<typeof turningStateAt>,
+): number[] {
+  const speed = norm(velocityMPerS);
+  const sigmaM = Math.sqrt(dot(velocityMPerS, rotate(covarianceM2, velocityMPerS))) / speed;
+  const bounds = new Set([fromMs, tcaMs, toMs]);
+  let away = (1000 * FIRST_INTERVAL * (sigmaM + hardBodyRadiusM)) / speed;
+  // Without relative speed `away` is not finite, and the window is one interval on either side.
+  while (tcaMs - away > fromMs || tcaMs + away < toMs) {
+    bounds.add(Math.max(fromMs, tcaMs - away));
+    bounds.add(Math.min(toMs, tcaMs + away));
+    away *= INTERVAL_GROWTH;
+  }
+  return [...bounds].sort((one, other) => one - other);
+}
+
+/** Mass in the part of the ball behind (negative limits) or ahead of the plane in which its tube ends. */
+function halfBall(encounter: PathEncounter, timeMs: number, fromM: number, toM: number): number {
+  const { positionM, velocityMPerS, covarianceM2 } = turningStateAt(encounter, timeMs);
+  const inverse = inverseOf(covarianceM2)?.inverse;
+  if (inverse === undefined) return 0;
+  const direction: Vector3 = norm(velocityMPerS) > 0 ? rotate(inverse, velocityMPerS) : [1, 0, 0];
+  return massInBall(positionM, encounter.hardBodyRadiusM, covarianceM2, direction, fromM, toM);
+}
+
+function leastCosineOf(seen: readonly { readonly density: number; readonly direction: Vector3 }[]): number {
+  const densest = seen.reduce((best, each) => (each.density > best.density ? each : best), seen[0]);
+  if (densest === undefined) return 1;
+  return seen
+    .filter(({ density }) => density > COUNTING_DENSITY * densest.density)
+    .reduce((least, { direction }) => Math.min(least, dot(direction, densest.direction)), 1);
+}
