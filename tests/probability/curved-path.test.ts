@@ -32,6 +32,7 @@ describe('curvedPathProbability', () => {
     ['crossing', encounterOf([20, 0, 30], [0, -7000, 7500], SIGMA_1, SIGMA_2, 20, 20)],
     ['head on', encounterOf([150, 0, 90], [0, -14_900, 100], SIGMA_1, SIGMA_2, 10, 20)],
     ['far out in the tail', encounterOf([500, 0, 300], [0, -7000, 7500], SIGMA_1, SIGMA_2, 5, 20)],
+    ['oblique', encounterOf([20, 0, 30], [200, -900, 5000], [100, 900, 60], [80, 700, 50], 20, 20)],
     ['half a kilometer per second', encounterOf([20, 10, 30], [0, -17, 500], SIGMA_1, SIGMA_2, 50, 20)],
   ])('agrees with the two-dimensional probability for a fast encounter: %s', (_, encounter) => {
     const found = curvedOf(encounter);
@@ -77,6 +78,16 @@ describe('curvedPathProbability', () => {
     [
       'hopping along the orbit',
       encounterOf([10, 100, 0], [-0.1, -0.02, 0], [10, 20, 10], [10, 20, 10], 30, 45),
+      'FIRST-ENTRY',
+    ],
+    [
+      'looping back, both ends of the window far away',
+      encounterOf([50, 0, 0], [0, -0.0809, 0.02], [20, 40, 20], [20, 40, 20], 40, 90),
+      'FIRST-ENTRY',
+    ],
+    [
+      'cut off in the middle',
+      { ...encounterOf([30, 0, 20], [3, 0.5, 4], SIGMA_1, SIGMA_2, 50, 20), toMs: TCA_MS },
       'FIRST-ENTRY',
     ],
   ])('agrees with the Monte Carlo: %s', (_, encounter, method) => {

@@ -39,6 +39,30 @@ describe('monteCarlo', () => {
     expect(mass).toBeLessThan(found.high);
   });
 
+  it('is the mass in the ball for errors correlated in all three directions', () => {
+    const state = fast.statesAt(TCA_MS).object1;
+    const [x, y, z] = state.positionKm;
+    const object2 = { ...state, positionKm: [x + 0.03, y + 0.012, z - 0.007] as const };
+    const found = monteCarlo(
+      {
+        ...fast,
+        statesAt: () => ({ object1: state, object2 }),
+        covariance1RtnM2: [
+          [900, 800, -800],
+          [800, 1000, -720],
+          [-800, -720, 1000],
+        ],
+        covariance2RtnM2: diagonal([0, 0, 0]),
+        hardBodyRadiusM: 25,
+      },
+      100_000,
+      4,
+    );
+    // Gauss-Legendre in spherical coordinates with NumPy, 80 by 80 by 160 points.
+    expect(0.12660298952627483).toBeGreaterThan(found.low);
+    expect(0.12660298952627483).toBeLessThan(found.high);
+  });
+
   it('counts only the time that counts', () => {
     const late = { ...fast, tcaMs: TCA_MS + 60_000, fromMs: TCA_MS + 60_000 };
     expect(monteCarlo(late, 5000, 1).hits).toBe(0);
