@@ -26,6 +26,13 @@ const along = (object: EncounterObject, seconds: number): EncounterObject => ({
   positionKm: object.positionKm.map((x, i) => x + seconds * object.velocityKmPerS[i]) as unknown as Vector3,
 });
 
+describe('the package entry', () => {
+  it('exports the two functions and nothing else that runs', async () => {
+    const entry = await import('../../src/index.js');
+    expect(Object.keys(entry).sort()).toEqual(['assessEncounter', 'fosterProbability']);
+  });
+});
+
 describe('assessEncounter', () => {
   it('gives the figures of an encounter worked by hand', () => {
     const found = assessEncounter(encounter);
