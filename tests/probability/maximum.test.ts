@@ -26,7 +26,7 @@ describe('maximumProbability', () => {
       const found = maximumProbability({ sigmaXM, sigmaYM, missXM, missYM, hardBodyRadiusM });
       let best = 0;
       let bestScale = 0;
-      for (let logScale = -15; logScale < 12; logScale += 0.02) {
+      for (let logScale = -15; logScale < 12; logScale += 0.04) {
         const scale = Math.exp(logScale);
         const here = fosterProbability({
           sigmaXM: scale * sigmaXM,
@@ -38,10 +38,10 @@ describe('maximumProbability', () => {
         if (here > best) [best, bestScale] = [here, scale];
       }
       const which = `${sigmaXM}, ${sigmaYM}, ${missXM}, ${missYM}, ${hardBodyRadiusM}`;
-      // Steps of 2 % in the scale stay within a few 1e-4 of the peak itself.
+      // Steps of 4 % in the scale stay within 1e-3 of the peak itself.
       expect(found.probability, which).toBeGreaterThanOrEqual(best * (1 - 1e-12));
-      expect(found.probability, which).toBeLessThan(best * 1.0005);
-      expect(Math.abs(Math.log(found.sigmaScale / bestScale)), which).toBeLessThan(0.03);
+      expect(found.probability, which).toBeLessThan(best * 1.001);
+      expect(Math.abs(Math.log(found.sigmaScale / bestScale)), which).toBeLessThan(0.05);
     }
   });
 
