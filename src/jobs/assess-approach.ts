@@ -7,7 +7,8 @@ import { assessInFull } from '../probability/assess-encounter.js';
 import { discProbability } from '../probability/foster.js';
 import { remarksOf } from '../probability/remarks.js';
 import { covarianceRtnM2, isBeyond, sigmaAt } from '../uncertainty/sigma-table.js';
-import { type EncounterRecords, extendRecords, FIELD } from './encounter-records.js';
+import { type EncounterRecords, extendRecords, FIELD, PROBABILITY_METHODS } from './encounter-records.js';
+import { pathProbability } from './path-probability.js';
 import { bitsOfRemarks } from './remark-bits.js';
 import type { SearchPlan } from './search-plan.js';
 
@@ -41,11 +42,11 @@ function assessApproach(
   sgp4StateAt(object1.record, object1.epochMs, tcaMs, states, 0);
   sgp4StateAt(object2.record, object2.epochMs, tcaMs, states, 6);
   const speedKmPerS = Math.hypot(states[9] - states[3], states[10] - states[4], states[11] - states[5]);
+  const fromMs = Math.max(plan.startMs, objects.validFromMs[first], objects.validFromMs[second]);
+  const toMs = Math.min(plan.endMs, objects.validToMs[first], objects.validToMs[second]);
   let entryMs = Number.NaN;
   let exitMs = Number.NaN;
   if (plan.volume.shape !== 'SPHERE') {
-    const fromMs = Math.max(plan.startMs, objects.validFromMs[first], objects.validFromMs[second]);
-    const toMs = Math.min(plan.endMs, objects.validToMs[first], objects.validToMs[second]);
     const passage = passageThrough(object1, object2, tcaMs, speedKmPerS, plan.volume, fromMs, toMs);
     if (passage === undefined) return;
     ({ entryMs, exitMs } = passage);
@@ -57,11 +58,14 @@ function assessApproach(
   const sigma1 = sigmaAt(curve1, age1);
   const sigma2 = sigmaAt(curve2, age2);
   const hardBodyRadiusM = plan.hardBodyRadiusM[first] + plan.hardBodyRadiusM[second];
+  const side1 = { ...object1, state: stateFrom(0), covarianceRtnM2: covarianceRtnM2(sigma1) };
+  const side2 = { ...object2, state: stateFrom(6), covarianceRtnM2: covarianceRtnM2(sigma2) };
   const assessed = assessInFull({
-    object1: { ...stateFrom(0), covarianceRtnM2: covarianceRtnM2(sigma1) },
-    object2: { ...stateFrom(6), covarianceRtnM2: covarianceRtnM2(sigma2) },
+    object1: { ...side1.state, covarianceRtnM2: side1.covarianceRtnM2 },
+    object2: { ...side2.state, covarianceRtnM2: side2.covarianceRtnM2 },
     hardBodyRadiusM,
   });
+  const path = pathProbability(side1, side2, tcaMs, hardBodyRadiusM, assessed, fromMs, toMs);
   const { plane } = assessed;
   const scaled = (factor: number) =>
     plane === undefined
@@ -80,14 +84,14 @@ function assessApproach(
   data[at + FIELD.tcaMs] = tcaMs;
   data.set(states, at + FIELD.state1);
   data[at + FIELD.missKm] = missKm;
-  data[at + FIELD.probability] = assessed.collisionProbability ?? Number.NaN;
+  data[at + FIELD.probability] = path.probability ?? Number.NaN;
   data[at + FIELD.probabilityFoster] = assessed.collisionProbability ?? Number.NaN;
   data[at + FIELD.probabilityMax] = assessed.collisionProbabilityMax ?? Number.NaN;
   data[at + FIELD.mahalanobis] = assessed.mahalanobisDistance ?? Number.NaN;
   data[at + FIELD.peakScale] = assessed.peakSigmaScale ?? Number.NaN;
   data[at + FIELD.probabilityAtHalf] = scaled(0.5);
   data[at + FIELD.probabilityAtTwice] = scaled(2);
-  data[at + FIELD.method] = plane === undefined ? 0 : 1;
+  data[at + FIELD.method] = PROBABILITY_METHODS.indexOf(path.method);
   data[at + FIELD.entryMs] = entryMs;
   data[at + FIELD.exitMs] = exitMs;
   data[at + FIELD.remarks] = bitsOfRemarks(
@@ -96,7 +100,7 @@ function assessApproach(
       missDistanceM: 1000 * missKm,
       hardBodyRadiusM,
       hasProbability: plane !== undefined,
-      isStraight: undefined,
+      isStraight: path.isStraight,
       peakSigmaScale: assessed.peakSigmaScale,
       elementAgeDays: [age1, age2],
       maxAgeDays: plan.maxAgeDays,

@@ -12,27 +12,21 @@ import type { ScreenedObject } from './screened-object.js';
 const MS_PER_DAY = 86_400_000;
 
 /**
- * Sums the probabilities of each pair over its encounters in the window into every one of its records:
- * 1 - product(1 - p), encounters taken as independent.
- *
- * @param identities which object each index stands for, where several stand for one in turn
+ * Puts the total of each pair over its encounters in the window into every one of its records, as `pairTotal`
+ * does: at least one collision, encounters taken as independent, those without a figure as none.
  */
-export function fillPairProbabilities(
-  records: EncounterRecords,
-  objectCount: number,
-  identities?: ArrayLike<number>,
-): void {
-  const logOfNone = new Map<number, number>();
+export function fillPairProbabilities(records: EncounterRecords, objectCount: number): void {
   const { data, size } = records;
-  const identity = (index: number) => identities?.[index] ?? index;
-  const keyAt = (at: number) =>
-    identity(data[at + FIELD.first]) * objectCount + identity(data[at + FIELD.second]);
+  const totals = new Map<number, number>();
+  const keyAt = (at: number) => data[at + FIELD.first] * objectCount + data[at + FIELD.second];
   for (let at = 0; at < FIELDS * size; at += FIELDS) {
-    const key = keyAt(at);
-    logOfNone.set(key, (logOfNone.get(key) ?? 0) + Math.log1p(-data[at + FIELD.probability]));
+    const probability = data[at + FIELD.probability];
+    if (Number.isNaN(probability)) continue;
+    const before = totals.get(keyAt(at)) ?? 0;
+    totals.set(keyAt(at), before + probability * (1 - before));
   }
   for (let at = 0; at < FIELDS * size; at += FIELDS) {
-    data[at + FIELD.pairProbability] = -Math.expm1(logOfNone.get(keyAt(at)) as number);
+    data[at + FIELD.pairProbability] = totals.get(keyAt(at)) ?? Number.NaN;
   }
 }
 

@@ -31,7 +31,10 @@ export const FIELD = {
   pairProbability: 27,
 } as const;
 
-export const PROBABILITY_METHODS = ['', 'FOSTER-1992', 'ADJOINING-TUBES'] as const;
+/** `''` where there is no probability. The first is in the words of CCSDS 508.0-B-1. */
+export const PROBABILITY_METHODS = ['', 'FOSTER-1992', 'ADJOINING-TUBES', 'FIRST-ENTRY'] as const;
+
+export type ProbabilityMethod = (typeof PROBABILITY_METHODS)[number];
 
 /** Grows as encounters come in; `size` counts encounters. */
 export type EncounterRecords = { data: Float64Array; size: number };

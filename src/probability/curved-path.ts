@@ -8,7 +8,7 @@ import { inverseOf } from './inverse.js';
 import { integrate } from './quadrature.js';
 
 const SQRT_TWO_PI = Math.sqrt(2 * Math.PI);
-const RELATIVE_TOLERANCE = 1e-5;
+const RELATIVE_TOLERANCE = 1e-4;
 /** First interval about closest approach, in passages of one sigma, and the growth of the ones after it. */
 const FIRST_INTERVAL = 1;
 const INTERVAL_GROWTH = 4;

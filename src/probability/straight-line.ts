@@ -9,6 +9,8 @@ const PASSAGE_SIGMAS = 3;
 /** Fractions of half the passage at which the path is compared with the straight line. */
 const COMPARED_AT = [-1, -0.5, 0.5, 1] as const;
 const LARGEST_SHIFT = 0.2;
+/** Of the way along the relative velocity: the objects must go through the passage, not turn back in it. */
+const LARGEST_PART_ALONG = 0.25;
 
 export type StraightLineTest = {
   readonly isStraight: boolean;
@@ -16,6 +18,8 @@ export type StraightLineTest = {
   readonly halfPassageS: number;
   /** Largest deviation from the straight line in that time, in sigmas of the encounter plane. */
   readonly deviationSigmas: number;
+  /** Largest deviation along the line, as a part of the way that the relative velocity makes. */
+  readonly deviationAlong: number;
 };
 
 /**
@@ -32,6 +36,10 @@ export type StraightLineTest = {
  * to 0.2 (m at least 1). Displacements at one sigma along the path, where most of the probability is, are
  * some nine times smaller and partly cancel: over thousands of random encounters the two-dimensional
  * figure then stayed within a tenth of the one along the curved path, mostly within one in a hundred.
+ *
+ * Along the line the way made must agree with the relative velocity within a quarter. A pair that trails
+ * along one orbit has a relative velocity only because its directions turn: in the axes that turn with it it
+ * goes nowhere, and never passes through the covariance.
  *
  * There is no bare limit on the speed: 50 m/s may be fast with sigmas of 10 m and 1 km/s slow with sigmas
  * of 10 km.
@@ -65,12 +73,14 @@ export function testStraightLine(
       isStraight: false,
       halfPassageS: Number.POSITIVE_INFINITY,
       deviationSigmas: Number.POSITIVE_INFINITY,
+      deviationAlong: Number.POSITIVE_INFINITY,
     };
   }
   const speed = norm(velocityMPerS);
   const sigmaAlongM = Math.sqrt(Math.max(0, dot(velocityMPerS, rotate(covarianceM2, velocityMPerS)))) / speed;
   const halfPassageS = (PASSAGE_SIGMAS * sigmaAlongM + hardBodyRadiusM) / speed;
   let deviationSigmas = 0;
+  let deviationAlong = 0;
   for (const fraction of COMPARED_AT) {
     const seconds = fraction * halfPassageS;
     const truly = turningPositionAt(statesAt, tcaMs + 1000 * seconds);
@@ -79,9 +89,16 @@ export function testStraightLine(
       positionM[1] + seconds * velocityMPerS[1],
       positionM[2] + seconds * velocityMPerS[2],
     ];
-    const deviation = encounterPlane(subtract(truly, straight), velocityMPerS, covarianceM2);
+    const shiftM = subtract(truly, straight);
+    const deviation = encounterPlane(shiftM, velocityMPerS, covarianceM2);
+    deviationAlong = Math.max(
+      deviationAlong,
+      Math.abs(dot(shiftM, velocityMPerS) / (speed * speed * seconds)),
+    );
     deviationSigmas = Math.max(deviationSigmas, deviation?.mahalanobisDistance ?? Number.POSITIVE_INFINITY);
   }
-  const isStraight = deviationSigmas * Math.max(1, plane.mahalanobisDistance) <= LARGEST_SHIFT;
-  return { isStraight, halfPassageS, deviationSigmas };
+  const isStraight =
+    deviationSigmas * Math.max(1, plane.mahalanobisDistance) <= LARGEST_SHIFT &&
+    deviationAlong <= LARGEST_PART_ALONG;
+  return { isStraight, halfPassageS, deviationSigmas, deviationAlong };
 }

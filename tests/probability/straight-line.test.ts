@@ -85,6 +85,13 @@ describe('testStraightLine', () => {
       isStraight: false,
       halfPassageS: Number.POSITIVE_INFINITY,
       deviationSigmas: Number.POSITIVE_INFINITY,
+      deviationAlong: Number.POSITIVE_INFINITY,
     });
+  });
+
+  it('fails for a pair that trails along one orbit, whose relative velocity is only its turning', () => {
+    // 8 km apart along the orbit at 1.1e-3 rad/s: 8.8 m/s, radial, in inertial axes, and none in turning ones.
+    const trailing = encounterOf([0, 8000, 0], [-8.8, 0, 0], [4000, 5000, 4000], [4000, 5000, 4000], 20, 600);
+    expect(testStraightLine(trailing).isStraight).toBe(false);
   });
 });
