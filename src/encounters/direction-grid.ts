@@ -1,42 +1,35 @@
-import { type DirectionCells, directionCells } from './direction-cells.js';
 import { SHELLS } from './shell.js';
 import { RECORD_SIZE, type StepStates } from './step-states.js';
 
 /**
  * Objects sorted by the cell of their direction from the Earth's center and, within a cell, by the lower
- * end of their radius interval: columns over the sphere, each in order of height. Cells are cubes of the
- * unit cube around the unit sphere, so that two directions within one edge of each other lie in the same
- * cell or in touching ones, poles included.
+ * end of their radius interval: columns over the sphere, each in order of height.
  */
 export type DirectionGrid = {
-  readonly cells: DirectionCells;
   /** First slot of each cell; one more than there are cells. */
   readonly cellStart: Int32Array;
   /** Number of slots in use. */
   size: number;
-  /** Cell of each slot. */
-  readonly cell: Int32Array;
   /** Object of each slot. */
   readonly object: Int32Array;
   /** Radius interval of each slot, as shell numbers. */
   readonly low: Int32Array;
   readonly high: Int32Array;
+  /** Highest `high` of the column up to each slot. */
+  readonly highest: Int32Array;
   /** The objects' records in the order of the slots, so that a column is read in one run. */
-  readonly records: Float64Array;
+  readonly records: Float32Array;
 };
 
-/** @param reach largest chord between two directions that must be found in touching cells */
-export function createDirectionGrid(capacity: number, reach: number): DirectionGrid {
-  const cells = directionCells(reach);
+export function createDirectionGrid(capacity: number, cellCount: number): DirectionGrid {
   return {
-    cells,
-    cellStart: new Int32Array(cells.width ** 3 + 1),
+    cellStart: new Int32Array(cellCount + 1),
     size: 0,
-    cell: new Int32Array(capacity),
     object: new Int32Array(capacity),
     low: new Int32Array(capacity),
     high: new Int32Array(capacity),
-    records: new Float64Array(RECORD_SIZE * capacity),
+    highest: new Int32Array(capacity),
+    records: new Float32Array(RECORD_SIZE * capacity),
   };
 }
 
@@ -55,26 +48,47 @@ export function fillDirectionGrid(
   step: StepStates,
 ): void {
   const { cell: cells, low: lows, high: highs, records } = step;
+  const { cellStart } = grid;
   if (byShell.length < count) byShell = new Int32Array(count);
   shellStart.fill(0);
-  for (let k = 0; k < count; k++) shellStart[lows[objects[k]] + 1]++;
-  for (let s = 0; s < SHELLS; s++) shellStart[s + 1] += shellStart[s];
-  for (let k = 0; k < count; k++) byShell[shellStart[lows[objects[k]]]++] = objects[k];
-  const { cellStart } = grid;
   cellStart.fill(0);
-  for (let k = 0; k < count; k++) cellStart[cells[objects[k]] + 1]++;
+  for (let k = 0; k < count; k++) {
+    const object = objects[k];
+    shellStart[lows[object] + 1]++;
+    cellStart[cells[object] + 1]++;
+  }
+  for (let s = 0; s < SHELLS; s++) shellStart[s + 1] += shellStart[s];
   const cellCount = cellStart.length - 1;
   for (let c = 0; c < cellCount; c++) cellStart[c + 1] += cellStart[c];
   for (let k = 0; k < count; k++) {
+    const object = objects[k];
+    byShell[shellStart[lows[object]]++] = object;
+  }
+  const { object: slots, low, high, records: sorted } = grid;
+  for (let k = 0; k < count; k++) {
     const object = byShell[k];
     const slot = cellStart[cells[object]]++;
-    grid.object[slot] = object;
-    grid.cell[slot] = cells[object];
-    grid.low[slot] = lows[object];
-    grid.high[slot] = highs[object];
+    slots[slot] = object;
+    low[slot] = lows[object];
+    high[slot] = highs[object];
     const from = RECORD_SIZE * object;
     const to = RECORD_SIZE * slot;
-    for (let k = 0; k < RECORD_SIZE; k++) grid.records[to + k] = records[from + k];
+    sorted[to] = records[from];
+    sorted[to + 1] = records[from + 1];
+    sorted[to + 2] = records[from + 2];
+    sorted[to + 3] = records[from + 3];
+    sorted[to + 4] = records[from + 4];
+    sorted[to + 5] = records[from + 5];
+    sorted[to + 6] = records[from + 6];
+  }
+  const { highest } = grid;
+  for (let c = 0, slot = 0; c < cellCount; c++) {
+    // Each start has moved to the end of its cell.
+    let top = -1;
+    for (; slot < cellStart[c]; slot++) {
+      if (high[slot] > top) top = high[slot];
+      highest[slot] = top;
+    }
   }
   // Each start has moved to the end of its cell, which is the start of the next.
   for (let c = cellCount; c > 0; c--) cellStart[c] = cellStart[c - 1];

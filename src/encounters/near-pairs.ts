@@ -1,9 +1,9 @@
 import { EARTH_RADIUS_KM } from '../ephemeris/gravity.js';
-import { WIDEST_TOLERANCE_KM } from '../ephemeris/tracks.js';
 import { FASTEST_RELATIVE_KM_PER_S, lineReachKm, type StepBounds, tidePerS2 } from './bounds.js';
-import { halfNeighborOffsets, neighborOffsets } from './direction-cells.js';
+import { type CellLists, cellsWithin, type DirectionCells } from './direction-cells.js';
 import type { DirectionGrid } from './direction-grid.js';
-import { RECORD_SIZE, type StepStates } from './step-states.js';
+import { shellFloorKm } from './shell.js';
+import { FAST, RECORD_SIZE, type StepStates } from './step-states.js';
 
 /** Pairs of one step whose straight lines pass close enough to be looked at on their tracks. */
 export type NearPairs = {
@@ -18,47 +18,76 @@ export function createNearPairs(): NearPairs {
   return { size: 0, first: new Int32Array(1024), second: new Int32Array(1024), visits: 0 };
 }
 
+/** For each cell, the cells in which its objects can have a partner. */
+export type CellPartners = {
+  /** Between two ordinary objects, each pair of cells once and without the cell itself. */
+  readonly later: CellLists;
+  readonly ordinary: CellLists;
+  /** Between an ordinary object and a fast one. */
+  readonly fast: CellLists;
+};
+
+export function cellPartners(cells: DirectionCells, bounds: StepBounds): CellPartners {
+  return {
+    later: cellsWithin(cells, bounds.ordinaryAngle, true),
+    ordinary: cellsWithin(cells, bounds.ordinaryAngle),
+    fast: cellsWithin(cells, bounds.fastAngle),
+  };
+}
+
 /** What the pair finders share within one step. */
-type Sweep = {
+export type Sweep = {
+  readonly step: StepStates;
   readonly halfStepS: number;
   readonly baseReachKm: number;
-  /** Squared reach of a straight line for the fastest pair at the Earth's surface: what no pair exceeds. */
-  readonly widestReach2: number;
+  /** eps of each object. */
+  readonly toleranceKm: Float64Array;
+  /** Reach of a straight line for the fastest pair at the Earth's surface: what no pair exceeds. */
+  readonly widestReachKm: number;
+  readonly partners: CellPartners;
   readonly pairs: NearPairs;
 };
 
-function sweepOf(bounds: StepBounds, pairs: NearPairs): Sweep {
-  const widest = lineReachKm(
-    bounds.halfStepS,
-    bounds.baseReachKm + 2 * WIDEST_TOLERANCE_KM,
-    tidePerS2(EARTH_RADIUS_KM - 1),
-    FASTEST_RELATIVE_KM_PER_S,
-  );
+export function sweepOf(
+  step: StepStates,
+  bounds: StepBounds,
+  toleranceKm: Float64Array,
+  partners: CellPartners,
+  pairs: NearPairs,
+): Sweep {
   return {
+    step,
     halfStepS: bounds.halfStepS,
     baseReachKm: bounds.baseReachKm,
-    widestReach2: widest * widest,
+    toleranceKm,
+    widestReachKm: lineReachKm(
+      bounds.halfStepS,
+      bounds.widestReachKm,
+      tidePerS2(EARTH_RADIUS_KM - 1),
+      FASTEST_RELATIVE_KM_PER_S,
+    ),
+    partners,
     pairs,
   };
 }
 
-/** Bound 4 of `bounds.ts` on one pair: objects a and b, whose records start at i and j. */
-function lookAt(
+/** Bound 4 of `bounds.ts` on a pair whose records start at i and k. */
+function lookAtLine(
   sweep: Sweep,
-  recordsA: Float64Array,
+  recordsA: Float32Array,
   i: number,
-  recordsB: Float64Array,
-  j: number,
+  recordsB: Float32Array,
+  k: number,
   a: number,
   b: number,
 ): void {
-  const { halfStepS } = sweep;
-  const x = recordsB[j] - recordsA[i];
-  const y = recordsB[j + 1] - recordsA[i + 1];
-  const z = recordsB[j + 2] - recordsA[i + 2];
-  const vx = recordsB[j + 3] - recordsA[i + 3];
-  const vy = recordsB[j + 4] - recordsA[i + 4];
-  const vz = recordsB[j + 5] - recordsA[i + 5];
+  const { halfStepS, widestReachKm, step } = sweep;
+  const x = recordsB[k] - recordsA[i];
+  const y = recordsB[k + 1] - recordsA[i + 1];
+  const z = recordsB[k + 2] - recordsA[i + 2];
+  const vx = recordsB[k + 3] - recordsA[i + 3];
+  const vy = recordsB[k + 4] - recordsA[i + 4];
+  const vz = recordsB[k + 5] - recordsA[i + 5];
   const distance2 = x * x + y * y + z * z;
   const along = x * vx + y * vy + z * vz;
   const speed2 = vx * vx + vy * vy + vz * vz;
@@ -68,22 +97,19 @@ function lookAt(
   const line = inside
     ? distance2 * speed2 - along * along
     : distance2 + halfStepS * (halfStepS * speed2 - 2 * absAlong);
-  if (line > (inside ? sweep.widestReach2 * speed2 : sweep.widestReach2)) return;
-  const tide = tidePerS2(Math.min(recordsA[i + 6], recordsB[j + 6]));
-  const reachKm = sweep.baseReachKm + recordsA[i + 7] + recordsB[j + 7];
+  const unit = inside ? speed2 : 1;
+  if (line > widestReachKm * widestReachKm * unit) return;
+  const tide = tidePerS2(shellFloorKm(Math.min(step.low[a], step.low[b])));
+  const reachKm = sweep.baseReachKm + sweep.toleranceKm[a] + sweep.toleranceKm[b];
   const reach = lineReachKm(halfStepS, reachKm, tide, Math.sqrt(speed2));
-  if (line > (inside ? reach * reach * speed2 : reach * reach)) return;
+  if (line > reach * reach * unit) return;
   const { pairs } = sweep;
   if (pairs.size === pairs.first.length) {
     pairs.first = grown(pairs.first);
     pairs.second = grown(pairs.second);
   }
-  pairs.first[pairs.size] = a < b ? a : b;
-  pairs.second[pairs.size++] = a < b ? b : a;
-}
-
-function lookAtObjects(sweep: Sweep, step: StepStates, a: number, b: number): void {
-  lookAt(sweep, step.records, RECORD_SIZE * a, step.records, RECORD_SIZE * b, a, b);
+  pairs.first[pairs.size] = Math.min(a, b);
+  pairs.second[pairs.size++] = Math.max(a, b);
 }
 
 function grown(array: Int32Array): Int32Array {
@@ -92,146 +118,173 @@ function grown(array: Int32Array): Int32Array {
   return larger;
 }
 
-/**
- * Pairs within one set of objects. The grid holds those that turn no faster than a circular orbit; the
- * others come as a list.
- */
-export function findPairsWithin(
-  step: StepStates,
-  bounds: StepBounds,
-  grid: DirectionGrid,
-  fast: Int32Array,
-  fastCount: number,
-  pairs: NearPairs,
-): void {
-  const sweep = sweepOf(bounds, pairs);
-  const { cellStart, cell, object, low, high, size, records } = grid;
-  const offsets = halfNeighborOffsets(grid.cells.width);
-  let visits = 0;
-  for (let start = 0; start < size; ) {
-    const home = cell[start];
+/** Pairs of the objects of a grid with each other. */
+export function findPairsWithin(sweep: Sweep, grid: DirectionGrid): void {
+  const { later } = sweep.partners;
+  const { cellStart } = grid;
+  const cellCount = cellStart.length - 1;
+  for (let home = 0; home < cellCount; home++) {
+    const start = cellStart[home];
     const end = cellStart[home + 1];
-    for (let i = start; i < end; i++) {
-      const top = high[i];
-      for (let k = i + 1; k < end && low[k] <= top; k++) {
-        visits++;
-        lookAt(sweep, records, RECORD_SIZE * i, records, RECORD_SIZE * k, object[i], object[k]);
-      }
-    }
-    for (let n = 0; n < offsets.length; n++) {
-      const neighbor = home + offsets[n];
-      let j = cellStart[neighbor];
-      const neighborEnd = cellStart[neighbor + 1];
-      if (j === neighborEnd) continue;
-      // Both columns rise in `low`: whoever starts lower meets all that start before it ends.
-      for (let i = start; i < end && j < neighborEnd; ) {
-        if (low[i] <= low[j]) {
-          const top = high[i];
-          for (let k = j; k < neighborEnd && low[k] <= top; k++) {
-            visits++;
-            lookAt(sweep, records, RECORD_SIZE * i, records, RECORD_SIZE * k, object[i], object[k]);
-          }
-          i++;
-        } else {
-          const top = high[j];
-          for (let k = i; k < end && low[k] <= top; k++) {
-            visits++;
-            lookAt(sweep, records, RECORD_SIZE * k, records, RECORD_SIZE * j, object[k], object[j]);
-          }
-          j++;
-        }
-      }
-    }
-    start = end;
-  }
-  pairs.visits += visits;
-  findFastPairs(step, sweep, grid, fast, fastCount);
-  for (let k = 0; k < fastCount; k++) {
-    for (let m = k + 1; m < fastCount; m++) {
-      if (overlap(step, fast[k], fast[m])) lookAtObjects(sweep, step, fast[k], fast[m]);
+    if (start === end) continue;
+    sweepColumn(sweep, grid, start, end);
+    for (let n = later.start[home]; n < later.start[home + 1]; n++) {
+      const otherStart = cellStart[later.cells[n]];
+      const otherEnd = cellStart[later.cells[n] + 1];
+      if (otherStart < otherEnd) sweepColumns(sweep, grid, start, end, grid, otherStart, otherEnd);
     }
   }
+}
+
+/** Pairs between the objects of two grids, the second one without steep objects. */
+export function findPairsAcross(sweep: Sweep, grid: DirectionGrid, otherGrid: DirectionGrid): void {
+  const { ordinary } = sweep.partners;
+  const { cellStart } = grid;
+  const otherStart = otherGrid.cellStart;
+  const cellCount = cellStart.length - 1;
+  for (let home = 0; home < cellCount; home++) {
+    const start = cellStart[home];
+    const end = cellStart[home + 1];
+    if (start === end) continue;
+    for (let n = ordinary.start[home]; n < ordinary.start[home + 1]; n++) {
+      const cell = ordinary.cells[n];
+      sweepColumns(sweep, grid, start, end, otherGrid, otherStart[cell], otherStart[cell + 1]);
+    }
+  }
+}
+
+/** Pairs within one column. */
+function sweepColumn(sweep: Sweep, grid: DirectionGrid, start: number, end: number): void {
+  const { object, low, high, records } = grid;
+  const { halfStepS, widestReachKm } = sweep;
+  let visits = 0;
+  for (let i = start; i < end; i++) {
+    const top = high[i];
+    const from = RECORD_SIZE * i;
+    const x = records[from];
+    const y = records[from + 1];
+    const z = records[from + 2];
+    const own = records[from + 6] * halfStepS + widestReachKm;
+    let k = i + 1;
+    for (; k < end && low[k] <= top; k++) {
+      const at = RECORD_SIZE * k;
+      const dx = records[at] - x;
+      const dy = records[at + 1] - y;
+      const dz = records[at + 2] - z;
+      const far = records[at + 6] * halfStepS + own;
+      if (dx * dx + dy * dy + dz * dz > far * far) continue;
+      lookAtLine(sweep, records, from, records, at, object[i], object[k]);
+    }
+    visits += k - i - 1;
+  }
+  sweep.pairs.visits += visits;
 }
 
 /**
- * Pairs between the objects of a grid with its list of fast ones, and other objects.
- *
- * @param others object indices, `otherCount` of them, evaluated in `step`
- * @param occupied 1 for each cell with an object of the grid within two cells of it
+ * Pairs between two columns. Most fail by being further apart than half a step at the sum of their speeds,
+ * so that nothing else is read of them.
  */
-export function findPairsBetween(
-  step: StepStates,
-  bounds: StepBounds,
-  grid: DirectionGrid,
-  fast: Int32Array,
-  fastCount: number,
-  others: Int32Array,
-  otherCount: number,
-  occupied: Uint8Array,
-  pairs: NearPairs,
-): void {
-  const sweep = sweepOf(bounds, pairs);
-  const { cellStart, object, low, high, records } = grid;
-  const near = neighborOffsets(grid.cells.width, 1);
-  const wide = neighborOffsets(grid.cells.width, 2);
-  let visits = 0;
-  for (let k = 0; k < otherCount; k++) {
-    const other = others[k];
-    const home = step.cell[other];
-    if (occupied[home] !== 0) {
-      const bottom = step.low[other];
-      const top = step.high[other];
-      const offsets = step.fast[other] === 0 ? near : wide;
-      for (let n = 0; n < offsets.length; n++) {
-        const neighbor = home + offsets[n];
-        const end = cellStart[neighbor + 1];
-        for (let slot = cellStart[neighbor]; slot < end && low[slot] <= top; slot++) {
-          if (high[slot] < bottom) continue;
-          visits++;
-          lookAt(sweep, records, RECORD_SIZE * slot, step.records, RECORD_SIZE * other, object[slot], other);
-        }
-      }
-    }
-    for (let m = 0; m < fastCount; m++) {
-      if (overlap(step, fast[m], other)) lookAtObjects(sweep, step, fast[m], other);
-    }
-  }
-  pairs.visits += visits;
-}
-
-/** Marks the cells that have an object of the grid within two cells. */
-export function markOccupied(grid: DirectionGrid, occupied: Uint8Array): void {
-  occupied.fill(0);
-  const offsets = neighborOffsets(grid.cells.width, 2);
-  for (let slot = 0; slot < grid.size; slot = grid.cellStart[grid.cell[slot] + 1]) {
-    const home = grid.cell[slot];
-    for (let n = 0; n < offsets.length; n++) occupied[home + offsets[n]] = 1;
-  }
-}
-
-/** Each fast object against the grid, two cells around it. */
-function findFastPairs(
-  step: StepStates,
+function sweepColumns(
   sweep: Sweep,
   grid: DirectionGrid,
-  fast: Int32Array,
-  fastCount: number,
+  start: number,
+  end: number,
+  otherGrid: DirectionGrid,
+  otherStart: number,
+  otherEnd: number,
 ): void {
-  const { cellStart, object, low, high, records } = grid;
-  const offsets = neighborOffsets(grid.cells.width, 2);
-  for (let k = 0; k < fastCount; k++) {
-    const a = fast[k];
-    for (let n = 0; n < offsets.length; n++) {
-      const neighbor = step.cell[a] + offsets[n];
-      const end = cellStart[neighbor + 1];
-      for (let slot = cellStart[neighbor]; slot < end && low[slot] <= step.high[a]; slot++) {
-        if (high[slot] >= step.low[a])
-          lookAt(sweep, step.records, RECORD_SIZE * a, records, RECORD_SIZE * slot, a, object[slot]);
+  const { records } = grid;
+  const { low, high, highest, records: others } = otherGrid;
+  const { halfStepS, widestReachKm } = sweep;
+  let visits = 0;
+  let first = otherStart;
+  for (let i = start; i < end; i++) {
+    const bottom = grid.low[i];
+    const top = grid.high[i];
+    // Columns rise in `low` and `highest`: whoever ends below this one ends below all that follow it.
+    while (first < otherEnd && highest[first] < bottom) first++;
+    if (first === otherEnd) break;
+    const from = RECORD_SIZE * i;
+    const x = records[from];
+    const y = records[from + 1];
+    const z = records[from + 2];
+    const own = records[from + 6] * halfStepS + widestReachKm;
+    let k = first;
+    for (; k < otherEnd && low[k] <= top; k++) {
+      const at = RECORD_SIZE * k;
+      const dx = others[at] - x;
+      const dy = others[at + 1] - y;
+      const dz = others[at + 2] - z;
+      const far = others[at + 6] * halfStepS + own;
+      if (dx * dx + dy * dy + dz * dz > far * far || high[k] < bottom) continue;
+      lookAtLine(sweep, records, from, others, at, grid.object[i], otherGrid.object[k]);
+    }
+    visits += k - first;
+  }
+  sweep.pairs.visits += visits;
+}
+
+/**
+ * Pairs between objects that are not in a grid and those that are.
+ *
+ * @param objects object indices, `count` of them, evaluated in `step`
+ */
+export function findPairsWithGrid(
+  sweep: Sweep,
+  grid: DirectionGrid,
+  objects: Int32Array,
+  count: number,
+): void {
+  if (grid.size === 0) return;
+  const { step, partners, pairs } = sweep;
+  const { cellStart, object, low, high, records: sorted } = grid;
+  const { records } = step;
+  const { halfStepS, widestReachKm } = sweep;
+  let visits = 0;
+  for (let m = 0; m < count; m++) {
+    const a = objects[m];
+    const home = step.cell[a];
+    const bottom = step.low[a];
+    const top = step.high[a];
+    const from = RECORD_SIZE * a;
+    const x = records[from];
+    const y = records[from + 1];
+    const z = records[from + 2];
+    const own = records[from + 6] * halfStepS + widestReachKm;
+    const lists = step.kind[a] === FAST ? partners.fast : partners.ordinary;
+    for (let n = lists.start[home]; n < lists.start[home + 1]; n++) {
+      const end = cellStart[lists.cells[n] + 1];
+      for (let k = cellStart[lists.cells[n]]; k < end && low[k] <= top; k++) {
+        if (high[k] < bottom) continue;
+        visits++;
+        const at = RECORD_SIZE * k;
+        const dx = sorted[at] - x;
+        const dy = sorted[at + 1] - y;
+        const dz = sorted[at + 2] - z;
+        const far = sorted[at + 6] * halfStepS + own;
+        if (dx * dx + dy * dy + dz * dz > far * far) continue;
+        lookAtLine(sweep, records, from, sorted, at, a, object[k]);
       }
     }
   }
+  pairs.visits += visits;
 }
 
-function overlap(step: StepStates, a: number, b: number): boolean {
-  return step.low[a] <= step.high[b] && step.low[b] <= step.high[a];
+/** Pairs between the objects of two lists, or within one list that is given twice. */
+export function findPairsOfLists(
+  sweep: Sweep,
+  first: Int32Array,
+  firstCount: number,
+  second: Int32Array,
+  secondCount: number,
+): void {
+  const { low, high, records } = sweep.step;
+  for (let i = 0; i < firstCount; i++) {
+    const a = first[i];
+    for (let k = first === second ? i + 1 : 0; k < secondCount; k++) {
+      const b = second[k];
+      if (low[a] > high[b] || low[b] > high[a]) continue;
+      lookAtLine(sweep, records, RECORD_SIZE * a, records, RECORD_SIZE * b, a, b);
+    }
+  }
 }

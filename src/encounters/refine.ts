@@ -8,9 +8,14 @@ export type RefinedObject = { readonly record: SatRec; readonly epochMs: number 
 const DIFFERENCE_S = 0.25;
 /** SGP4's velocity is off the derivative of its position by less than this, km/s. */
 const VELOCITY_DEFECT_KM_PER_S = 0.003;
+/** Twice what the velocity of an orbit that crosses all heights is off. */
+const SURE_VELOCITY_KM_PER_S = 0.02;
 /** Where that defect could move a TCA by more than this, the last steps are taken on positions alone. */
 const TOLERATED_SHIFT_S = 1e-4;
 const MS_PER_S = 1000;
+/** Over so short a time a relative path is straight to within the slack, and SGP4's velocity good enough. */
+const STRAIGHT_S = 1;
+const STRAIGHT_SLACK_KM = 0.02;
 /** A time in milliseconds since 1970 resolves 0.00024 ms in one double. */
 const SETTLED_MS = 5e-4;
 
@@ -46,6 +51,19 @@ export function closingRateAt(object1: RefinedObject, object2: RefinedObject, ti
   return (after - before) / (4 * DIFFERENCE_S);
 }
 
+/**
+ * Sign of `closingRateAt`, from one state a side where SGP4's velocity is good enough to tell.
+ *
+ * @returns NaN where SGP4 gives no state
+ */
+function closingSignAt(object1: RefinedObject, object2: RefinedObject, timeMs: number): number {
+  if (!relativeStateAt(object1, object2, timeMs, relative)) return Number.NaN;
+  const distance = Math.sqrt(relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2);
+  const rate = relative[0] * relative[3] + relative[1] * relative[4] + relative[2] * relative[5];
+  if (Math.abs(rate) > distance * SURE_VELOCITY_KM_PER_S) return Math.sign(rate);
+  return Math.sign(closingRateAt(object1, object2, timeMs));
+}
+
 /** TCA to the microsecond, so that the way there leaves no trace in the result. */
 export function roundTca(timeMs: number): number {
   return Math.round(timeMs * 1000) / 1000;
@@ -55,24 +73,37 @@ export function roundTca(timeMs: number): number {
  * Time of closest approach of a pair whose distance is convex around `guessMs`, by Newton's method on true
  * SGP4 states.
  *
- * @returns the time, rounded to a microsecond, or NaN where SGP4 gives no state on the way there or the
- * iteration leaves `reachMs` around the guess
+ * @param widestKm approaches that are surely wider are not worth going on with
+ * @returns the time, rounded to a microsecond, or NaN where SGP4 gives no state on the way there, the
+ * iteration leaves `reachMs` around the guess, or the approach is wider than `widestKm`
  */
 export function refineFastTca(
   object1: RefinedObject,
   object2: RefinedObject,
   guessMs: number,
   reachMs: number,
+  widestKm = Number.POSITIVE_INFINITY,
 ): number {
   let timeMs = guessMs;
   let speed2 = 0;
   let distance = 0;
   for (let iteration = 0; iteration < 20; iteration++) {
     if (!relativeStateAt(object1, object2, timeMs, relative)) return Number.NaN;
-    const [x, y, z, vx, vy, vz] = relative;
+    const x = relative[0];
+    const y = relative[1];
+    const z = relative[2];
+    const vx = relative[3];
+    const vy = relative[4];
+    const vz = relative[5];
     speed2 = vx * vx + vy * vy + vz * vz;
     distance = Math.sqrt(x * x + y * y + z * z);
-    const stepMs = (-(x * vx + y * vy + z * vz) / speed2) * MS_PER_S;
+    const stepS = -(x * vx + y * vy + z * vz) / speed2;
+    if (Math.abs(stepS) < STRAIGHT_S) {
+      const straight2 = distance * distance - stepS * stepS * speed2;
+      const surely = widestKm + STRAIGHT_SLACK_KM;
+      if (straight2 > surely * surely) return Number.NaN;
+    }
+    const stepMs = stepS * MS_PER_S;
     timeMs += stepMs;
     if (!(Math.abs(timeMs - guessMs) <= reachMs)) return Number.NaN;
     if (Math.abs(stepMs) < SETTLED_MS) break;
@@ -104,10 +135,10 @@ export function slowTcas(
   const found: number[] = [];
   const steps = Math.max(1, Math.ceil((toMs - fromMs) / gridMs));
   let beforeMs = fromMs;
-  let before = closingRateAt(object1, object2, beforeMs);
+  let before = closingSignAt(object1, object2, beforeMs);
   for (let k = 1; k <= steps; k++) {
     const afterMs = fromMs + ((toMs - fromMs) * k) / steps;
-    const after = closingRateAt(object1, object2, afterMs);
+    const after = closingSignAt(object1, object2, afterMs);
     if (before < 0 && after >= 0) {
       let low = beforeMs;
       let high = afterMs;

@@ -1,18 +1,44 @@
 import { SLAB_S } from '../ephemeris/node-spacing.js';
+import { SEGMENT_SIZE } from '../ephemeris/septic.js';
 import { createTrackCursor, stateOnTrack, type TrackCursor } from '../ephemeris/track-cursor.js';
-import { createTrackMaker, type SlabTracks, type TrackMaker, trackToleranceKm } from '../ephemeris/tracks.js';
-import { radialAcceleration, type StepBounds, stepBounds, tidePerS2 } from './bounds.js';
+import { createTrackMaker, type SlabTracks, type TrackMaker } from '../ephemeris/tracks.js';
+import {
+  farthestInStepKm,
+  isConvex,
+  radialAcceleration,
+  type StepBounds,
+  stepBounds,
+  stepToleranceKm,
+  tidePerS2,
+} from './bounds.js';
+import { directionCells } from './direction-cells.js';
 import { createDirectionGrid, type DirectionGrid, fillDirectionGrid } from './direction-grid.js';
 import {
+  type CellPartners,
+  cellPartners,
   createNearPairs,
-  findPairsBetween,
+  findPairsAcross,
+  findPairsOfLists,
+  findPairsWithGrid,
   findPairsWithin,
-  markOccupied,
   type NearPairs,
+  type Sweep,
+  sweepOf,
 } from './near-pairs.js';
 import { type RefinedObject, refineFastTca, relativeStateAt, slowTcas } from './refine.js';
 import { pairKey, type SearchObjects, type SearchRules } from './search-problem.js';
-import { createStepStates, evaluateStep, RECORD_SIZE, type StepStates } from './step-states.js';
+import { shellFloorKm } from './shell.js';
+import {
+  ABSENT,
+  createStepBatch,
+  evaluateSteps,
+  FLAT,
+  RECORD_SIZE,
+  STEEP,
+  type StepBatch,
+  type StepObjects,
+  type StepStates,
+} from './step-states.js';
 
 /** A local minimum of the distance of two objects, on true SGP4 states. */
 export type ClosestApproach = {
@@ -35,14 +61,20 @@ export type SlabResult = {
 };
 
 /** Steps that a slab can be cut into; the search takes the one that costs least. */
-const STEPS_S = [20, 24, 30, 36, 40, 48, 60, 72, 80, 90, 96, 120, 150, 160, 180];
+const STEPS_S = [20, 24, 30, 36, 40, 48, 60, 72, 80, 90, 96, 120, 150, 160, 180, 200, 240, 300];
 /** Cost of stepping an object against that of looking at a pair: sets the step, not the result. */
 const OBJECT_COST = 16;
 const TRIAL_STEP_S = 120;
 /** Grid of the sign changes of a slow pair. */
-const SLOW_GRID_MS = 20_000;
+const SLOW_GRID_MS = 40_000;
 /** A refined TCA is taken by the step that holds it; this much over its edges covers rounding. */
 const EDGE_MS = 0.01;
+/** Steps that are evaluated together. */
+const BATCH_STEPS = 4;
+/** Distance on the tracks of a slow pair is looked at in parts of this. */
+const SLOW_TRACK_STEP_S = 20;
+/** What single precision rounds away of three components, with room for that of the velocity over a step. */
+const RECORD_ROUNDING = 2e-7;
 
 /** Two minima of one pair cannot be this close: they are one, found by two steps or two slabs. */
 const SAME_MS = 1;
@@ -67,9 +99,18 @@ export function distinctApproaches(
 export type SlabSearcher = {
   readonly objects: SearchObjects;
   readonly rules: SearchRules;
+  /**
+   * Index in `objects` of each object of the search, which numbers them by size of orbit, primaries first:
+   * what meets in space then lies close together in memory.
+   */
+  readonly order: Int32Array;
   readonly makeTracks: TrackMaker;
   readonly curvature: Float64Array;
-  readonly toleranceKm: Float64Array;
+  /** No track goes farther out, km. */
+  readonly farthestKm: Float64Array;
+  /** Room that every slab uses again. */
+  readonly coefficients: Float64Array;
+  readonly batch: StepBatch;
 };
 
 /** Number of slabs of a window. */
@@ -79,39 +120,70 @@ export function slabCount({ startMs, endMs }: Pick<SearchRules, 'startMs' | 'end
 
 /** `loadBulkPropagator` must have been awaited in this thread. */
 export function createSlabSearcher(objects: SearchObjects, rules: SearchRules): SlabSearcher {
-  const curvature = new Float64Array(objects.count);
-  const toleranceKm = new Float64Array(objects.count);
-  for (let i = 0; i < objects.count; i++) {
-    curvature[i] = radialAcceleration(objects.eccentricity[i], objects.perigeeRadiusKm[i]);
-    toleranceKm[i] = trackToleranceKm(objects.eccentricity[i]);
-  }
-  const makeTracks = createTrackMaker(
-    objects.records.map((record, i) => ({
-      record,
-      epochMs: objects.epochMs[i],
-      eccentricity: objects.eccentricity[i],
-      perigeeRadiusKm: objects.perigeeRadiusKm[i],
-    })),
-  );
-  return { objects, rules, makeTracks, curvature, toleranceKm };
+  const { count, primaryCount, records, epochMs, eccentricity, perigeeRadiusKm } = objects;
+  const axisKm = perigeeRadiusKm.map((radiusKm, i) => radiusKm / (1 - eccentricity[i]));
+  const order = Int32Array.from({ length: count }, (_, i) => i);
+  order.subarray(0, primaryCount).sort((a, b) => axisKm[a] - axisKm[b] || a - b);
+  order.subarray(primaryCount).sort((a, b) => axisKm[a] - axisKm[b] || a - b);
+  return {
+    objects,
+    rules,
+    order,
+    curvature: Float64Array.from(order, (i) => radialAcceleration(eccentricity[i], perigeeRadiusKm[i])),
+    farthestKm: Float64Array.from(order, (i) => 1.02 * axisKm[i] * (1 + eccentricity[i]) + 100),
+    coefficients: new Float64Array(SEGMENT_SIZE * count),
+    batch: createStepBatch(count, BATCH_STEPS),
+    makeTracks: createTrackMaker(
+      Array.from(order, (i) => ({
+        record: records[i],
+        epochMs: epochMs[i],
+        eccentricity: eccentricity[i],
+        perigeeRadiusKm: perigeeRadiusKm[i],
+      })),
+    ),
+  };
 }
+
+/** Objects of one side that may meet something in the slab, and those of the current step by kind. */
+type Side = {
+  readonly candidates: Int32Array;
+  readonly there: Int32Array;
+  readonly flat: Int32Array;
+  readonly steep: Int32Array;
+  readonly fast: Int32Array;
+  thereCount: number;
+  flatCount: number;
+  steepCount: number;
+  fastCount: number;
+};
 
 type Workspace = {
   readonly searcher: SlabSearcher;
   readonly tracks: SlabTracks;
   readonly cursor: TrackCursor;
-  readonly step: StepStates;
-  /** Objects alive in the current step: primaries, then others, then the primaries by speed of turning. */
-  readonly primaries: Int32Array;
-  readonly others: Int32Array;
-  readonly ordinary: Int32Array;
-  readonly fast: Int32Array;
+  /** When each object is there, seconds after the slab's start. */
+  readonly fromS: Float64Array;
+  readonly toS: Float64Array;
+  readonly primaries: Side;
+  readonly others: Side;
   readonly pairs: NearPairs;
+};
+
+/** What hangs on the length of a step. */
+type StepPlan = {
+  readonly bounds: StepBounds;
+  readonly partners: CellPartners;
+  /** eps of each object. */
+  readonly toleranceKm: Float64Array;
+  readonly evaluated: StepObjects;
+  /** The primaries that are not fast. */
+  readonly flat: DirectionGrid;
+  readonly steep: DirectionGrid;
 };
 
 /** Finds every closest approach of one slab of the window. */
 export function searchSlab(searcher: SlabSearcher, slabIndex: number): SlabResult {
-  const { objects, rules } = searcher;
+  const { objects, rules, order } = searcher;
   const slabStartMs = rules.startMs + slabIndex * SLAB_S * 1000;
   const lengthS = Math.min(SLAB_S, (rules.endMs - slabStartMs) / 1000);
   const tracks = searcher.makeTracks(slabStartMs, slabIndex);
@@ -119,31 +191,24 @@ export function searchSlab(searcher: SlabSearcher, slabIndex: number): SlabResul
   for (let i = 0; i < objects.count; i++) {
     const lastMs = slabStartMs + tracks.endS[i] * 1000;
     // A failure outside of the object's own time or past the window's end is none.
-    if (tracks.endS[i] < lengthS && lastMs < objects.validToMs[i]) failures.push({ object: i, lastMs });
+    if (tracks.endS[i] < lengthS && lastMs < objects.validToMs[order[i]]) {
+      failures.push({ object: order[i], lastMs });
+    }
   }
-  const work: Workspace = {
-    searcher,
-    tracks,
-    cursor: createTrackCursor(tracks),
-    step: createStepStates(objects.count),
-    primaries: new Int32Array(objects.primaryCount),
-    others: new Int32Array(objects.count - objects.primaryCount),
-    ordinary: new Int32Array(objects.primaryCount),
-    fast: new Int32Array(objects.primaryCount),
-    pairs: createNearPairs(),
-  };
+  failures.sort((a, b) => a.object - b.object);
+  const work = createWorkspace(searcher, tracks, lengthS);
   const stepS = chooseStep(work, lengthS);
-  const bounds = stepBounds(rules.missKm, stepS / 2);
-  const grid = createDirectionGrid(objects.primaryCount, bounds.directionReach);
-  const occupied = new Uint8Array(grid.cellStart.length - 1);
+  const plan = planStep(work, stepS);
   const approaches: ClosestApproach[] = [];
   let pairsRefined = 0;
   const stepCount = Math.ceil(lengthS / stepS);
-  for (let k = 0; k < stepCount; k++) {
-    const middleS = (k + 0.5) * stepS;
-    work.pairs.size = 0;
-    findNearPairs(work, bounds, grid, occupied, middleS);
-    pairsRefined += refinePairs(work, bounds, middleS, approaches);
+  for (let from = 0; from < stepCount; from += BATCH_STEPS) {
+    const count = Math.min(BATCH_STEPS, stepCount - from);
+    evaluateBatch(work, plan, (from + 0.5) * stepS, count);
+    for (let k = 0; k < count; k++) {
+      const sweep = findNearPairs(work, plan, searcher.batch.steps[k]);
+      pairsRefined += refinePairs(work, plan, sweep, (from + k + 0.5) * stepS, approaches);
+    }
   }
   return {
     approaches: distinctApproaches(approaches, objects.count),
@@ -155,153 +220,285 @@ export function searchSlab(searcher: SlabSearcher, slabIndex: number): SlabResul
   };
 }
 
+function createWorkspace(searcher: SlabSearcher, tracks: SlabTracks, lengthS: number): Workspace {
+  const { objects, order } = searcher;
+  const fromS = Float64Array.from(order, (i) => (objects.validFromMs[i] - tracks.startMs) / 1000);
+  const toS = Float64Array.from(order, (i, k) =>
+    Math.min(tracks.endS[k], (objects.validToMs[i] - tracks.startMs) / 1000),
+  );
+  const isThere = (object: number) =>
+    fromS[object] < lengthS && toS[object] > 0 && fromS[object] < toS[object];
+  const indices = Int32Array.from({ length: objects.count }, (_, i) => i);
+  const primaries = indices.subarray(0, objects.primaryCount).filter(isThere);
+  const others = withinHeights(
+    searcher,
+    tracks,
+    primaries,
+    indices.subarray(objects.primaryCount).filter(isThere),
+  );
+  return {
+    searcher,
+    tracks,
+    cursor: createTrackCursor(tracks, searcher.coefficients),
+    fromS,
+    toS,
+    primaries: sideOf(primaries),
+    others: sideOf(others),
+    pairs: createNearPairs(),
+  };
+}
+
+function sideOf(candidates: Int32Array): Side {
+  const [there, flat, steep, fast] = [0, 1, 2, 3].map(() => new Int32Array(candidates.length));
+  return { candidates, there, flat, steep, fast, thereCount: 0, flatCount: 0, steepCount: 0, fastCount: 0 };
+}
+
+/** Those of the others whose heights over the slab come within reach of any primary's. */
+function withinHeights(
+  searcher: SlabSearcher,
+  tracks: SlabTracks,
+  primaries: Int32Array,
+  others: Int32Array,
+): Int32Array {
+  if (others.length === 0 || primaries.length === 0) return others.subarray(0, 0);
+  const reachKm = searcher.rules.missKm + 1;
+  const bottom = primaries.reduce(
+    (low, object) => Math.min(low, radiusRange(searcher, tracks, object)[0]),
+    Number.POSITIVE_INFINITY,
+  );
+  const top = primaries.reduce((high, object) => Math.max(high, radiusRange(searcher, tracks, object)[1]), 0);
+  return others.filter((object) => {
+    const [low, high] = radiusRange(searcher, tracks, object);
+    return low - reachKm <= top && high + reachKm >= bottom;
+  });
+}
+
+/** Radii that a track stays within over the slab: those of its nodes, and A h^2 / 8 for the arcs between them. */
+function radiusRange({ curvature }: SlabSearcher, tracks: SlabTracks, object: number): [number, number] {
+  const { nodes, segmentS } = tracks;
+  let low2 = Number.POSITIVE_INFINITY;
+  let high2 = 0;
+  const first = 6 * tracks.firstNode[object];
+  for (let at = first; at <= first + 6 * tracks.segmentCount[object]; at += 6) {
+    const radius2 = nodes[at] * nodes[at] + nodes[at + 1] * nodes[at + 1] + nodes[at + 2] * nodes[at + 2];
+    low2 = Math.min(low2, radius2);
+    high2 = Math.max(high2, radius2);
+  }
+  const swing = (curvature[object] * segmentS[object] * segmentS[object]) / 8 + tracks.toleranceKm[object];
+  return [Math.sqrt(low2) - swing, Math.sqrt(high2) + swing];
+}
+
+function planStep({ searcher, tracks, fromS, toS, primaries, others }: Workspace, stepS: number): StepPlan {
+  const { rules, curvature, farthestKm } = searcher;
+  const halfStepS = stepS / 2;
+  const toleranceKm = tracks.toleranceKm.map(
+    (tolerance, i) =>
+      stepToleranceKm(tolerance, tracks.segmentS[i], halfStepS) + RECORD_ROUNDING * farthestKm[i],
+  );
+  let widestKm = 0;
+  for (const { candidates } of [primaries, others]) {
+    for (const object of candidates) widestKm = Math.max(widestKm, toleranceKm[object]);
+  }
+  const bounds = stepBounds(rules.missKm, halfStepS, widestKm);
+  const cells = directionCells(bounds.ordinaryAngle);
+  const marginKm = toleranceKm.map((tolerance) => bounds.baseReachKm / 2 + tolerance);
+  return {
+    bounds,
+    partners: cellPartners(cells, bounds),
+    toleranceKm,
+    evaluated: { cells, halfStepS, fromS, toS, curvature, marginKm },
+    flat: createDirectionGrid(primaries.candidates.length, cells.count),
+    steep: createDirectionGrid(primaries.candidates.length, cells.count),
+  };
+}
+
 /**
  * The step that costs least: looking at pairs grows with the square of the step (the area that a cell
  * covers), stepping the objects falls with it. It depends on the objects alone, so that the work is the same
  * on every machine.
  */
 function chooseStep(work: Workspace, lengthS: number): number {
-  const bounds = stepBounds(work.searcher.rules.missKm, TRIAL_STEP_S / 2);
-  const grid = createDirectionGrid(work.searcher.objects.primaryCount, bounds.directionReach);
-  const occupied = new Uint8Array(grid.cellStart.length - 1);
-  findNearPairs(work, bounds, grid, occupied, Math.min(lengthS, SLAB_S) / 2);
+  const plan = planStep(work, TRIAL_STEP_S);
+  evaluateBatch(work, plan, lengthS / 2, 1);
+  findNearPairs(work, plan, work.searcher.batch.steps[0]);
   const visits = Math.max(1, work.pairs.visits);
-  work.pairs.visits = 0;
-  const best = TRIAL_STEP_S * Math.sqrt((OBJECT_COST * work.searcher.objects.count) / visits);
+  const objectCount = work.primaries.candidates.length + work.others.candidates.length;
+  const best = TRIAL_STEP_S * Math.sqrt((OBJECT_COST * objectCount) / visits);
   return STEPS_S.reduce((a, b) => (Math.abs(b - best) < Math.abs(a - best) ? b : a));
 }
 
-function findNearPairs(
-  work: Workspace,
-  bounds: StepBounds,
-  grid: DirectionGrid,
-  occupied: Uint8Array,
-  middleS: number,
-): void {
-  const { searcher, tracks, step, primaries, others, ordinary, fast } = work;
-  const { objects, rules } = searcher;
-  const fromS = middleS - bounds.halfStepS;
-  const toMs = tracks.startMs + (middleS + bounds.halfStepS) * 1000;
-  const fromMs = tracks.startMs + fromS * 1000;
-  const alive = (object: number) =>
-    tracks.endS[object] > fromS && objects.validFromMs[object] < toMs && objects.validToMs[object] > fromMs;
-  let primaryCount = 0;
-  for (let i = 0; i < objects.primaryCount; i++) if (alive(i)) primaries[primaryCount++] = i;
-  if (primaryCount === 0) return;
-  evaluateStep(
-    step,
-    work.cursor,
-    primaries,
-    primaryCount,
-    middleS,
-    bounds,
-    grid.cells,
-    searcher.curvature,
-    searcher.toleranceKm,
-  );
-  let ordinaryCount = 0;
-  let fastCount = 0;
-  let bottom = Number.POSITIVE_INFINITY;
-  let top = Number.NEGATIVE_INFINITY;
-  for (let k = 0; k < primaryCount; k++) {
-    const object = primaries[k];
-    if (step.fast[object] === 0) ordinary[ordinaryCount++] = object;
-    else fast[fastCount++] = object;
-    if (step.low[object] < bottom) bottom = step.low[object];
-    if (step.high[object] > top) top = step.high[object];
-  }
-  fillDirectionGrid(grid, ordinary, ordinaryCount, step);
-  if (rules.withinPrimaries) findPairsWithin(step, bounds, grid, fast, fastCount, work.pairs);
-  if (others.length === 0) return;
-  let otherCount = 0;
-  for (let i = objects.primaryCount; i < objects.count; i++) if (alive(i)) others[otherCount++] = i;
-  evaluateStep(
-    step,
-    work.cursor,
-    others,
-    otherCount,
-    middleS,
-    bounds,
-    grid.cells,
-    searcher.curvature,
-    searcher.toleranceKm,
-  );
-  let within = 0;
-  for (let k = 0; k < otherCount; k++) {
-    const object = others[k];
-    if (step.low[object] <= top && step.high[object] >= bottom) others[within++] = object;
-  }
-  markOccupied(grid, occupied);
-  findPairsBetween(step, bounds, grid, fast, fastCount, others, within, occupied, work.pairs);
+function evaluateBatch(work: Workspace, plan: StepPlan, firstMiddleS: number, count: number): void {
+  const { searcher, cursor, primaries, others } = work;
+  evaluateSteps(searcher.batch, cursor, primaries.candidates, firstMiddleS, count, plan.evaluated);
+  evaluateSteps(searcher.batch, cursor, others.candidates, firstMiddleS, count, plan.evaluated);
 }
 
-const track1 = new Float64Array(6);
-const track2 = new Float64Array(6);
+function findNearPairs(work: Workspace, plan: StepPlan, step: StepStates): Sweep {
+  const { searcher, primaries, others, pairs } = work;
+  const { flat, steep } = plan;
+  const sweep = sweepOf(step, plan.bounds, plan.toleranceKm, plan.partners, pairs);
+  pairs.size = 0;
+  sortByKind(primaries, step);
+  sortByKind(others, step);
+  fillDirectionGrid(flat, primaries.flat, primaries.flatCount, step);
+  fillDirectionGrid(steep, primaries.steep, primaries.steepCount, step);
+  const { fast, fastCount } = primaries;
+  if (searcher.rules.withinPrimaries) {
+    findPairsWithin(sweep, flat);
+    findPairsWithin(sweep, steep);
+    findPairsAcross(sweep, steep, flat);
+    findPairsWithGrid(sweep, flat, fast, fastCount);
+    findPairsWithGrid(sweep, steep, fast, fastCount);
+    findPairsOfLists(sweep, fast, fastCount, fast, fastCount);
+  }
+  findPairsWithGrid(sweep, flat, others.there, others.thereCount);
+  findPairsWithGrid(sweep, steep, others.there, others.thereCount);
+  findPairsOfLists(sweep, fast, fastCount, others.there, others.thereCount);
+  return sweep;
+}
+
+function sortByKind(side: Side, { kind }: StepStates): void {
+  const { candidates, there, flat, steep, fast } = side;
+  let thereCount = 0;
+  let flatCount = 0;
+  let steepCount = 0;
+  let fastCount = 0;
+  for (let k = 0; k < candidates.length; k++) {
+    const object = candidates[k];
+    if (kind[object] === ABSENT) continue;
+    there[thereCount++] = object;
+    if (kind[object] === FLAT) flat[flatCount++] = object;
+    else if (kind[object] === STEEP) steep[steepCount++] = object;
+    else fast[fastCount++] = object;
+  }
+  side.thereCount = thereCount;
+  side.flatCount = flatCount;
+  side.steepCount = steepCount;
+  side.fastCount = fastCount;
+}
+
+const track = new Float64Array(6);
 const relative = new Float64Array(6);
+
+/** Relative state of two tracks, b minus a. */
+function relativeOnTracks(cursor: TrackCursor, a: number, b: number, timeS: number): void {
+  stateOnTrack(cursor, b, timeS, relative, 0);
+  stateOnTrack(cursor, a, timeS, track, 0);
+  for (let k = 0; k < 6; k++) relative[k] -= track[k];
+}
 
 /** @returns number of pairs that went to SGP4 */
 function refinePairs(
   work: Workspace,
-  bounds: StepBounds,
+  plan: StepPlan,
+  { step }: Sweep,
   middleS: number,
   approaches: ClosestApproach[],
 ): number {
-  const { searcher, tracks, step, pairs, cursor } = work;
-  const { objects, rules } = searcher;
-  const halfStepS = bounds.halfStepS;
+  const { searcher, tracks, pairs } = work;
+  const { objects, rules, order } = searcher;
+  const { halfStepS, baseReachKm } = plan.bounds;
+  const { records, low } = step;
   const middleMs = tracks.startMs + middleS * 1000;
   const fromMs = middleMs - halfStepS * 1000;
   const toMs = middleMs + halfStepS * 1000;
   let refined = 0;
   for (let k = 0; k < pairs.size; k++) {
-    const first = pairs.first[k];
-    const second = pairs.second[k];
-    if (rules.skippedPairs.has(pairKey(first, second, objects.count))) continue;
-    const i = RECORD_SIZE * first;
-    const j = RECORD_SIZE * second;
+    const a = pairs.first[k];
+    const b = pairs.second[k];
+    const first = Math.min(order[a], order[b]);
+    const second = Math.max(order[a], order[b]);
+    if (rules.skippedPairs.size > 0 && rules.skippedPairs.has(pairKey(first, second, objects.count)))
+      continue;
+    const i = RECORD_SIZE * a;
+    const j = RECORD_SIZE * b;
     const speed = Math.hypot(
-      step.records[j + 3] - step.records[i + 3],
-      step.records[j + 4] - step.records[i + 4],
-      step.records[j + 5] - step.records[i + 5],
+      records[j + 3] - records[i + 3],
+      records[j + 4] - records[i + 4],
+      records[j + 5] - records[i + 5],
     );
-    const tide = tidePerS2(Math.min(step.records[i + 6], step.records[j + 6]));
-    const tolerance = searcher.toleranceKm[first] + searcher.toleranceKm[second];
-    const farthest = bounds.baseReachKm + tolerance + 2 * speed * halfStepS;
+    const toleranceKm = plan.toleranceKm[a] + plan.toleranceKm[b];
+    const tide = tidePerS2(shellFloorKm(Math.min(low[a], low[b])));
+    const farthestKm = farthestInStepKm(halfStepS, baseReachKm + toleranceKm, tide, speed);
+    const isFast = isConvex(halfStepS, farthestKm, tide, speed);
+    const guessS = isFast
+      ? nearestOnTracks(work, a, b, middleS, halfStepS, toleranceKm)
+      : slowestOnTracks(work, a, b, middleS, halfStepS, toleranceKm, speed + tide * farthestKm * halfStepS);
+    if (Number.isNaN(guessS)) continue;
+    refined++;
     const object1: RefinedObject = { record: objects.records[first], epochMs: objects.epochMs[first] };
     const object2: RefinedObject = { record: objects.records[second], epochMs: objects.epochMs[second] };
-    // The distance is convex over the step where speed^2 outweighs the tide by far.
-    if (speed * speed > 4 * tide * farthest * farthest) {
-      let s = middleS;
-      let distance2 = 0;
-      for (let iteration = 0; iteration < 8; iteration++) {
-        stateOnTrack(cursor, first, s, track1, 0);
-        stateOnTrack(cursor, second, s, track2, 0);
-        const x = track2[0] - track1[0];
-        const y = track2[1] - track1[1];
-        const z = track2[2] - track1[2];
-        const vx = track2[3] - track1[3];
-        const vy = track2[4] - track1[4];
-        const vz = track2[5] - track1[5];
-        distance2 = x * x + y * y + z * z;
-        const next = s - (x * vx + y * vy + z * vz) / (vx * vx + vy * vy + vz * vz);
-        const clamped = Math.max(middleS - halfStepS, Math.min(middleS + halfStepS, next));
-        const done = Math.abs(clamped - s) < 1e-3;
-        s = clamped;
-        if (done) break;
-      }
-      const limit = rules.missKm + tolerance;
-      if (distance2 > limit * limit) continue;
-      refined++;
-      const tcaMs = refineFastTca(object1, object2, tracks.startMs + s * 1000, 2000 * halfStepS);
+    if (isFast) {
+      const guessMs = tracks.startMs + guessS * 1000;
+      const tcaMs = refineFastTca(object1, object2, guessMs, 2000 * halfStepS, rules.missKm);
       accept(work, first, second, object1, object2, tcaMs, fromMs, toMs, approaches);
     } else {
-      refined++;
       for (const tcaMs of slowTcas(object1, object2, fromMs, toMs, SLOW_GRID_MS)) {
         accept(work, first, second, object1, object2, tcaMs, fromMs, toMs, approaches);
       }
     }
   }
   return refined;
+}
+
+/**
+ * Time of the closest approach of two tracks whose distance has one minimum in the step, in seconds after the
+ * slab's start; NaN where it is not in the step or too wide to be one within reach on SGP4.
+ */
+function nearestOnTracks(
+  { cursor, searcher, tracks }: Workspace,
+  a: number,
+  b: number,
+  middleS: number,
+  halfStepS: number,
+  toleranceKm: number,
+): number {
+  const limitKm = searcher.rules.missKm + toleranceKm;
+  let timeS = middleS;
+  let distance2 = 0;
+  let beyondS = 0;
+  for (let iteration = 0; iteration < 8; iteration++) {
+    relativeOnTracks(cursor, a, b, timeS);
+    const x = relative[0];
+    const y = relative[1];
+    const z = relative[2];
+    const vx = relative[3];
+    const vy = relative[4];
+    const vz = relative[5];
+    const speed2 = vx * vx + vy * vy + vz * vz;
+    distance2 = x * x + y * y + z * z;
+    // The tracks' errors in place and in speed move their closest approach by no more than this.
+    const segmentS = Math.min(tracks.segmentS[a], tracks.segmentS[b]);
+    beyondS = 0.01 + toleranceKm / Math.sqrt(speed2) + (limitKm * 6.5 * toleranceKm) / (segmentS * speed2);
+    const reachS = halfStepS + Math.min(beyondS, halfStepS);
+    const nextS = timeS - (x * vx + y * vy + z * vz) / speed2;
+    const clampedS = Math.max(middleS - reachS, Math.min(middleS + reachS, nextS));
+    const done = Math.abs(clampedS - timeS) < 1e-3;
+    timeS = clampedS;
+    if (done) break;
+  }
+  return distance2 > limitKm * limitKm ? Number.NaN : timeS;
+}
+
+/** NaN where two tracks that are slow against each other stay too far apart all step, else a time in it. */
+function slowestOnTracks(
+  { cursor, searcher }: Workspace,
+  a: number,
+  b: number,
+  middleS: number,
+  halfStepS: number,
+  toleranceKm: number,
+  fastestKmPerS: number,
+): number {
+  const steps = Math.max(1, Math.ceil((2 * halfStepS) / SLOW_TRACK_STEP_S));
+  const partS = (2 * halfStepS) / steps;
+  const limitKm = searcher.rules.missKm + toleranceKm + fastestKmPerS * partS * 0.5;
+  for (let k = 0; k < steps; k++) {
+    const timeS = middleS - halfStepS + (k + 0.5) * partS;
+    relativeOnTracks(cursor, a, b, timeS);
+    if (relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2 <= limitKm * limitKm) return timeS;
+  }
+  return Number.NaN;
 }
 
 function accept(

@@ -1,104 +1,152 @@
 import { SEGMENT_SIZE } from '../ephemeris/septic.js';
 import { moveCursor, type TrackCursor } from '../ephemeris/track-cursor.js';
-import { ORDINARY_RATE_PER_S, type StepBounds } from './bounds.js';
+import { ORDINARY_RATE_PER_S } from './bounds.js';
 import { cellOf, type DirectionCells } from './direction-cells.js';
 import { shellOf } from './shell.js';
 
-/** One record fills one cache line of the usual 64 bytes. */
+/**
+ * Numbers of one record: x, y, z (km), vx, vy, vz (km/s), speed (km/s) and a blank that fills half a cache
+ * line of the usual 64 bytes.
+ */
 export const RECORD_SIZE = 8;
+
+/** What becomes of an object in a step: most stay at nearly the same height and turn as circular orbits do. */
+export const FLAT = 0;
+/** Crosses many shells. */
+export const STEEP = 1;
+/** Turns faster than `ORDINARY_RATE_PER_S`. */
+export const FAST = 2;
+/** Is not there. */
+export const ABSENT = 3;
+
+/** Objects with a radius interval of more shells are steep. */
+const FLAT_SHELLS = 48;
 
 /** Where all objects are in the middle of a step, and what the search needs to know of each; by object. */
 export type StepStates = {
-  /** `RECORD_SIZE` doubles: x, y, z (km), vx, vy, vz (km/s), lowest radius over the step (km), eps (km). */
-  readonly records: Float64Array;
+  /** In single precision: what that rounds away is in eps of `bounds.ts`. */
+  readonly records: Float32Array;
   readonly cell: Int32Array;
   /** Radius interval over the step, widened for the reach, as shell numbers. */
   readonly low: Int32Array;
   readonly high: Int32Array;
-  /** 1 where the object turns faster than any circular orbit. */
-  readonly fast: Uint8Array;
+  readonly kind: Uint8Array;
 };
 
-export function createStepStates(count: number): StepStates {
-  return {
-    records: new Float64Array(RECORD_SIZE * count),
-    cell: new Int32Array(count),
-    low: new Int32Array(count),
-    high: new Int32Array(count),
-    fast: new Uint8Array(count),
-  };
+/** Steps that are evaluated together, so that each object's segment is read from memory once for all. */
+export type StepBatch = { readonly all: StepStates; readonly steps: readonly StepStates[] };
+
+export function createStepBatch(objectCount: number, stepCount: number): StepBatch {
+  const states = (array: (size: number) => StepStates) => array(objectCount * stepCount);
+  const all = states((size) => ({
+    records: new Float32Array(RECORD_SIZE * size),
+    cell: new Int32Array(size),
+    low: new Int32Array(size),
+    high: new Int32Array(size),
+    kind: new Uint8Array(size),
+  }));
+  const steps = Array.from({ length: stepCount }, (_, k) => {
+    const from = k * objectCount;
+    const to = from + objectCount;
+    return {
+      records: all.records.subarray(RECORD_SIZE * from, RECORD_SIZE * to),
+      cell: all.cell.subarray(from, to),
+      low: all.low.subarray(from, to),
+      high: all.high.subarray(from, to),
+      kind: all.kind.subarray(from, to),
+    };
+  });
+  return { all, steps };
 }
 
+/** What evaluating objects takes besides their tracks. */
+export type StepObjects = {
+  readonly cells: DirectionCells;
+  readonly halfStepS: number;
+  /** When each object is there, seconds after the slab's start. */
+  readonly fromS: Float64Array;
+  readonly toS: Float64Array;
+  /** A of `bounds.ts`, km/s^2. */
+  readonly curvature: Float64Array;
+  /** By how much the radius interval of each object is widened on either side, km. */
+  readonly marginKm: Float64Array;
+};
+
 /**
- * Evaluates the objects of a list in the middle of a step.
+ * Evaluates objects in the middle of each step of a batch.
  *
- * @param objects object indices, `count` of them
- * @param timeS middle of the step, seconds after the slab's start
- * @param curvatureKmPerS2 A of each object, see `bounds.ts`
- * @param toleranceKm eps of each object
+ * @param candidates object indices
+ * @param firstMiddleS middle of the first step, seconds after the slab's start
+ * @param stepCount number of steps, from the first of the batch on
  */
-export function evaluateStep(
-  step: StepStates,
+export function evaluateSteps(
+  batch: StepBatch,
   cursor: TrackCursor,
-  objects: Int32Array,
-  count: number,
-  timeS: number,
-  bounds: StepBounds,
-  cells: DirectionCells,
-  curvatureKmPerS2: Float64Array,
-  toleranceKm: Float64Array,
+  candidates: Int32Array,
+  firstMiddleS: number,
+  stepCount: number,
+  { cells, halfStepS, fromS, toS, curvature, marginKm }: StepObjects,
 ): void {
   const { coefficients, segmentStartS, segmentEndS } = cursor;
   const { segmentS } = cursor.tracks;
-  const { records } = step;
-  const halfStepS = bounds.halfStepS;
-  for (let k = 0; k < count; k++) {
-    const object = objects[k];
-    if (timeS >= segmentEndS[object] || timeS < segmentStartS[object]) moveCursor(cursor, object, timeS);
+  const { records, cell, low, high, kind } = batch.all;
+  const objectCount = fromS.length;
+  const halfSquareS2 = 0.5 * halfStepS * halfStepS;
+  for (let k = 0; k < candidates.length; k++) {
+    const object = candidates[k];
+    const margin = marginKm[object];
+    const arc = curvature[object] * halfSquareS2 + margin;
     const perLength = 1 / segmentS[object];
-    const u = (timeS - segmentStartS[object]) * perLength;
-    const to = RECORD_SIZE * object;
-    let at = SEGMENT_SIZE * object;
-    let radius2 = 0;
-    let rDotV = 0;
-    let speed2 = 0;
-    for (let axis = 0; axis < 3; axis++) {
-      const c1 = coefficients[at + 1];
-      const c2 = coefficients[at + 2];
-      const c3 = coefficients[at + 3];
-      const c4 = coefficients[at + 4];
-      const c5 = coefficients[at + 5];
-      const c6 = coefficients[at + 6];
-      const c7 = coefficients[at + 7];
-      const p = coefficients[at] + u * (c1 + u * (c2 + u * (c3 + u * (c4 + u * (c5 + u * (c6 + u * c7))))));
-      const v =
-        perLength *
-        (c1 + u * (2 * c2 + u * (3 * c3 + u * (4 * c4 + u * (5 * c5 + u * (6 * c6 + u * 7 * c7))))));
-      records[to + axis] = p;
-      records[to + 3 + axis] = v;
-      radius2 += p * p;
-      rDotV += p * v;
-      speed2 += v * v;
-      at += 8;
+    for (let b = 0; b < stepCount; b++) {
+      const timeS = firstMiddleS + 2 * b * halfStepS;
+      const out = b * objectCount + object;
+      if (!(toS[object] > timeS - halfStepS && fromS[object] < timeS + halfStepS)) {
+        kind[out] = ABSENT;
+        continue;
+      }
+      if (timeS >= segmentEndS[object] || timeS < segmentStartS[object]) moveCursor(cursor, object, timeS);
+      const u = (timeS - segmentStartS[object]) * perLength;
+      const to = RECORD_SIZE * out;
+      let at = SEGMENT_SIZE * object;
+      let radius2 = 0;
+      let rDotV = 0;
+      let speed2 = 0;
+      for (let axis = 0; axis < 3; axis++) {
+        const c1 = coefficients[at + 1];
+        const c2 = coefficients[at + 2];
+        const c3 = coefficients[at + 3];
+        const c4 = coefficients[at + 4];
+        const c5 = coefficients[at + 5];
+        const c6 = coefficients[at + 6];
+        const c7 = coefficients[at + 7];
+        const p = coefficients[at] + u * (c1 + u * (c2 + u * (c3 + u * (c4 + u * (c5 + u * (c6 + u * c7))))));
+        const v =
+          perLength *
+          (c1 + u * (2 * c2 + u * (3 * c3 + u * (4 * c4 + u * (5 * c5 + u * (6 * c6 + u * 7 * c7))))));
+        records[to + axis] = p;
+        records[to + 3 + axis] = v;
+        radius2 += p * p;
+        rDotV += p * v;
+        speed2 += v * v;
+        at += 8;
+      }
+      records[to + 6] = Math.sqrt(speed2);
+      const radius = Math.sqrt(radius2);
+      const perRadius = 1 / radius;
+      const swing = Math.abs(rDotV) * perRadius * halfStepS + arc;
+      const lowShell = shellOf(radius - swing);
+      const highShell = shellOf(radius + swing);
+      low[out] = lowShell;
+      high[out] = highShell;
+      cell[out] = cellOf(cells, records[to], records[to + 1], records[to + 2] * perRadius);
+      // Angular rate at the lowest point of the step; J2 changes the momentum by far less than what is added.
+      const rate = ORDINARY_RATE_PER_S * (radius - swing) * (radius - swing);
+      kind[out] =
+        1.004 * (radius2 * speed2 - rDotV * rDotV) > rate * rate
+          ? FAST
+          : highShell - lowShell > FLAT_SHELLS
+            ? STEEP
+            : FLAT;
     }
-    const radius = Math.sqrt(radius2);
-    const swing =
-      (Math.abs(rDotV) / radius) * halfStepS + 0.5 * curvatureKmPerS2[object] * halfStepS * halfStepS;
-    const lowKm = radius - swing;
-    const margin = bounds.baseReachKm / 2 + toleranceKm[object];
-    records[to + 6] = lowKm;
-    records[to + 7] = toleranceKm[object];
-    step.low[object] = shellOf(lowKm - margin);
-    step.high[object] = shellOf(radius + swing + margin);
-    const momentum = Math.sqrt(Math.max(0, radius2 * speed2 - rDotV * rDotV));
-    // Angular rate at the lowest point of the step; momentum changes by far less than the percent added.
-    step.fast[object] = 1.01 * momentum > ORDINARY_RATE_PER_S * lowKm * lowKm ? 1 : 0;
-    const perRadius = 1 / radius;
-    step.cell[object] = cellOf(
-      cells,
-      records[to] * perRadius,
-      records[to + 1] * perRadius,
-      records[to + 2] * perRadius,
-    );
   }
 }

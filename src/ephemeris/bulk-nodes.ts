@@ -7,6 +7,8 @@ import { BulkPropagator, createSingleThreadRuntime, EciBaseCalculator, type SatR
  */
 export type BulkNodes = {
   readonly objectCount: number;
+  /** Gives the memory back. */
+  readonly dispose: () => void;
   /**
    * @param timesMs the common times, whole milliseconds of UTC since 1970-01-01
    * @returns views that the next call overwrites: for object i and time k, `position` and `velocity` hold
@@ -42,6 +44,7 @@ export function createBulkNodes(records: readonly SatRec[], mostTimes: number): 
   propagator.setSatRecs([...records]);
   return {
     objectCount: records.length,
+    dispose: () => propagator.dispose(),
     statesAt: (timesMs) => {
       propagator.setDates(timesMs.map((timeMs) => new Date(timeMs)));
       propagator.run({ eci: { communityDecayCheckEnabled: true } });

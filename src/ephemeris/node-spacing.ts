@@ -6,11 +6,11 @@ import { EARTH_MU_KM3_PER_S2 } from './gravity.js';
  */
 export const SLAB_S = 14_400;
 
-/** Into how many segments a slab may be cut; all of them give whole seconds. */
-const SEGMENT_COUNTS = [4, 5, 6, 8, 10, 12, 15, 16, 20, 24, 30, 32, 40, 48, 64];
+/** Into how many segments a slab may be cut; all of them give whole milliseconds. */
+const SEGMENT_COUNTS = [1, 2, 3, 4, 5, 6, 8, 9, 10, 12, 15, 16, 20, 24, 30, 32, 40, 48, 64];
 
 /** Interpolation error of a two-body orbit that the spacing aims at. */
-const TWO_BODY_ERROR_KM = 0.02;
+const TWO_BODY_ERROR_KM = 0.1;
 
 /**
  * For each eccentricity, (perigee rate x segment length) at which the degree-seven segment of a two-body
@@ -33,8 +33,8 @@ export const TWO_BODY_REACH: readonly (readonly [eccentricity: number, perigeeAn
 ];
 
 /**
- * Number of equal segments of a slab for one orbit, so that a two-body orbit is met within 20 m; SGP4's
- * own orbits are then met within about 100 m, which the search verifies while it runs.
+ * Number of equal segments of a slab for one orbit, so that a two-body orbit is met within 100 m; SGP4's
+ * own orbits are then met within about 250 m, which the search verifies while it runs.
  *
  * @param eccentricity mean eccentricity; 0.005 is added for what J2 does to the osculating one
  * @param perigeeRadiusKm distance of the perigee from the Earth's center

@@ -1,10 +1,9 @@
-import { SLAB_S } from './node-spacing.js';
 import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
 import type { SlabTracks } from './tracks.js';
 
 /**
  * A place in time on all tracks of a slab: each object's current segment, fitted when the cursor first
- * comes to it. Times are seconds after the slab's start and must not go back by more than a step.
+ * comes to it. Times are seconds after the slab's start.
  */
 export type TrackCursor = {
   readonly tracks: SlabTracks;
@@ -13,20 +12,18 @@ export type TrackCursor = {
   readonly segmentEndS: Float64Array;
 };
 
-export function createTrackCursor(tracks: SlabTracks): TrackCursor {
+/** @param coefficients room for the segments, `SEGMENT_SIZE` numbers an object, that the cursor makes its own */
+export function createTrackCursor(tracks: SlabTracks, coefficients: Float64Array): TrackCursor {
   const count = tracks.firstNode.length;
   return {
     tracks,
-    coefficients: new Float64Array(SEGMENT_SIZE * count),
-    segmentStartS: new Float64Array(count).fill(Number.NEGATIVE_INFINITY),
+    coefficients,
+    segmentStartS: new Float64Array(count).fill(Number.POSITIVE_INFINITY),
     segmentEndS: new Float64Array(count).fill(Number.NEGATIVE_INFINITY),
   };
 }
 
-/**
- * Brings one object's segment to the time. Past the end of its last segment it stays on it: callers go
- * beyond by half a step at the most.
- */
+/** Brings one object's segment to the time; before its first and past its last segment it stays on that. */
 export function moveCursor(cursor: TrackCursor, object: number, timeS: number): void {
   const { tracks } = cursor;
   const lengthS = tracks.segmentS[object];
@@ -34,13 +31,13 @@ export function moveCursor(cursor: TrackCursor, object: number, timeS: number): 
   const index = Math.max(0, Math.min(last, Math.floor((timeS - tracks.originS[object]) / lengthS)));
   const startS = tracks.originS[object] + index * lengthS;
   cursor.segmentStartS[object] = startS;
-  cursor.segmentEndS[object] = index === last ? Math.max(startS + lengthS, SLAB_S) : startS + lengthS;
+  cursor.segmentEndS[object] = startS + lengthS;
   const node = 6 * (tracks.firstNode[object] + index);
   fitSegment(tracks.nodes, node, node + 6, lengthS, cursor.coefficients, SEGMENT_SIZE * object);
 }
 
 /**
- * State of one object on its current segment, which `moveCursor` has brought near the time.
+ * State of one object on its track.
  *
  * @param out x, y, z (km) and vx, vy, vz (km/s), TEME, from `outOffset` on
  */
@@ -51,6 +48,9 @@ export function stateOnTrack(
   out: Float64Array,
   outOffset: number,
 ): void {
+  if (timeS >= cursor.segmentEndS[object] || timeS < cursor.segmentStartS[object]) {
+    moveCursor(cursor, object, timeS);
+  }
   const perLength = 1 / cursor.tracks.segmentS[object];
   const u = (timeS - cursor.segmentStartS[object]) * perLength;
   evaluateSegment(cursor.coefficients, SEGMENT_SIZE * object, u, perLength, out, outOffset);

@@ -1,30 +1,39 @@
 import type { SatRec } from 'satellite.js';
 import { type BulkNodes, createBulkNodes } from './bulk-nodes.js';
-import { EARTH_MU_KM3_PER_S2, EARTH_RADIUS_KM } from './gravity.js';
+import { EARTH_MU_KM3_PER_S2, EARTH_RADIUS_KM, gravityAlong } from './gravity.js';
 import { SLAB_S, segmentsPerSlab } from './node-spacing.js';
 import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
 import { sgp4StateAt } from './sgp4-state.js';
 
 /**
- * How far an interpolated position may lie from SGP4's. Interpolation alone is good to some tens of meters,
- * but SGP4's velocity is not exactly the derivative of its position, by up to some m/s in eccentric orbits.
- * The segments that are measured in every slab must be within half of this; an object that is not is
- * stepped with SGP4.
+ * How far an interpolated position may lie from SGP4's, doubled. In near-circular orbits it is interpolation
+ * that errs, by some 0.1 km; in eccentric ones SGP4's velocity is not exactly the derivative of its position,
+ * by up to some m/s. The segments that are measured in every slab must be within half of this; an object that
+ * is not gets shorter ones.
  *
  * @param eccentricity mean eccentricity
  */
-export function trackToleranceKm(eccentricity: number): number {
-  return eccentricity < 0.01 ? 0.2 : WIDEST_TOLERANCE_KM;
+function trackToleranceKm(eccentricity: number): number {
+  return eccentricity < 0.01 ? 0.5 : 1.6;
 }
 
-export const WIDEST_TOLERANCE_KM = 1;
-
-/** Step of the objects that need watching: those that dip deep into the atmosphere or break the tolerance. */
+/** Segments of an object that breaks its tolerance are cut into so many. */
+const FINER = 4;
+/** Step of the objects that SGP4 may give up on or that break the tolerance still. */
 const WATCHED_STEP_S = 60;
+const WATCHED_STEP_MS = WATCHED_STEP_S * 1000;
+const WATCHED_STEPS = SLAB_S / WATCHED_STEP_S;
+const WATCHED_TOLERANCE_KM = 0.2;
 /** Below this height SGP4 may give up between two nodes. */
 const WATCHED_PERIGEE_KM = EARTH_RADIUS_KM + 90;
-/** Groups with more segments hold eccentric orbits, which are worst near perigee: measure all their segments. */
+/**
+ * Groups with more segments hold eccentric orbits, which are worst near perigee: of them every second segment
+ * is measured, in the next slab the others.
+ */
 const MOST_SEGMENTS_SAMPLED = 12;
+/** Steps that a track goes on past the time at which SGP4 fails, for steps that it fails in. */
+const COASTING_STEPS = 3;
+const NODES_PER_WATCHED = WATCHED_STEPS + 1 + COASTING_STEPS;
 
 export type TrackedObject = {
   readonly record: SatRec;
@@ -46,14 +55,20 @@ export type SlabTracks = {
   readonly originS: Float64Array;
   /** Seconds after the slab's start up to which SGP4 gives states; `SLAB_S` for an object that lives on. */
   readonly endS: Float64Array;
+  /** Twice the largest distance between each track and SGP4, km. */
+  readonly toleranceKm: Float64Array;
   /** Largest distance measured between a segment and SGP4, of the objects that were not stepped. */
   readonly worstDefectKm: number;
-  /** Number of objects that were stepped with SGP4 because they needed watching. */
+  /** Number of objects that were stepped with SGP4 one by one. */
   readonly watchedCount: number;
 };
 
-/** Makes the tracks of a slab; objects keep the order in which they were given. */
+/** Makes the tracks of a slab, which the next call overwrites; objects keep the order in which they were given. */
 export type TrackMaker = (slabStartMs: number, slabIndex: number) => SlabTracks;
+
+type MutableTracks = { -readonly [K in keyof SlabTracks]: SlabTracks[K] } & {
+  nodes: Float64Array<ArrayBuffer>;
+};
 
 type Group = { readonly members: Int32Array; readonly segments: number; readonly bulk: BulkNodes };
 
@@ -79,7 +94,12 @@ export function createTrackMaker(objects: readonly TrackedObject[]): TrackMaker 
         2 * segments + 1,
       ),
     }));
-  return (slabStartMs, slabIndex) => makeTracks(objects, groups, slabStartMs, slabIndex);
+  let room = new Float64Array(0);
+  return (slabStartMs, slabIndex) => {
+    const tracks = makeTracks(objects, groups, slabStartMs, slabIndex, room);
+    room = tracks.nodes;
+    return tracks;
+  };
 }
 
 function makeTracks(
@@ -87,167 +107,254 @@ function makeTracks(
   groups: readonly Group[],
   slabStartMs: number,
   slabIndex: number,
-): SlabTracks {
+  room: Float64Array<ArrayBuffer>,
+): SlabTracks & { nodes: Float64Array<ArrayBuffer> } {
   const count = objects.length;
-  const firstNode = new Int32Array(count);
-  const segmentCount = new Int32Array(count);
-  const segmentS = new Float64Array(count);
-  const originS = new Float64Array(count);
-  const endS = new Float64Array(count).fill(SLAB_S);
-  const bulkNodeCount = groups.reduce(
+  const nodeCount = groups.reduce((sum, { members, segments }) => sum + members.length * (segments + 1), 0);
+  const tracks: MutableTracks = {
+    startMs: slabStartMs,
+    nodes: withRoom(room, nodeCount, 0),
+    firstNode: new Int32Array(count),
+    segmentCount: new Int32Array(count),
+    segmentS: new Float64Array(count).fill(SLAB_S),
+    originS: new Float64Array(count),
+    endS: new Float64Array(count).fill(SLAB_S),
+    toleranceKm: Float64Array.from(objects, ({ eccentricity }) => trackToleranceKm(eccentricity)),
+    worstDefectKm: 0,
+    watchedCount: 0,
+  };
+  const watched: number[] = [];
+  const retried = new Map<number, number[]>();
+  let nextNode = 0;
+  for (const { members, segments, bulk } of groups) {
+    const stride = segments > MOST_SEGMENTS_SAMPLED ? 2 : segments;
+    const group = { members, segments, bulk };
+    const { dying, wide } = layTracks(tracks, group, slabStartMs, nextNode, slabIndex % stride, stride);
+    nextNode += members.length * (segments + 1);
+    watched.push(...dying);
+    if (wide.length > 0) retried.set(segments * FINER, wide);
+  }
+  let node = nextNode;
+  const finerGroups = [...retried].map(([segments, members]) => ({
+    segments,
+    members: Int32Array.from(members),
+    bulk: createBulkNodes(
+      members.map((object) => objects[object].record),
+      2 * segments + 1,
+    ),
+  }));
+  const finerCount = finerGroups.reduce(
     (sum, { members, segments }) => sum + members.length * (segments + 1),
     0,
   );
-  const bulkNodes = new Float64Array(6 * bulkNodeCount);
-  const watched: number[] = [];
-  let worstDefectKm = 0;
-  let nextNode = 0;
-  for (const { members, segments, bulk } of groups) {
-    const lengthS = SLAB_S / segments;
-    const sampled = segments > MOST_SEGMENTS_SAMPLED ? segments : 1;
-    const firstSampled = sampled === 1 ? slabIndex % segments : 0;
-    const timesMs: number[] = [];
-    for (let k = 0; k <= segments; k++) timesMs.push(slabStartMs + k * lengthS * 1000);
-    for (let k = 0; k < sampled; k++) {
-      timesMs.push(slabStartMs + (firstSampled + k + 0.5) * lengthS * 1000);
-    }
-    const states = bulk.statesAt(timesMs);
-    for (let m = 0; m < members.length; m++) {
-      const object = members[m];
-      const base = m * timesMs.length;
-      firstNode[object] = nextNode;
-      segmentCount[object] = segments;
-      segmentS[object] = lengthS;
-      let needsWatching = false;
-      for (let k = 0; k < timesMs.length; k++) if (states.error[base + k] !== 0) needsWatching = true;
-      for (let k = 0; k <= segments; k++) {
-        const from = 3 * (base + k);
-        const to = 6 * (nextNode + k);
-        for (let axis = 0; axis < 3; axis++) {
-          bulkNodes[to + axis] = states.position[from + axis];
-          bulkNodes[to + 3 + axis] = states.velocity[from + axis];
-        }
-        // Written so that a NaN is watched, too.
-        if (!(osculatingPerigeeKm(bulkNodes, to) > WATCHED_PERIGEE_KM)) needsWatching = true;
-      }
-      if (!needsWatching) {
-        const defectKm = worstMidpointKm(
-          bulkNodes,
-          nextNode,
-          lengthS,
-          firstSampled,
-          sampled,
-          states.position,
-          base + segments + 1,
-        );
-        if (defectKm > trackToleranceKm(objects[object].eccentricity) / 2) needsWatching = true;
-        else if (defectKm > worstDefectKm) worstDefectKm = defectKm;
-      }
-      if (needsWatching) watched.push(object);
-      nextNode += segments + 1;
-    }
+  tracks.nodes = withRoom(tracks.nodes, nodeCount + finerCount, nodeCount);
+  for (const group of finerGroups) {
+    const { dying, wide } = layTracks(tracks, group, slabStartMs, node, 0, 1);
+    node += group.members.length * (group.segments + 1);
+    watched.push(...dying, ...wide);
+    group.bulk.dispose();
   }
-  let nodes = bulkNodes;
-  if (watched.length > 0) {
-    const watchedNodes = SLAB_S / WATCHED_STEP_S + 1;
-    nodes = new Float64Array(bulkNodes.length + 6 * watchedNodes * watched.length);
-    nodes.set(bulkNodes);
-    for (const object of watched) {
-      firstNode[object] = nextNode;
-      segmentS[object] = WATCHED_STEP_S;
-      stepTrack(objects[object], object, slabStartMs, nodes, nextNode, segmentCount, originS, endS);
-      nextNode += segmentCount[object] + 1;
-    }
-  }
-  return {
-    startMs: slabStartMs,
-    nodes,
-    firstNode,
-    segmentCount,
-    segmentS,
-    originS,
-    endS,
-    worstDefectKm,
-    watchedCount: watched.length,
-  };
+  tracks.nodes = withRoom(tracks.nodes, node + NODES_PER_WATCHED * watched.length, node);
+  layWatchedTracks(objects, watched, tracks, node);
+  return tracks;
 }
 
-/** Steps one object with SGP4 until it fails or the slab ends. */
-function stepTrack(
+type Laid = {
+  /** Objects that SGP4 gives up on in the slab, or may. */
+  readonly dying: readonly number[];
+  /** Objects whose tracks are further from SGP4 than they may be. */
+  readonly wide: number[];
+};
+
+/** Lays the tracks of one group from the bulk propagator's states and measures them half-way between nodes. */
+function layTracks(
+  tracks: MutableTracks,
+  { members, segments, bulk }: Group,
+  slabStartMs: number,
+  groupNode: number,
+  firstMeasured: number,
+  stride: number,
+): Laid {
+  const { nodes } = tracks;
+  const dying: number[] = [];
+  const wide: number[] = [];
+  const lengthS = SLAB_S / segments;
+  const timesMs: number[] = [];
+  for (let k = 0; k <= segments; k++) timesMs.push(slabStartMs + k * lengthS * 1000);
+  for (let k = firstMeasured; k < segments; k += stride) {
+    timesMs.push(slabStartMs + (k + 0.5) * lengthS * 1000);
+  }
+  const states = bulk.statesAt(timesMs);
+  const { position, error } = states;
+  const times = timesMs.length;
+  for (let m = 0; m < members.length; m++) {
+    const object = members[m];
+    const base = m * times;
+    const firstNode = groupNode + m * (segments + 1);
+    tracks.firstNode[object] = firstNode;
+    tracks.segmentCount[object] = segments;
+    tracks.segmentS[object] = lengthS;
+    if (error[base] !== 0 || Number.isNaN(position[3 * base])) {
+      // Dead before the slab begins: no path, and no more work.
+      tracks.segmentCount[object] = 0;
+      tracks.endS[object] = 0;
+      continue;
+    }
+    let diesOrMay = false;
+    for (let k = 0; k < times; k++) if (error[base + k] !== 0) diesOrMay = true;
+    for (let k = 0; k <= segments; k++) {
+      if (!copyState(states, base + k, nodes, firstNode + k)) diesOrMay = true;
+      // Written so that a NaN is watched, too.
+      if (!(osculatingPerigeeKm(nodes, 6 * (firstNode + k)) > WATCHED_PERIGEE_KM)) diesOrMay = true;
+    }
+    if (diesOrMay) {
+      dying.push(object);
+      continue;
+    }
+    let defectKm = 0;
+    for (let k = firstMeasured, at = base + segments + 1; k < segments; k += stride, at++) {
+      defectKm = Math.max(defectKm, midpointDefectKm(nodes, firstNode + k, lengthS, position, at));
+    }
+    if (defectKm > tracks.toleranceKm[object] / 2) wide.push(object);
+    else if (defectKm > tracks.worstDefectKm) tracks.worstDefectKm = defectKm;
+  }
+  return { dying, wide };
+}
+
+/** Room for `nodes` nodes that keeps the first `used` ones, with some to spare so that the next slab has enough. */
+function withRoom(room: Float64Array<ArrayBuffer>, nodes: number, used: number): Float64Array<ArrayBuffer> {
+  if (room.length >= 6 * nodes) return room;
+  const larger = new Float64Array(6 * Math.ceil(1.1 * nodes));
+  larger.set(room.subarray(0, 6 * used));
+  return larger;
+}
+
+/** Lays the tracks of watched objects in short steps, to where SGP4 fails. */
+function layWatchedTracks(
+  objects: readonly TrackedObject[],
+  watched: readonly number[],
+  tracks: MutableTracks,
+  firstNode: number,
+): void {
+  tracks.watchedCount = watched.length;
+  if (watched.length === 0) return;
+  const times = WATCHED_STEPS + 1;
+  const bulk = createBulkNodes(
+    watched.map((object) => objects[object].record),
+    times,
+  );
+  const states = bulk.statesAt(Array.from({ length: times }, (_, k) => tracks.startMs + k * WATCHED_STEP_MS));
+  const ending: { object: number; lastGood: number }[] = [];
+  for (let m = 0; m < watched.length; m++) {
+    const object = watched[m];
+    const node = firstNode + m * NODES_PER_WATCHED;
+    tracks.firstNode[object] = node;
+    tracks.segmentS[object] = WATCHED_STEP_S;
+    tracks.segmentCount[object] = WATCHED_STEPS;
+    tracks.toleranceKm[object] = WATCHED_TOLERANCE_KM;
+    let alive = 0;
+    while (alive < times && copyState(states, m * times + alive, tracks.nodes, node + alive)) alive++;
+    if (alive < times) ending.push({ object, lastGood: alive - 1 });
+  }
+  bulk.dispose();
+  for (const { object, lastGood } of ending) layEndingTrack(objects[object], object, lastGood, tracks);
+}
+
+/**
+ * Finds the millisecond at which SGP4 fails and lays the nodes again so that the last segment ends there.
+ *
+ * @param lastGood number of the last watched step that has a state
+ */
+function layEndingTrack(
   { record, epochMs }: TrackedObject,
   object: number,
-  slabStartMs: number,
-  nodes: Float64Array,
-  firstNode: number,
-  segmentCount: Int32Array,
-  originS: Float64Array,
-  endS: Float64Array,
+  lastGood: number,
+  tracks: MutableTracks,
 ): void {
-  const stepMs = WATCHED_STEP_S * 1000;
-  const steps = SLAB_S / WATCHED_STEP_S;
-  let alive = 0;
-  while (
-    alive <= steps &&
-    sgp4StateAt(record, epochMs, slabStartMs + alive * stepMs, nodes, 6 * (firstNode + alive))
-  ) {
-    alive++;
-  }
-  segmentCount[object] = steps;
-  if (alive > steps) return;
-  segmentCount[object] = Math.max(0, alive - 1);
-  if (alive === 0) {
-    endS[object] = 0;
-    return;
-  }
-  const scratch = new Float64Array(6);
-  let goodMs = slabStartMs + (alive - 1) * stepMs;
-  let badMs = goodMs + stepMs;
+  tracks.segmentCount[object] = 0;
+  tracks.endS[object] = 0;
+  if (lastGood < 0) return;
+  let goodMs = tracks.startMs + lastGood * WATCHED_STEP_MS;
+  let badMs = goodMs + WATCHED_STEP_MS;
   while (badMs - goodMs > 1) {
     const middleMs = Math.floor((goodMs + badMs) / 2);
-    if (sgp4StateAt(record, epochMs, middleMs, scratch)) goodMs = middleMs;
+    if (sgp4StateAt(record, epochMs, middleMs, sample)) goodMs = middleMs;
     else badMs = middleMs;
   }
-  endS[object] = (goodMs - slabStartMs) / 1000;
-  // The last nodes are laid again so that the last segment has full length and ends where SGP4 does.
-  const lastS = endS[object];
+  const lastS = (goodMs - tracks.startMs) / 1000;
   const segments = Math.max(1, Math.ceil(lastS / WATCHED_STEP_S));
-  for (let k = 0; k <= segments; k++) {
-    const timeMs = slabStartMs + lastS * 1000 - (segments - k) * stepMs;
-    if (!sgp4StateAt(record, epochMs, timeMs, nodes, 6 * (firstNode + k))) {
-      // No state before the slab either: nothing to draw a path from.
-      segmentCount[object] = 0;
-      endS[object] = 0;
-      return;
+  const bulk = createBulkNodes([record], segments);
+  const states = bulk.statesAt(
+    Array.from({ length: segments }, (_, k) => goodMs - (segments - k) * WATCHED_STEP_MS),
+  );
+  const firstNode = tracks.firstNode[object];
+  let complete = sgp4StateAt(record, epochMs, goodMs, tracks.nodes, 6 * (firstNode + segments));
+  for (let k = 0; k < segments; k++) {
+    if (!copyState(states, k, tracks.nodes, firstNode + k)) complete = false;
+  }
+  bulk.dispose();
+  // Where there is no state before the slab either, there is nothing to draw a path of seconds from.
+  if (!complete) return;
+  for (let k = 0; k < COASTING_STEPS; k++) coast(tracks.nodes, firstNode + segments + k);
+  tracks.segmentCount[object] = segments + COASTING_STEPS;
+  tracks.endS[object] = lastS;
+  tracks.originS[object] = lastS - segments * WATCHED_STEP_S;
+}
+
+const rates = new Float64Array(6);
+
+/** Lays the node after a node one watched step further along its path under gravity: a Taylor series. */
+function coast(nodes: Float64Array, node: number): void {
+  const from = 6 * node;
+  nodes.copyWithin(from + 6, from, from + 6);
+  const parts = 12;
+  const h = WATCHED_STEP_S / parts;
+  for (let part = 0; part < parts; part++) {
+    gravityAlong(nodes, from + 6, rates);
+    for (let axis = 0; axis < 3; axis++) {
+      const at = from + 6 + axis;
+      nodes[at] += h * (nodes[at + 3] + h * (rates[axis] / 2 + (h * rates[3 + axis]) / 6));
+      nodes[at + 3] += h * (rates[axis] + (h * rates[3 + axis]) / 2);
     }
   }
-  segmentCount[object] = segments;
-  originS[object] = lastS - segments * WATCHED_STEP_S;
+}
+
+/** @returns false when there is no state */
+function copyState(
+  { position, velocity, error }: ReturnType<BulkNodes['statesAt']>,
+  index: number,
+  nodes: Float64Array,
+  node: number,
+): boolean {
+  if (error[index] !== 0) return false;
+  const from = 3 * index;
+  const to = 6 * node;
+  nodes[to] = position[from];
+  nodes[to + 1] = position[from + 1];
+  nodes[to + 2] = position[from + 2];
+  nodes[to + 3] = velocity[from];
+  nodes[to + 4] = velocity[from + 1];
+  nodes[to + 5] = velocity[from + 2];
+  return Number.isFinite(position[from] + velocity[from]);
 }
 
 const segment = new Float64Array(SEGMENT_SIZE);
 const sample = new Float64Array(6);
 
-function worstMidpointKm(
+/** Distance between the middle of the segment after a node and SGP4's position there. */
+function midpointDefectKm(
   nodes: Float64Array,
-  firstNode: number,
+  node: number,
   lengthS: number,
-  firstSegment: number,
-  segments: number,
   positions: Float64Array,
-  firstPosition: number,
+  index: number,
 ): number {
-  let worst2 = 0;
-  for (let k = 0; k < segments; k++) {
-    const node = 6 * (firstNode + firstSegment + k);
-    fitSegment(nodes, node, node + 6, lengthS, segment, 0);
-    evaluateSegment(segment, 0, 0.5, 1 / lengthS, sample, 0);
-    const at = 3 * (firstPosition + k);
-    const dx = sample[0] - positions[at];
-    const dy = sample[1] - positions[at + 1];
-    const dz = sample[2] - positions[at + 2];
-    worst2 = Math.max(worst2, dx * dx + dy * dy + dz * dz);
-  }
-  return Math.sqrt(worst2);
+  fitSegment(nodes, 6 * node, 6 * (node + 1), lengthS, segment, 0);
+  evaluateSegment(segment, 0, 0.5, 1 / lengthS, sample, 0);
+  const dx = sample[0] - positions[3 * index];
+  const dy = sample[1] - positions[3 * index + 1];
+  const dz = sample[2] - positions[3 * index + 2];
+  return Math.sqrt(dx * dx + dy * dy + dz * dz);
 }
 
 /** Perigee distance of the two-body orbit through one state. */
