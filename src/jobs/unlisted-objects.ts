@@ -19,6 +19,6 @@ export function warnOfUnlisted(
   const missing = [...listed].filter(([designator]) => !present.has(designator));
   if (missing.length === 0) return;
   const [designator, { line }] = missing[0];
-  const more = missing.length === 1 ? '' : ` and ${missing.length - 1} more`;
-  ports.log.warn(`${file}:${line}: ${designator}${more} in no element-set file: check the designator`);
+  const who = missing.length === 1 ? `${designator} is` : `${designator} and ${missing.length - 1} more are`;
+  ports.log.warn(`${file}:${line}: ${who} in no element-set file: check the designator`);
 }
