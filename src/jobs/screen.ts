@@ -21,6 +21,7 @@ import { type EncounterRecords, FIELD, FIELDS } from './encounter-records.js';
 import { failedLines, failedSets, warnOfFailures } from './failed-sets.js';
 import { keepInHistory, prepareHistory, readPastRuns } from './history.js';
 import { readElementInputs, readKnowledge } from './inputs.js';
+import { alertLines, resultsLine } from './outcome-lines.js';
 import { type OutputFolder, openOutputFolder } from './output-folder.js';
 import { rankedRecords, writeRankedTables } from './ranked-records.js';
 import { RUN_RECORD } from './run-folder.js';
@@ -201,8 +202,10 @@ async function screenInto(
     );
   }
   const lines = [
+    ...alertLines(ranked, options.alertPc),
     ...(comparison === undefined ? [] : [...changeLines(comparison.changes, RISEN_SHOWN, past[0]?.name), '']),
     formatConjunctionTable(ranked, options.top),
+    '',
     ...companionLines(companions.length),
     formatFileCounts(inputs.files),
     ...failedLines(outcome.lastMsOf.size),
@@ -210,7 +213,7 @@ async function screenInto(
       ? []
       : [formatElementAges('Fleet', agesAt(inputs.fleet, options.startMs)).trimEnd()]),
     formatElementAges('Catalog', agesAt(inputs.catalog, options.startMs)),
-    `Results in ${options.outPath}: conjunctions.csv, sensitivity.csv, companions.csv, unused-elements.csv, run.json`,
+    resultsLine(options.outPath, runFiles),
     formatCaution().trimEnd(),
   ];
   return { lines: lines.map((line) => line.replace(/\n$/, '')), alertReached };

@@ -1,0 +1,35 @@
+import { formatUtc } from '../elements/utc.js';
+import type { ConjunctionObject } from '../tables/conjunction.js';
+import { exponentText } from '../tables/csv-text.js';
+import type { RankedConjunctions } from '../tables/terminal-table.js';
+import { terminalText } from '../tables/terminal-text.js';
+
+/**
+ * Why the command ends with status 3, for whoever is woken by that; nothing where no conjunction reaches
+ * the probability.
+ *
+ * @param alertPc `undefined` where no alert was asked for
+ */
+export function alertLines({ count, at }: RankedConjunctions, alertPc: number | undefined): string[] {
+  if (alertPc === undefined) return [];
+  let reaching = 0;
+  while (reaching < count && (at(reaching).collisionProbability ?? -1) >= alertPc) reaching++;
+  if (reaching === 0) return [];
+  const { object1, object2, tcaMs, collisionProbability } = at(0);
+  const side = ({ designator, name }: ConjunctionObject) => terminalText(`${designator} ${name}`.trimEnd());
+  const tca = formatUtc(Math.round(tcaMs / 1000) * 1000).replace('.000Z', 'Z');
+  return [
+    `Alert: ${reaching === 1 ? '1 conjunction reaches' : `${reaching} conjunctions reach`} the probability ${alertPc} of --alert-pc,`,
+    `the highest with ${exponentText(collisionProbability as number, 1)}: ${side(object1)} / ${side(object2)}, TCA ${tca}`,
+    '',
+  ];
+}
+
+/** Where the results are and what is there, the messages counted instead of named. */
+export function resultsLine(outPath: string, files: readonly string[]): string {
+  const messages = files.filter((name) => name.startsWith('cdm/')).length;
+  const named = files.filter((name) => !name.startsWith('cdm/'));
+  const counted =
+    messages === 0 ? [] : [`${messages} conjunction message${messages === 1 ? '' : 's'} in cdm/`];
+  return `Results in ${outPath}: ${[...named, ...counted].join(', ')}`;
+}
