@@ -87,7 +87,7 @@ function valueInWords(option: Option): string {
     case 'number':
       return option.integer === true ? 'a whole number, without quotes' : 'a number, without quotes';
     case 'half-sizes':
-      return 'three numbers [R, T, N] in km';
+      return `three numbers [R, T, N] in ${option.of?.unit ?? 'km'}`;
     case 'choice':
       return option.choices.map((choice) => `"${choice}"`).join(' or ');
     case 'paths':

@@ -21,6 +21,12 @@ type NumberOption = Described & {
   readonly max?: number;
 };
 
+/** Three numbers above 0 along R, T and N; half-sizes in km unless `of` says otherwise. */
+type TripleOption = Described & {
+  readonly kind: 'half-sizes';
+  readonly of?: { readonly words: string; readonly max: number; readonly unit: string };
+};
+
 /**
  * One option, told once: the command line, the configuration file and the help are all derived from it.
  * Values: `flag` boolean; `number` number; `half-sizes` three numbers above 0; `time` milliseconds of UTC
@@ -29,7 +35,7 @@ type NumberOption = Described & {
 export type Option =
   | NumberOption
   | (Described & { readonly kind: 'flag' })
-  | (Described & { readonly kind: 'half-sizes' })
+  | TripleOption
   | (Described & { readonly kind: 'time' })
   | (Described & { readonly kind: 'choice'; readonly choices: readonly string[]; readonly default?: string })
   | (Described & { readonly kind: 'path' })
@@ -58,6 +64,7 @@ export type Values<S extends Options> = {
 
 /** A half-size or miss distance beyond this is a slip: it would call half the catalog close. */
 export const MAX_HALF_SIZE_KM = 1000;
+const HALF_SIZES = { words: 'half-sizes', max: MAX_HALF_SIZE_KM, unit: 'km' };
 
 /** One value as it was given (a time still as text), and the words by which a message points at it: `--days` or `nightly.json, line 4: "days"`. */
 export type Given = { readonly value: unknown; readonly origin: string };
@@ -157,9 +164,10 @@ function checked(option: Option, { value, origin }: Given): unknown {
       return value;
     case 'half-sizes': {
       const sizes = value as readonly number[];
-      if (sizes.length !== 3 || !sizes.every((size) => size > 0 && size <= MAX_HALF_SIZE_KM)) {
+      const { words, max, unit } = option.of ?? HALF_SIZES;
+      if (sizes.length !== 3 || !sizes.every((size) => size > 0 && size <= max)) {
         throw new InputError(
-          `${origin} is ${sizes.join(',')}: it must be three half-sizes R,T,N, each above 0 and at most ${MAX_HALF_SIZE_KM} km`,
+          `${origin} is ${sizes.join(',')}: it must be three ${words} R,T,N, each above 0 and at most ${max} ${unit}`,
         );
       }
       return sizes;

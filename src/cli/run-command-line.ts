@@ -5,12 +5,13 @@ import { assessCommand } from './assess-command.js';
 import { calibrateCommand } from './calibrate-command.js';
 import { type Command, reportError } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
+import { launchCommand } from './launch-command.js';
 import { nearestName } from './options.js';
 import { screenCommand } from './screen-command.js';
 import type { Surroundings } from './surroundings.js';
 
 /** Every subcommand, in the order of the help. */
-const COMMANDS: readonly Command[] = [screenCommand, assessCommand, calibrateCommand];
+const COMMANDS: readonly Command[] = [screenCommand, launchCommand, assessCommand, calibrateCommand];
 
 /**
  * Runs one command line.
@@ -117,8 +118,8 @@ close to another, ranks the encounters by collision probability, and writes
 tables and CCSDS messages for flight dynamics.
 
   Every night     wideberth screen --config nightly.json --history runs
-  After a launch  wideberth screen --fleet batch.tle --catalog catalog.tle \\
-                    --within-fleet --days 2 --out batch
+  Before launch   wideberth launch --batch batch.tle --catalog catalog.tle \\
+                    --liftoff UTC --release UTC --out batch
   To hand over    the folder that --out names: CSV tables, messages, run.json
 
 An example

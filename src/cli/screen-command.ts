@@ -1,12 +1,12 @@
 import { availableParallelism } from 'node:os';
 import { resolve } from 'node:path';
-import type { ScreeningVolume } from '../encounters/volume.js';
 import { InputError } from '../input-error.js';
 import { screen } from '../jobs/screen.js';
 import { type JobPorts, LONGEST_WINDOW_DAYS, type ScreenOptions } from '../jobs/screen-options.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
 import { MAX_HALF_SIZE_KM, type Options, optionsHelp, type Values } from './options.js';
+import { volumeOf } from './volume-of.js';
 
 const MS_PER_MINUTE = 60_000;
 const DEFAULT_MISS_KM = 5;
@@ -163,7 +163,7 @@ export function screenOptions(
     withinFleet,
     startMs: values.start ?? Math.floor(ports.nowMs() / MS_PER_MINUTE) * MS_PER_MINUTE,
     days: values.days,
-    volume: volumeOf(values),
+    volume: volumeOf(values, DEFAULT_MISS_KM),
     objectsPath: values.objects,
     sigmaPath: values.sigma,
     maxAgeDays: values['max-age-days'],
@@ -175,15 +175,4 @@ export function screenOptions(
     cdmFromPc: values['cdm-from-pc'],
     top: values.top,
   };
-}
-
-function volumeOf(values: Values<typeof SCREEN_OPTIONS>): ScreeningVolume {
-  const halfSizeRtnKm = values['volume-rtn-km'];
-  if (halfSizeRtnKm !== undefined) return { shape: values['volume-shape'] ?? 'BOX', halfSizeRtnKm };
-  if (values['volume-shape'] !== undefined) {
-    throw new InputError(
-      `--volume-shape is ${values['volume-shape']}, but its size is missing: give --volume-rtn-km R,T,N`,
-    );
-  }
-  return { shape: 'SPHERE', missKm: values['miss-km'] ?? DEFAULT_MISS_KM };
 }

@@ -14,11 +14,19 @@ const MS_PER_DAY = 86_400_000;
 /**
  * Puts the total of each pair over its encounters in the window into every one of its records, as `pairTotal`
  * does: at least one collision, encounters taken as independent, those without a figure as none.
+ *
+ * @param identities which object each index stands for, where several stand for one in turn
  */
-export function fillPairProbabilities(records: EncounterRecords, objectCount: number): void {
+export function fillPairProbabilities(
+  records: EncounterRecords,
+  objectCount: number,
+  identities?: ArrayLike<number>,
+): void {
   const { data, size } = records;
   const totals = new Map<number, number>();
-  const keyAt = (at: number) => data[at + FIELD.first] * objectCount + data[at + FIELD.second];
+  const identity = (index: number) => identities?.[index] ?? index;
+  const keyAt = (at: number) =>
+    identity(data[at + FIELD.first]) * objectCount + identity(data[at + FIELD.second]);
   for (let at = 0; at < FIELDS * size; at += FIELDS) {
     const probability = data[at + FIELD.probability];
     if (Number.isNaN(probability)) continue;
