@@ -9,6 +9,8 @@ import { integrate } from './quadrature.js';
 
 const SQRT_TWO_PI = Math.sqrt(2 * Math.PI);
 const RELATIVE_TOLERANCE = 1e-4;
+/** Of the coarser rule with the finer, whose own error is far smaller. */
+const RULES_AGREE = 3e-3;
 /** First interval about closest approach, in passages of one sigma, and the growth of the ones after it. */
 const FIRST_INTERVAL = 1;
 const INTERVAL_GROWTH = 4;
@@ -18,6 +20,33 @@ const COUNTING_DENSITY = 1e-3;
 const LEAST_COSINE = 0.5;
 /** Part of the sum that the ends of the window may have before the tubes' blunt ends show. */
 const LARGEST_END_PART = 0.01;
+
+type HermiteRule = { readonly nodes: readonly number[]; readonly weights: readonly number[] };
+
+/** Gauss-Hermite rules for the weight exp(-x^2) (Abramowitz and Stegun, table 25.10; digits from NumPy). */
+const HERMITE_9: HermiteRule = {
+  nodes: [
+    -3.1909932017815277, -2.266580584531843, -1.468553289216668, -0.7235510187528376, 0, 0.7235510187528376,
+    1.468553289216668, 2.266580584531843, 3.1909932017815277,
+  ],
+  weights: [
+    3.9606977263264365e-5, 0.004943624275536941, 0.08847452739437664, 0.43265155900255564, 0.720235215606051,
+    0.43265155900255564, 0.08847452739437664, 0.004943624275536941, 3.9606977263264365e-5,
+  ],
+};
+const HERMITE_15: HermiteRule = {
+  nodes: [
+    -4.499990707309392, -3.6699503734044527, -2.967166927905603, -2.325732486173858, -1.7199925751864888,
+    -1.1361155852109206, -0.5650695832555758, 0, 0.5650695832555758, 1.1361155852109206, 1.7199925751864888,
+    2.325732486173858, 2.967166927905603, 3.6699503734044527, 4.499990707309392,
+  ],
+  weights: [
+    1.522475804253521e-9, 1.0591155477110625e-6, 0.00010000444123249982, 0.002778068842912775,
+    0.0307800338725461, 0.15848891579593571, 0.4120286874988987, 0.5641003087264174, 0.4120286874988987,
+    0.15848891579593571, 0.0307800338725461, 0.002778068842912775, 0.00010000444123249982,
+    1.0591155477110625e-6, 1.522475804253521e-9,
+  ],
+};
 
 export type CurvedPathResult = {
   /** From 0 to 1. */
@@ -72,7 +101,9 @@ export function curvedPathProbability(encounter: PathEncounter): CurvedPathResul
     seen.push({ density, direction: scale(velocityMPerS, 1 / norm(velocityMPerS)) });
     return (density * rate) / 1000;
   };
-  const along = integrate(flux, intervalsOf(encounter, atTca), RELATIVE_TOLERANCE);
+  const along =
+    singlePassage(flux, encounter, atTca) ??
+    integrate(flux, intervalsOf(encounter, atTca), RELATIVE_TOLERANCE);
   const ends =
     halfBall(encounter, fromMs, -hardBodyRadiusM, 0) + halfBall(encounter, toMs, 0, hardBodyRadiusM);
   const tubes = along + ends;
@@ -82,6 +113,39 @@ export function curvedPathProbability(encounter: PathEncounter): CurvedPathResul
   }
   const probability = firstEntryProbability(encounter);
   return probability === undefined ? undefined : { probability, method: 'FIRST-ENTRY', tubes, leastCosine };
+}
+
+/**
+ * The integral for a path that goes through the covariance once and bends little in it: the flux then is
+ * nearly a Gaussian in time, for which Gauss-Hermite quadrature takes few points. Two rules must agree, and
+ * lie inside the window.
+ *
+ * @returns `undefined` where they do not
+ */
+function singlePassage(
+  flux: (timeMs: number) => number,
+  { fromMs, tcaMs, toMs }: PathEncounter,
+  { positionM, velocityMPerS, covarianceM2 }: ReturnType<typeof turningStateAt>,
+): number | undefined {
+  const inverse = inverseOf(covarianceM2)?.inverse;
+  if (inverse === undefined) return undefined;
+  const toward = rotate(inverse, velocityMPerS);
+  const perMs = Math.sqrt(dot(velocityMPerS, toward)) / 1000;
+  const centerMs = tcaMs - dot(positionM, toward) / (1000 * perMs * perMs);
+  const sum = ({ nodes, weights }: HermiteRule): number | undefined => {
+    let total = 0;
+    for (let i = 0; i < nodes.length; i++) {
+      const timeMs = centerMs + (Math.SQRT2 * nodes[i]) / perMs;
+      if (!(timeMs >= fromMs && timeMs <= toMs)) return undefined;
+      total += weights[i] * Math.exp(nodes[i] * nodes[i]) * flux(timeMs);
+    }
+    return (Math.SQRT2 / perMs) * total;
+  };
+  const coarse = sum(HERMITE_9);
+  if (coarse === undefined) return undefined;
+  const fine = sum(HERMITE_15);
+  if (fine === undefined || !(Math.abs(fine - coarse) <= RULES_AGREE * fine)) return undefined;
+  return fine;
 }
 
 /** Ends of intervals that grow away from closest approach, so that a short passage in a long window is found. */
