@@ -4,6 +4,15 @@ const SIGNAL_NUMBERS = { SIGHUP: 1, SIGINT: 2, SIGTERM: 15 } as const;
 
 type StopSignal = keyof typeof SIGNAL_NUMBERS;
 
+const SIGNALS = Object.keys(SIGNAL_NUMBERS) as StopSignal[];
+
+/** The part of `process` that is used here. */
+type RunningProcess = {
+  readonly on: (name: StopSignal, listener: (signal: StopSignal) => void) => unknown;
+  readonly off: (name: StopSignal, listener: (signal: StopSignal) => void) => unknown;
+  readonly exit: (status: number) => never;
+};
+
 export type StopListener = {
   /** Registers what must be undone when the process is asked to stop; the returned function takes it back. */
   readonly onStop: (undo: () => void) => () => void;
@@ -19,11 +28,11 @@ export type StopListener = {
  */
 export function listenForStop(
   log: Pick<Log, 'warn' | 'error'>,
-  runningProcess: Pick<NodeJS.Process, 'on' | 'off' | 'exit'> = process,
+  runningProcess: RunningProcess = process,
 ): StopListener {
   const undos = new Set<() => void>();
   const stop = (signal: StopSignal): void => {
-    for (const name of Object.keys(SIGNAL_NUMBERS)) {
+    for (const name of SIGNALS) {
       runningProcess.off(name, stop);
       runningProcess.on(name, ignore);
     }
@@ -37,14 +46,14 @@ export function listenForStop(
     }
     runningProcess.exit(128 + SIGNAL_NUMBERS[signal]);
   };
-  for (const name of Object.keys(SIGNAL_NUMBERS)) runningProcess.on(name, stop);
+  for (const name of SIGNALS) runningProcess.on(name, stop);
   return {
     onStop: (undo) => {
       undos.add(undo);
       return () => undos.delete(undo);
     },
     close: () => {
-      for (const name of Object.keys(SIGNAL_NUMBERS)) runningProcess.off(name, stop);
+      for (const name of SIGNALS) runningProcess.off(name, stop);
     },
   };
 }

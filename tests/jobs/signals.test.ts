@@ -6,7 +6,14 @@ import { silentPorts } from './silent-ports.js';
 function fakeProcess() {
   const exits: unknown[] = [];
   const emitter = new EventEmitter();
-  return Object.assign(emitter, { exits, exit: (status: unknown) => exits.push(status) as never });
+  return {
+    exits,
+    on: (name: string, listener: (signal: never) => void) => emitter.on(name, listener),
+    off: (name: string, listener: (signal: never) => void) => emitter.off(name, listener),
+    emit: (name: string, signal: string) => emitter.emit(name, signal),
+    listenerCount: (name: string) => emitter.listenerCount(name),
+    exit: (status: unknown) => exits.push(status) as never,
+  };
 }
 
 test.each([
