@@ -8,8 +8,10 @@ function fakeProcess() {
   const emitter = new EventEmitter();
   return {
     exits,
-    on: (name: string, listener: (signal: never) => void) => emitter.on(name, listener),
-    off: (name: string, listener: (signal: never) => void) => emitter.off(name, listener),
+    on: (name: string, listener: (signal: 'SIGHUP' | 'SIGINT' | 'SIGTERM') => void) =>
+      emitter.on(name, listener),
+    off: (name: string, listener: (signal: 'SIGHUP' | 'SIGINT' | 'SIGTERM') => void) =>
+      emitter.off(name, listener),
     emit: (name: string, signal: string) => emitter.emit(name, signal),
     listenerCount: (name: string) => emitter.listenerCount(name),
     exit: (status: unknown) => exits.push(status) as never,
