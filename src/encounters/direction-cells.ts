@@ -75,20 +75,16 @@ export function cellOf(cells: DirectionCells, x: number, y: number, sinLatitude:
 function octantsOf(x: number, y: number): number {
   const absX = Math.abs(x);
   const absY = Math.abs(y);
-  const tangent = Math.min(absX, absY) / Math.max(absX, absY);
-  // Arc tangent by pi/4 t - t (t - 1) (0.2447 + 0.0663 t), good to 0.0015 rad (Rajan et al. 2006), over pi/4.
-  let octants = tangent * (1 + (1 - tangent) * (0.31156 + 0.08442 * tangent));
-  if (absY > absX) octants = 2 - octants;
+  const tangent = (absY - absX) / (absY + absX);
+  const size = Math.abs(tangent);
+  // Arc tangent by pi/4 t + t (1 - t) (0.2447 + 0.0663 t), good to 0.0015 rad (Rajan et al. 2006), over pi/4.
+  let octants = 1 + tangent * (1 + (1 - size) * (0.31156 + 0.08442 * size));
   if (x < 0) octants = 4 - octants;
   return y < 0 ? 8 - octants : octants;
 }
 
-/**
- * Cells that can hold a direction within `angle` of one in the cell, itself included, in rising order.
- *
- * @param onlyLater only those with a higher number: each pair of cells once
- */
-export function cellsWithin(cells: DirectionCells, angle: number, onlyLater = false): CellLists {
+/** Cells that can hold a direction within `angle` of one in the cell, itself included, in rising order. */
+export function cellsWithin(cells: DirectionCells, angle: number): CellLists {
   const near: Set<number>[] = Array.from({ length: cells.count }, () => new Set());
   const rows = cells.firstCell.length;
   const reach = angle + EDGE_ANGLE;
@@ -112,11 +108,25 @@ export function cellsWithin(cells: DirectionCells, angle: number, onlyLater = fa
       }
     }
   }
-  const start = new Int32Array(cells.count + 1);
-  const lists = near.map((set, cell) =>
-    [...set].filter((found) => !onlyLater || found > cell).sort((a, b) => a - b),
+  return cellLists(near.map((set) => [...set].sort((a, b) => a - b)));
+}
+
+/** The lists without the entries that `keep` refuses. */
+export function filterLists(lists: CellLists, keep: (cell: number, other: number) => boolean): CellLists {
+  return cellLists(
+    Array.from({ length: lists.start.length - 1 }, (_, cell) =>
+      [...lists.cells.subarray(lists.start[cell], lists.start[cell + 1])].filter((other) =>
+        keep(cell, other),
+      ),
+    ),
   );
-  for (let cell = 0; cell < cells.count; cell++) start[cell + 1] = start[cell] + lists[cell].length;
+}
+
+function cellLists(lists: readonly number[][]): CellLists {
+  const start = new Int32Array(lists.length + 1);
+  lists.forEach((list, cell) => {
+    start[cell + 1] = start[cell] + list.length;
+  });
   return { start, cells: Int32Array.from(lists.flat()) };
 }
 

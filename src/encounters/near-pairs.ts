@@ -1,9 +1,9 @@
 import { EARTH_RADIUS_KM } from '../ephemeris/gravity.js';
 import { FASTEST_RELATIVE_KM_PER_S, lineReachKm, type StepBounds, tidePerS2 } from './bounds.js';
-import { type CellLists, cellsWithin, type DirectionCells } from './direction-cells.js';
-import type { DirectionGrid } from './direction-grid.js';
+import { type Columns, ENTRY_SIZE, HIGH, HIGHEST, LOW } from './columns.js';
+import { type CellLists, cellsWithin, type DirectionCells, filterLists } from './direction-cells.js';
 import { shellFloorKm } from './shell.js';
-import { FAST, RECORD_SIZE, type StepStates } from './step-states.js';
+import { RECORD_SIZE, type StepStates } from './step-states.js';
 
 /** Pairs of one step whose straight lines pass close enough to be looked at on their tracks. */
 export type NearPairs = {
@@ -18,19 +18,24 @@ export function createNearPairs(): NearPairs {
   return { size: 0, first: new Int32Array(1024), second: new Int32Array(1024), visits: 0 };
 }
 
-/** For each cell, the cells in which its objects can have a partner. */
+/** For each cell, cells in which its objects can have a partner. */
 export type CellPartners = {
-  /** Between two ordinary objects, each pair of cells once and without the cell itself. */
-  readonly later: CellLists;
+  /** The cell alone. */
+  readonly own: CellLists;
+  /** Between two ordinary objects. */
   readonly ordinary: CellLists;
+  /** Of those the ones with a lower number: the columns filled by these hold the objects of later cells. */
+  readonly earlier: CellLists;
   /** Between an ordinary object and a fast one. */
   readonly fast: CellLists;
 };
 
 export function cellPartners(cells: DirectionCells, bounds: StepBounds): CellPartners {
+  const ordinary = cellsWithin(cells, bounds.ordinaryAngle);
   return {
-    later: cellsWithin(cells, bounds.ordinaryAngle, true),
-    ordinary: cellsWithin(cells, bounds.ordinaryAngle),
+    own: filterLists(ordinary, (cell, other) => other === cell),
+    ordinary,
+    earlier: filterLists(ordinary, (cell, other) => other < cell),
     fast: cellsWithin(cells, bounds.fastAngle),
   };
 }
@@ -44,7 +49,6 @@ export type Sweep = {
   readonly toleranceKm: Float64Array;
   /** Reach of a straight line for the fastest pair at the Earth's surface: what no pair exceeds. */
   readonly widestReachKm: number;
-  readonly partners: CellPartners;
   readonly pairs: NearPairs;
 };
 
@@ -52,7 +56,6 @@ export function sweepOf(
   step: StepStates,
   bounds: StepBounds,
   toleranceKm: Float64Array,
-  partners: CellPartners,
   pairs: NearPairs,
 ): Sweep {
   return {
@@ -66,28 +69,22 @@ export function sweepOf(
       tidePerS2(EARTH_RADIUS_KM - 1),
       FASTEST_RELATIVE_KM_PER_S,
     ),
-    partners,
     pairs,
   };
 }
 
-/** Bound 4 of `bounds.ts` on a pair whose records start at i and k. */
-function lookAtLine(
-  sweep: Sweep,
-  recordsA: Float32Array,
-  i: number,
-  recordsB: Float32Array,
-  k: number,
-  a: number,
-  b: number,
-): void {
-  const { halfStepS, widestReachKm, step } = sweep;
-  const x = recordsB[k] - recordsA[i];
-  const y = recordsB[k + 1] - recordsA[i + 1];
-  const z = recordsB[k + 2] - recordsA[i + 2];
-  const vx = recordsB[k + 3] - recordsA[i + 3];
-  const vy = recordsB[k + 4] - recordsA[i + 4];
-  const vz = recordsB[k + 5] - recordsA[i + 5];
+/** Bound 4 of `bounds.ts` on a pair. */
+function lookAt(sweep: Sweep, a: number, b: number): void {
+  const { halfStepS, step } = sweep;
+  const { records } = step;
+  const i = RECORD_SIZE * a;
+  const k = RECORD_SIZE * b;
+  const x = records[k] - records[i];
+  const y = records[k + 1] - records[i + 1];
+  const z = records[k + 2] - records[i + 2];
+  const vx = records[k + 3] - records[i + 3];
+  const vy = records[k + 4] - records[i + 4];
+  const vz = records[k + 5] - records[i + 5];
   const distance2 = x * x + y * y + z * z;
   const along = x * vx + y * vy + z * vz;
   const speed2 = vx * vx + vy * vy + vz * vz;
@@ -97,12 +94,10 @@ function lookAtLine(
   const line = inside
     ? distance2 * speed2 - along * along
     : distance2 + halfStepS * (halfStepS * speed2 - 2 * absAlong);
-  const unit = inside ? speed2 : 1;
-  if (line > widestReachKm * widestReachKm * unit) return;
   const tide = tidePerS2(shellFloorKm(Math.min(step.low[a], step.low[b])));
   const reachKm = sweep.baseReachKm + sweep.toleranceKm[a] + sweep.toleranceKm[b];
   const reach = lineReachKm(halfStepS, reachKm, tide, Math.sqrt(speed2));
-  if (line > reach * reach * unit) return;
+  if (line > reach * reach * (inside ? speed2 : 1)) return;
   const { pairs } = sweep;
   if (pairs.size === pairs.first.length) {
     pairs.first = grown(pairs.first);
@@ -118,156 +113,126 @@ function grown(array: Int32Array): Int32Array {
   return larger;
 }
 
-/** Pairs of the objects of a grid with each other. */
-export function findPairsWithin(sweep: Sweep, grid: DirectionGrid): void {
-  const { later } = sweep.partners;
-  const { cellStart } = grid;
-  const cellCount = cellStart.length - 1;
-  for (let home = 0; home < cellCount; home++) {
-    const start = cellStart[home];
-    const end = cellStart[home + 1];
+/**
+ * Pairs of the objects of one kind with each other.
+ *
+ * @param own the columns of the cells
+ * @param later the columns of what lies in later cells within reach
+ */
+export function findPairsWithin(sweep: Sweep, own: Columns, later: Columns): void {
+  const cellCount = own.start.length - 1;
+  for (let cell = 0; cell < cellCount; cell++) {
+    const start = own.start[cell];
+    const end = own.start[cell + 1];
     if (start === end) continue;
-    sweepColumn(sweep, grid, start, end);
-    for (let n = later.start[home]; n < later.start[home + 1]; n++) {
-      const otherStart = cellStart[later.cells[n]];
-      const otherEnd = cellStart[later.cells[n] + 1];
-      if (otherStart < otherEnd) sweepColumns(sweep, grid, start, end, grid, otherStart, otherEnd);
-    }
+    sweepColumn(sweep, own, start, end);
+    sweepColumns(sweep, own, start, end, later, later.start[cell], later.start[cell + 1]);
   }
 }
 
-/** Pairs between the objects of two grids, the second one without steep objects. */
-export function findPairsAcross(sweep: Sweep, grid: DirectionGrid, otherGrid: DirectionGrid): void {
-  const { ordinary } = sweep.partners;
-  const { cellStart } = grid;
-  const otherStart = otherGrid.cellStart;
-  const cellCount = cellStart.length - 1;
-  for (let home = 0; home < cellCount; home++) {
-    const start = cellStart[home];
-    const end = cellStart[home + 1];
+/** Pairs between objects in two sets of columns, cell by cell; the second without steep objects. */
+export function findPairsAcross(sweep: Sweep, columns: Columns, others: Columns): void {
+  const cellCount = columns.start.length - 1;
+  for (let cell = 0; cell < cellCount; cell++) {
+    const start = columns.start[cell];
+    const end = columns.start[cell + 1];
     if (start === end) continue;
-    for (let n = ordinary.start[home]; n < ordinary.start[home + 1]; n++) {
-      const cell = ordinary.cells[n];
-      sweepColumns(sweep, grid, start, end, otherGrid, otherStart[cell], otherStart[cell + 1]);
-    }
+    sweepColumns(sweep, columns, start, end, others, others.start[cell], others.start[cell + 1]);
   }
 }
 
 /** Pairs within one column. */
-function sweepColumn(sweep: Sweep, grid: DirectionGrid, start: number, end: number): void {
-  const { object, low, high, records } = grid;
-  const { halfStepS, widestReachKm } = sweep;
-  let visits = 0;
-  for (let i = start; i < end; i++) {
-    const top = high[i];
-    const from = RECORD_SIZE * i;
-    const x = records[from];
-    const y = records[from + 1];
-    const z = records[from + 2];
-    const own = records[from + 6] * halfStepS + widestReachKm;
-    let k = i + 1;
-    for (; k < end && low[k] <= top; k++) {
-      const at = RECORD_SIZE * k;
-      const dx = records[at] - x;
-      const dy = records[at + 1] - y;
-      const dz = records[at + 2] - z;
-      const far = records[at + 6] * halfStepS + own;
-      if (dx * dx + dy * dy + dz * dz > far * far) continue;
-      lookAtLine(sweep, records, from, records, at, object[i], object[k]);
-    }
-    visits += k - i - 1;
+function sweepColumn(sweep: Sweep, { entries }: Columns, start: number, end: number): void {
+  const last = ENTRY_SIZE * end;
+  for (let i = ENTRY_SIZE * start; i < last; i += ENTRY_SIZE) {
+    sweepRun(sweep, entries[i], entries[i + LOW], entries[i + HIGH], entries, i + ENTRY_SIZE, last);
   }
-  sweep.pairs.visits += visits;
 }
 
-/**
- * Pairs between two columns. Most fail by being further apart than half a step at the sum of their speeds,
- * so that nothing else is read of them.
- */
+/** Pairs between two columns. */
 function sweepColumns(
   sweep: Sweep,
-  grid: DirectionGrid,
+  { entries }: Columns,
   start: number,
   end: number,
-  otherGrid: DirectionGrid,
+  others: Columns,
   otherStart: number,
   otherEnd: number,
 ): void {
-  const { records } = grid;
-  const { low, high, highest, records: others } = otherGrid;
-  const { halfStepS, widestReachKm } = sweep;
-  let visits = 0;
-  let first = otherStart;
-  for (let i = start; i < end; i++) {
-    const bottom = grid.low[i];
-    const top = grid.high[i];
-    // Columns rise in `low` and `highest`: whoever ends below this one ends below all that follow it.
-    while (first < otherEnd && highest[first] < bottom) first++;
-    if (first === otherEnd) break;
-    const from = RECORD_SIZE * i;
-    const x = records[from];
-    const y = records[from + 1];
-    const z = records[from + 2];
-    const own = records[from + 6] * halfStepS + widestReachKm;
-    let k = first;
-    for (; k < otherEnd && low[k] <= top; k++) {
-      const at = RECORD_SIZE * k;
-      const dx = others[at] - x;
-      const dy = others[at + 1] - y;
-      const dz = others[at + 2] - z;
-      const far = others[at + 6] * halfStepS + own;
-      if (dx * dx + dy * dy + dz * dz > far * far || high[k] < bottom) continue;
-      lookAtLine(sweep, records, from, others, at, grid.object[i], otherGrid.object[k]);
-    }
-    visits += k - first;
+  const last = ENTRY_SIZE * otherEnd;
+  let first = ENTRY_SIZE * otherStart;
+  for (let i = ENTRY_SIZE * start; i < ENTRY_SIZE * end; i += ENTRY_SIZE) {
+    const bottom = entries[i + LOW];
+    // Columns rise in `LOW` and `HIGHEST`: whoever ends below this one ends below all that follow it.
+    while (first < last && others.entries[first + HIGHEST] < bottom) first += ENTRY_SIZE;
+    if (first === last) break;
+    sweepRun(sweep, entries[i], bottom, entries[i + HIGH], others.entries, first, last);
   }
-  sweep.pairs.visits += visits;
 }
 
 /**
- * Pairs between objects that are not in a grid and those that are.
- *
- * @param objects object indices, `count` of them, evaluated in `step`
+ * Looks at an object and those of a run of entries that start no higher than it ends. Here the search spends
+ * most of its time: nearly all pairs fail by the distance at which the straight lines of their motion pass.
  */
-export function findPairsWithGrid(
+function sweepRun(
   sweep: Sweep,
-  grid: DirectionGrid,
+  a: number,
+  bottom: number,
+  top: number,
+  entries: Int32Array,
+  from: number,
+  to: number,
+): void {
+  const { records } = sweep.step;
+  const widest2 = sweep.widestReachKm * sweep.widestReachKm;
+  const i = RECORD_SIZE * a;
+  const x = records[i];
+  const y = records[i + 1];
+  const z = records[i + 2];
+  const vx = records[i + 3];
+  const vy = records[i + 4];
+  const vz = records[i + 5];
+  let k = from;
+  for (; k < to && entries[k + LOW] <= top; k += ENTRY_SIZE) {
+    const at = RECORD_SIZE * entries[k];
+    const dx = records[at] - x;
+    const dy = records[at + 1] - y;
+    const dz = records[at + 2] - z;
+    const dvx = records[at + 3] - vx;
+    const dvy = records[at + 4] - vy;
+    const dvz = records[at + 5] - vz;
+    const along = dx * dvx + dy * dvy + dz * dvz;
+    const speed2 = dvx * dvx + dvy * dvy + dvz * dvz;
+    if ((dx * dx + dy * dy + dz * dz - widest2) * speed2 > along * along) continue;
+    if (entries[k + HIGH] >= bottom) lookAt(sweep, a, entries[k]);
+  }
+  sweep.pairs.visits += (k - from) / ENTRY_SIZE;
+}
+
+/**
+ * Pairs between listed objects and those in columns.
+ *
+ * @param objects object indices, `count` of them
+ * @param lists for each cell, the columns that can hold partners of its objects
+ */
+export function findPairsWithColumns(
+  sweep: Sweep,
   objects: Int32Array,
   count: number,
+  { start, entries }: Columns,
+  lists: CellLists,
 ): void {
-  if (grid.size === 0) return;
-  const { step, partners, pairs } = sweep;
-  const { cellStart, object, low, high, records: sorted } = grid;
-  const { records } = step;
-  const { halfStepS, widestReachKm } = sweep;
-  let visits = 0;
+  const { cell, low, high } = sweep.step;
   for (let m = 0; m < count; m++) {
     const a = objects[m];
-    const home = step.cell[a];
-    const bottom = step.low[a];
-    const top = step.high[a];
-    const from = RECORD_SIZE * a;
-    const x = records[from];
-    const y = records[from + 1];
-    const z = records[from + 2];
-    const own = records[from + 6] * halfStepS + widestReachKm;
-    const lists = step.kind[a] === FAST ? partners.fast : partners.ordinary;
+    const home = cell[a];
     for (let n = lists.start[home]; n < lists.start[home + 1]; n++) {
-      const end = cellStart[lists.cells[n] + 1];
-      for (let k = cellStart[lists.cells[n]]; k < end && low[k] <= top; k++) {
-        if (high[k] < bottom) continue;
-        visits++;
-        const at = RECORD_SIZE * k;
-        const dx = sorted[at] - x;
-        const dy = sorted[at + 1] - y;
-        const dz = sorted[at + 2] - z;
-        const far = sorted[at + 6] * halfStepS + own;
-        if (dx * dx + dy * dy + dz * dz > far * far) continue;
-        lookAtLine(sweep, records, from, sorted, at, a, object[k]);
-      }
+      const last = ENTRY_SIZE * start[lists.cells[n] + 1];
+      let first = ENTRY_SIZE * start[lists.cells[n]];
+      while (first < last && entries[first + HIGHEST] < low[a]) first += ENTRY_SIZE;
+      if (first < last) sweepRun(sweep, a, low[a], high[a], entries, first, last);
     }
   }
-  pairs.visits += visits;
 }
 
 /** Pairs between the objects of two lists, or within one list that is given twice. */
@@ -278,13 +243,12 @@ export function findPairsOfLists(
   second: Int32Array,
   secondCount: number,
 ): void {
-  const { low, high, records } = sweep.step;
+  const { low, high } = sweep.step;
   for (let i = 0; i < firstCount; i++) {
     const a = first[i];
     for (let k = first === second ? i + 1 : 0; k < secondCount; k++) {
       const b = second[k];
-      if (low[a] > high[b] || low[b] > high[a]) continue;
-      lookAtLine(sweep, records, RECORD_SIZE * a, records, RECORD_SIZE * b, a, b);
+      if (low[a] <= high[b] && low[b] <= high[a]) lookAt(sweep, a, b);
     }
   }
 }

@@ -6,11 +6,7 @@ export type RefinedObject = { readonly record: SatRec; readonly epochMs: number 
 
 /** Half the base of the difference that gives the relative velocity of the positions, seconds. */
 const DIFFERENCE_S = 0.25;
-/** SGP4's velocity is off the derivative of its position by less than this, km/s. */
-const VELOCITY_DEFECT_KM_PER_S = 0.003;
-/** Twice what the velocity of an orbit that crosses all heights is off. */
-const SURE_VELOCITY_KM_PER_S = 0.02;
-/** Where that defect could move a TCA by more than this, the last steps are taken on positions alone. */
+/** Where SGP4's velocity could move a TCA by more than this, the last steps are taken on positions alone. */
 const TOLERATED_SHIFT_S = 1e-4;
 const MS_PER_S = 1000;
 /** Over so short a time a relative path is straight to within the slack, and SGP4's velocity good enough. */
@@ -19,9 +15,20 @@ const STRAIGHT_SLACK_KM = 0.02;
 /** A time in milliseconds since 1970 resolves 0.00024 ms in one double. */
 const SETTLED_MS = 5e-4;
 
+/** The tide in the lowest orbits, per s^2: by what part of d^2 / v^2 a Newton step for the TCA errs. */
+const STRONGEST_TIDE_PER_S2 = 3.2e-6;
+
 const state1 = new Float64Array(6);
 const state2 = new Float64Array(6);
 const relative = new Float64Array(6);
+
+/**
+ * By how much SGP4's velocities of a pair may be off the derivatives of its positions, km/s: 0.02 m/s in low
+ * near-circular orbits, up to some m/s in eccentric deep-space ones.
+ */
+function velocityDefectKmPerS(object1: RefinedObject, object2: RefinedObject): number {
+  return object1.record.ecco < 0.01 && object2.record.ecco < 0.01 ? 2e-4 : 0.02;
+}
 
 /** Relative state, object 2 minus object 1; false where SGP4 gives no state for one of them. */
 export function relativeStateAt(
@@ -60,7 +67,7 @@ function closingSignAt(object1: RefinedObject, object2: RefinedObject, timeMs: n
   if (!relativeStateAt(object1, object2, timeMs, relative)) return Number.NaN;
   const distance = Math.sqrt(relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2);
   const rate = relative[0] * relative[3] + relative[1] * relative[4] + relative[2] * relative[5];
-  if (Math.abs(rate) > distance * SURE_VELOCITY_KM_PER_S) return Math.sign(rate);
+  if (Math.abs(rate) > distance * velocityDefectKmPerS(object1, object2)) return Math.sign(rate);
   return Math.sign(closingRateAt(object1, object2, timeMs));
 }
 
@@ -106,17 +113,22 @@ export function refineFastTca(
     const stepMs = stepS * MS_PER_S;
     timeMs += stepMs;
     if (!(Math.abs(timeMs - guessMs) <= reachMs)) return Number.NaN;
-    if (Math.abs(stepMs) < SETTLED_MS) break;
+    if (Math.abs(stepMs) * newtonError(distance, speed2) < SETTLED_MS) break;
   }
-  if (distance * VELOCITY_DEFECT_KM_PER_S > speed2 * TOLERATED_SHIFT_S) {
+  if (distance * velocityDefectKmPerS(object1, object2) > speed2 * TOLERATED_SHIFT_S) {
     for (let iteration = 0; iteration < 6; iteration++) {
       const stepMs = (-closingRateAt(object1, object2, timeMs) / speed2) * MS_PER_S;
       timeMs += stepMs;
       if (!(Math.abs(timeMs - guessMs) <= reachMs)) return Number.NaN;
-      if (Math.abs(stepMs) < SETTLED_MS) break;
+      if (Math.abs(stepMs) * newtonError(distance, speed2) < SETTLED_MS) break;
     }
   }
   return roundTca(timeMs);
+}
+
+/** What is left of a Newton step for the TCA: (d^2)'' / 2 = v^2 + d . d'', of which the step takes but v^2. */
+function newtonError(distanceKm: number, speed2: number): number {
+  return Math.min(1, (STRONGEST_TIDE_PER_S2 * distanceKm * distanceKm) / speed2 + 1e-4);
 }
 
 /**

@@ -11,15 +11,15 @@ import {
   stepToleranceKm,
   tidePerS2,
 } from './bounds.js';
+import { type Columns, createColumns, fillColumns, sortByHeight } from './columns.js';
 import { directionCells } from './direction-cells.js';
-import { createDirectionGrid, type DirectionGrid, fillDirectionGrid } from './direction-grid.js';
 import {
   type CellPartners,
   cellPartners,
   createNearPairs,
   findPairsAcross,
   findPairsOfLists,
-  findPairsWithGrid,
+  findPairsWithColumns,
   findPairsWithin,
   type NearPairs,
   type Sweep,
@@ -63,10 +63,10 @@ export type SlabResult = {
 /** Steps that a slab can be cut into; the search takes the one that costs least. */
 const STEPS_S = [20, 24, 30, 36, 40, 48, 60, 72, 80, 90, 96, 120, 150, 160, 180, 200, 240, 300];
 /** Cost of stepping an object against that of looking at a pair: sets the step, not the result. */
-const OBJECT_COST = 16;
+const OBJECT_COST = 30;
 const TRIAL_STEP_S = 120;
 /** Grid of the sign changes of a slow pair. */
-const SLOW_GRID_MS = 40_000;
+const SLOW_GRID_MS = 80_000;
 /** A refined TCA is taken by the step that holds it; this much over its edges covers rounding. */
 const EDGE_MS = 0.01;
 /** Steps that are evaluated together. */
@@ -151,6 +151,8 @@ type Side = {
   readonly flat: Int32Array;
   readonly steep: Int32Array;
   readonly fast: Int32Array;
+  /** Room for those that are flat or steep in order of height. */
+  readonly sorted: Int32Array;
   thereCount: number;
   flatCount: number;
   steepCount: number;
@@ -176,9 +178,13 @@ type StepPlan = {
   /** eps of each object. */
   readonly toleranceKm: Float64Array;
   readonly evaluated: StepObjects;
-  /** The primaries that are not fast. */
-  readonly flat: DirectionGrid;
-  readonly steep: DirectionGrid;
+  /** The primaries that are not fast, by cell and in the columns of earlier cells, or of all within reach. */
+  readonly flatOwn: Columns;
+  readonly flatLater: Columns;
+  readonly flatAround: Columns;
+  readonly steepOwn: Columns;
+  readonly steepLater: Columns;
+  readonly steepAround: Columns;
 };
 
 /** Finds every closest approach of one slab of the window. */
@@ -249,8 +255,19 @@ function createWorkspace(searcher: SlabSearcher, tracks: SlabTracks, lengthS: nu
 }
 
 function sideOf(candidates: Int32Array): Side {
-  const [there, flat, steep, fast] = [0, 1, 2, 3].map(() => new Int32Array(candidates.length));
-  return { candidates, there, flat, steep, fast, thereCount: 0, flatCount: 0, steepCount: 0, fastCount: 0 };
+  const [there, flat, steep, fast, sorted] = [0, 1, 2, 3, 4].map(() => new Int32Array(candidates.length));
+  return {
+    candidates,
+    there,
+    flat,
+    steep,
+    fast,
+    sorted,
+    thereCount: 0,
+    flatCount: 0,
+    steepCount: 0,
+    fastCount: 0,
+  };
 }
 
 /** Those of the others whose heights over the slab come within reach of any primary's. */
@@ -307,8 +324,12 @@ function planStep({ searcher, tracks, fromS, toS, primaries, others }: Workspace
     partners: cellPartners(cells, bounds),
     toleranceKm,
     evaluated: { cells, halfStepS, fromS, toS, curvature, marginKm },
-    flat: createDirectionGrid(primaries.candidates.length, cells.count),
-    steep: createDirectionGrid(primaries.candidates.length, cells.count),
+    flatOwn: createColumns(cells.count),
+    flatLater: createColumns(cells.count),
+    flatAround: createColumns(cells.count),
+    steepOwn: createColumns(cells.count),
+    steepLater: createColumns(cells.count),
+    steepAround: createColumns(cells.count),
   };
 }
 
@@ -335,24 +356,42 @@ function evaluateBatch(work: Workspace, plan: StepPlan, firstMiddleS: number, co
 
 function findNearPairs(work: Workspace, plan: StepPlan, step: StepStates): Sweep {
   const { searcher, primaries, others, pairs } = work;
-  const { flat, steep } = plan;
-  const sweep = sweepOf(step, plan.bounds, plan.toleranceKm, plan.partners, pairs);
+  const { partners, flatOwn, flatLater, flatAround, steepOwn, steepLater, steepAround } = plan;
+  const sweep = sweepOf(step, plan.bounds, plan.toleranceKm, pairs);
   pairs.size = 0;
   sortByKind(primaries, step);
   sortByKind(others, step);
-  fillDirectionGrid(flat, primaries.flat, primaries.flatCount, step);
-  fillDirectionGrid(steep, primaries.steep, primaries.steepCount, step);
-  const { fast, fastCount } = primaries;
+  const { flatCount, steepCount, fast, fastCount } = primaries;
+  const flat = primaries.sorted.subarray(0, flatCount);
+  const steep = primaries.sorted.subarray(flatCount);
+  sortByHeight(primaries.flat, flatCount, step.low, flat);
+  sortByHeight(primaries.steep, steepCount, step.low, steep);
+  fillColumns(flatOwn, flat, flatCount, step, partners.own);
+  fillColumns(steepOwn, steep, steepCount, step, partners.own);
   if (searcher.rules.withinPrimaries) {
-    findPairsWithin(sweep, flat);
-    findPairsWithin(sweep, steep);
-    findPairsAcross(sweep, steep, flat);
-    findPairsWithGrid(sweep, flat, fast, fastCount);
-    findPairsWithGrid(sweep, steep, fast, fastCount);
+    fillColumns(flatLater, flat, flatCount, step, partners.earlier);
+    fillColumns(steepLater, steep, steepCount, step, partners.earlier);
+    findPairsWithin(sweep, flatOwn, flatLater);
+    findPairsWithin(sweep, steepOwn, steepLater);
+    findPairsAcross(sweep, steepOwn, flatOwn);
+    findPairsAcross(sweep, steepOwn, flatLater);
+    findPairsAcross(sweep, steepLater, flatOwn);
+    findPairsWithColumns(sweep, fast, fastCount, flatOwn, partners.fast);
+    findPairsWithColumns(sweep, fast, fastCount, steepOwn, partners.fast);
     findPairsOfLists(sweep, fast, fastCount, fast, fastCount);
   }
-  findPairsWithGrid(sweep, flat, others.there, others.thereCount);
-  findPairsWithGrid(sweep, steep, others.there, others.thereCount);
+  if (others.thereCount === 0) return sweep;
+  fillColumns(flatAround, flat, flatCount, step, partners.ordinary);
+  fillColumns(steepAround, steep, steepCount, step, partners.ordinary);
+  for (const [list, count] of [
+    [others.flat, others.flatCount],
+    [others.steep, others.steepCount],
+  ] as const) {
+    findPairsWithColumns(sweep, list, count, flatAround, partners.own);
+    findPairsWithColumns(sweep, list, count, steepAround, partners.own);
+  }
+  findPairsWithColumns(sweep, others.fast, others.fastCount, flatOwn, partners.fast);
+  findPairsWithColumns(sweep, others.fast, others.fastCount, steepOwn, partners.fast);
   findPairsOfLists(sweep, fast, fastCount, others.there, others.thereCount);
   return sweep;
 }
@@ -417,9 +456,10 @@ function refinePairs(
       records[j + 4] - records[i + 4],
       records[j + 5] - records[i + 5],
     );
-    const toleranceKm = plan.toleranceKm[a] + plan.toleranceKm[b];
+    const reachKm = baseReachKm + plan.toleranceKm[a] + plan.toleranceKm[b];
+    const toleranceKm = tracks.toleranceKm[a] + tracks.toleranceKm[b];
     const tide = tidePerS2(shellFloorKm(Math.min(low[a], low[b])));
-    const farthestKm = farthestInStepKm(halfStepS, baseReachKm + toleranceKm, tide, speed);
+    const farthestKm = farthestInStepKm(halfStepS, reachKm, tide, speed);
     const isFast = isConvex(halfStepS, farthestKm, tide, speed);
     const guessS = isFast
       ? nearestOnTracks(work, a, b, middleS, halfStepS, toleranceKm)

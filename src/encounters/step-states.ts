@@ -4,10 +4,7 @@ import { ORDINARY_RATE_PER_S } from './bounds.js';
 import { cellOf, type DirectionCells } from './direction-cells.js';
 import { shellOf } from './shell.js';
 
-/**
- * Numbers of one record: x, y, z (km), vx, vy, vz (km/s), speed (km/s) and a blank that fills half a cache
- * line of the usual 64 bytes.
- */
+/** Numbers of one record: x, y, z (km), vx, vy, vz (km/s) and two blanks, half a line of the usual cache. */
 export const RECORD_SIZE = 8;
 
 /** What becomes of an object in a step: most stay at nearly the same height and turn as circular orbits do. */
@@ -37,14 +34,14 @@ export type StepStates = {
 export type StepBatch = { readonly all: StepStates; readonly steps: readonly StepStates[] };
 
 export function createStepBatch(objectCount: number, stepCount: number): StepBatch {
-  const states = (array: (size: number) => StepStates) => array(objectCount * stepCount);
-  const all = states((size) => ({
+  const size = objectCount * stepCount;
+  const all = {
     records: new Float32Array(RECORD_SIZE * size),
     cell: new Int32Array(size),
     low: new Int32Array(size),
     high: new Int32Array(size),
     kind: new Uint8Array(size),
-  }));
+  };
   const steps = Array.from({ length: stepCount }, (_, k) => {
     const from = k * objectCount;
     const to = from + objectCount;
@@ -112,17 +109,22 @@ export function evaluateSteps(
       let rDotV = 0;
       let speed2 = 0;
       for (let axis = 0; axis < 3; axis++) {
-        const c1 = coefficients[at + 1];
-        const c2 = coefficients[at + 2];
-        const c3 = coefficients[at + 3];
-        const c4 = coefficients[at + 4];
-        const c5 = coefficients[at + 5];
-        const c6 = coefficients[at + 6];
-        const c7 = coefficients[at + 7];
-        const p = coefficients[at] + u * (c1 + u * (c2 + u * (c3 + u * (c4 + u * (c5 + u * (c6 + u * c7))))));
-        const v =
-          perLength *
-          (c1 + u * (2 * c2 + u * (3 * c3 + u * (4 * c4 + u * (5 * c5 + u * (6 * c6 + u * 7 * c7))))));
+        // Horner's rule for the polynomial, and for its derivative beside it.
+        let p = coefficients[at + 7];
+        let v = p;
+        p = p * u + coefficients[at + 6];
+        v = v * u + p;
+        p = p * u + coefficients[at + 5];
+        v = v * u + p;
+        p = p * u + coefficients[at + 4];
+        v = v * u + p;
+        p = p * u + coefficients[at + 3];
+        v = v * u + p;
+        p = p * u + coefficients[at + 2];
+        v = v * u + p;
+        p = p * u + coefficients[at + 1];
+        v = (v * u + p) * perLength;
+        p = p * u + coefficients[at];
         records[to + axis] = p;
         records[to + 3 + axis] = v;
         radius2 += p * p;
@@ -130,7 +132,6 @@ export function evaluateSteps(
         speed2 += v * v;
         at += 8;
       }
-      records[to + 6] = Math.sqrt(speed2);
       const radius = Math.sqrt(radius2);
       const perRadius = 1 / radius;
       const swing = Math.abs(rDotV) * perRadius * halfStepS + arc;
