@@ -58,7 +58,7 @@ beforeAll(async () => {
   expect(readFileSync(at('catalog.tle'), 'utf8')).toMatch(/^1 W0\d{3}U/m);
 });
 
-describe('the same sets in another form give the same bytes', () => {
+describe.concurrent('the same sets in another form give the same bytes', () => {
   test('gzip, and standard input', async () => {
     expect(
       await screened(
@@ -73,41 +73,25 @@ describe('the same sets in another form give the same bytes', () => {
     ]);
   });
 
-  test('OMM in JSON and CSV, the catalog as gzip through a pipe', async () => {
-    expect(
-      await screened(
-        'json',
-        ['--fleet', write('fleet.json', jsonFile(fleet, 2)), '--catalog', '-'],
-        gzipSync(csvFile(catalog)),
-      ),
-    ).toBe(expected);
-  });
-
-  test('OMM in XML and KVN', async () => {
-    expect(
-      await screened('xml', [
-        ...['--fleet', write('fleet.xml', xmlFile(fleet))],
-        ...['--catalog', write('catalog.kvn', kvnFile(catalog))],
-      ]),
-    ).toBe(expected);
-  });
-
-  test('several files of different forms, the option repeated or one after the other', async () => {
+  test('OMM in JSON, CSV, XML and KVN, in several files, the option repeated or one after the other', async () => {
     expect(
       await screened('several', [
         ...['--fleet', write('fleet-1.kvn', kvnFile(fleet.slice(6)))],
-        ...['--fleet', write('fleet-2.json', jsonFile(fleet.slice(0, 6)))],
-        ...['--catalog', write('a.xml', xmlFile(catalog.slice(0, 40)))],
+        ...['--fleet', write('fleet-2.json', jsonFile(fleet.slice(0, 6), 2))],
+        ...['--catalog', write('a.xml', xmlFile(catalog.slice(0, 30)))],
         write('b.json.gz', gzipSync(jsonFile(catalog.slice(80)))),
-        ...['--catalog', write('c.tle', threeLineFile(catalog.slice(40, 80)))],
+        write('c.csv', csvFile(catalog.slice(30, 50))),
+        ...['--catalog', write('d.tle', threeLineFile(catalog.slice(50, 65)))],
+        write('e.kvn', kvnFile(catalog.slice(65, 80))),
       ]),
     ).toBe(expected);
-    expect(counts('several').map(({ used }: { used: number }) => used)).toEqual([4, 6, 40, 40, 40]);
+    expect(counts('several').map(({ used }: { used: number }) => used)).toEqual([4, 6, 30, 40, 20, 15, 15]);
   });
 
   test('an Alpha-5 number and the integer are one object, for sets and for the file of objects', async () => {
-    // The catalog has the fleet once more, as integers; the file of objects has Alpha-5.
-    const objects = write('objects.csv', 'designator,hard_body_radius_m\nW0003,7.5\n300012,0.25\n');
+    // The catalog has the fleet once more, as integers; the file of objects has Alpha-5, and is in Latin-1.
+    const told = 'designator,hard_body_radius_m,name\nW0003,7.5,ÉTOILE Nº 3\n300012,0.25,\n';
+    const objects = write('objects.csv', Buffer.from(told, 'latin1'));
     const twice = await screened('twice', [
       ...['--fleet', at('fleet.tle'), '--objects', objects],
       ...['--catalog', write('all.json', jsonFile([...catalog, ...fleet]))],
@@ -117,7 +101,9 @@ describe('the same sets in another form give the same bytes', () => {
       { read: 130, used: 120, superseded: 10 },
     ]);
     const withoutRadius = (text: string) =>
-      text.split('\r\n').map((line) => line.split(',').slice(1, 14).join(','));
+      text
+        .split('\r\n')
+        .map((line) => line.replace('ÉTOILE Nº 3', 'BRAYMOOR 4').split(',').slice(1, 14).join(','));
     expect(withoutRadius(twice).sort()).toEqual(withoutRadius(expected).sort());
     const rows = rowsOf(at('twice/conjunctions.csv'));
     const radii = new Map([
@@ -128,7 +114,8 @@ describe('the same sets in another form give the same bytes', () => {
       const sum = (radii.get(row.object1_designator) ?? 5) + (radii.get(row.object2_designator) ?? 5);
       expect(row.hard_body_radius_m).toBe(sum.toFixed(3));
     }
-    expect(rows.some((row) => radii.has(row.object1_designator))).toBe(true);
+    const renamed = rows.filter((row) => row.object1_designator === '300003').map((row) => row.object1_name);
+    expect(new Set(renamed)).toEqual(new Set(['ÉTOILE Nº 3']));
   });
 });
 
@@ -160,7 +147,7 @@ const readBack = (cell: string) => (/^'+[=+\-@]/.test(cell) ? cell.slice(1) : ce
 
 const csvCell = (text: string) => `"${text.replaceAll('"', '""')}"`;
 
-test('names with commas, quotes, line breaks, other scripts and formula starts come back unchanged', async () => {
+test.concurrent('names with commas, quotes, line breaks, other scripts and formula starts come back unchanged', async () => {
   const named = sets.map((set, i) => ({ ...set, name: AWKWARD[i % AWKWARD.length] }));
   // Line breaks can only come with the file of objects: in element sets they become blanks.
   const broken = new Map(
@@ -196,55 +183,47 @@ test('names with commas, quotes, line breaks, other scripts and formula starts c
   expect(new Set(rowsOf(at('names/changes.csv')).map((row) => row.change))).toEqual(new Set(['steady']));
 });
 
-test('a file of objects in Latin-1 keeps its letters', async () => {
-  await screened('latin', [
-    ...['--fleet', at('fleet.tle'), '--catalog', at('catalog.tle')],
-    ...['--objects', write('latin.csv', Buffer.from('designator,name\n300000,ÉTOILE Nº 1\n', 'latin1'))],
-  ]);
-  const names = rowsOf(at('latin/conjunctions.csv'))
-    .filter((row) => row.object1_designator === '300000')
-    .map((row) => row.object1_name);
-  expect(names.length).toBeGreaterThan(0);
-  expect(new Set(names)).toEqual(new Set(['ÉTOILE Nº 1']));
-});
-
-test('damaged files end with 0 or 2, and no record of them is lost', async () => {
+test.concurrent('damaged files end with 0 or 2, and no record of them is lost', async () => {
   let seed = 20_261_201;
   const random = (below: number) => {
     seed = (Math.imul(seed, 1_664_525) + 1_013_904_223) >>> 0;
     return Math.floor((seed / 2 ** 32) * below);
   };
-  const whole: [string, string][] = [
-    ['tle', threeLineFile(catalog)],
-    ['json', jsonFile(catalog, 1)],
-    ['csv', csvFile(catalog)],
-    ['xml', xmlFile(catalog)],
-    ['kvn', kvnFile(catalog)],
-  ];
-  const statuses: (number | null)[] = [];
-  for (const [form, text] of whole) {
-    const bytes = Buffer.from(text);
-    for (let k = 0; k < 25; k += 1) bytes[random(bytes.length)] = 32 + random(95);
-    const damaged = form === 'kvn' ? bytes.subarray(0, random(bytes.length)) : bytes;
-    const path = write(`damaged.${form}`, damaged);
-    const out = `damaged-${form}`;
+  const forms = {
+    'damaged.tle': threeLineFile(catalog.slice(0, 40)),
+    'damaged.json': jsonFile(catalog.slice(40, 70), 1),
+    'damaged.csv': csvFile(catalog.slice(70, 95)),
+    'damaged.xml': xmlFile(catalog.slice(95, 110)),
+    'damaged.kvn': kvnFile(catalog.slice(110)),
+  };
+  let ended = 0;
+  for (let round = 0; round < 4; round += 1) {
+    const paths = Object.entries(forms).map(([name, text]) => {
+      const bytes = Buffer.from(text);
+      for (let k = 0; k < 6; k += 1) bytes[random(bytes.length)] = 32 + random(95);
+      return write(name, name.endsWith('tle') ? bytes.subarray(0, bytes.length - random(200)) : bytes);
+    });
+    const out = `damaged-${round}`;
     const outcome = await runCommand([
-      ...['screen', '--fleet', at('fleet.tle'), '--catalog', path],
+      ...['screen', '--fleet', at('fleet.tle'), '--catalog', ...paths],
       ...[...WINDOW, '--out', at(out)],
     ]);
-    statuses.push(outcome.status);
     if (outcome.status !== 0) {
       expect(outcome).toMatchObject({ status: 2, stdout: '' });
-      expect(outcome.stderr).toMatch(/^\[\S+Z\] ERROR: .*\n$/);
-      expect(outcome.stderr).toContain(path);
+      expect(outcome.stderr).toMatch(/^\[\S+Z\] ERROR: .*damaged\.\w+.*\n$/);
       continue;
     }
-    const [, file] = counts(out);
-    expect(file.read).toBe(file.used + file.superseded + file.rejected);
-    const unused = rowsOf(at(`${out}/unused-elements.csv`)).filter((row) => row.file === path);
-    expect(unused.filter((row) => row.reason === 'rejected').length).toBe(file.rejected);
-    expect(unused.filter((row) => row.reason === 'superseded').length).toBe(file.superseded);
-    expect(file.rejected, form).toBeGreaterThan(0);
+    ended += 1;
+    const [, ...files] = counts(out);
+    expect(files.map(({ file }: { file: string }) => file)).toEqual(paths);
+    const unused = rowsOf(at(`${out}/unused-elements.csv`));
+    for (const { file, read, used, superseded, rejected } of files) {
+      expect(read).toBe(used + superseded + rejected);
+      const here = unused.filter((row) => row.file === file);
+      expect(here.filter((row) => row.reason === 'rejected').length).toBe(rejected);
+      expect(here.filter((row) => row.reason === 'superseded').length).toBe(superseded);
+    }
+    expect(files.filter(({ rejected }: { rejected: number }) => rejected > 0).length).toBeGreaterThan(1);
   }
-  expect(statuses.filter((status) => status === 0).length).toBeGreaterThan(2);
+  expect(ended).toBeGreaterThan(1);
 });

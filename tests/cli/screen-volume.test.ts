@@ -28,7 +28,7 @@ const ms = (text: string) => Date.parse(text);
  *   each, whose times lie within the stay;
  * - a stay without a closest approach in it or near it has none.
  */
-test.each([
+test.concurrent.each([
   {
     shape: 'BOX',
     halfSizesKm: [30, 150, 120],
@@ -40,13 +40,21 @@ test.each([
 ] as const)(
   'every stay in a $shape around a closest approach has its row with entry and exit',
   async ({ shape, halfSizesKm, seed, mix }) => {
-    const drawn = syntheticCatalog({ seed, count: 150, epochMs: START_MS, mix });
-    writeFileSync(at('fleet.tle'), twoLineFile(drawn.filter((_, i) => i % 5 === 0)));
-    writeFileSync(at('catalog.tle'), twoLineFile(drawn.filter((_, i) => i % 5 !== 0)));
-    const first = (await readElementFiles([at('fleet.tle')])).sets;
-    const second = (await readElementFiles([at('catalog.tle')])).sets;
+    const drawn = syntheticCatalog({ seed, count: 120, epochMs: START_MS, mix });
+    writeFileSync(at(`${shape}-fleet.tle`), twoLineFile(drawn.filter((_, i) => i % 5 === 0)));
+    writeFileSync(at(`${shape}-catalog.tle`), twoLineFile(drawn.filter((_, i) => i % 5 !== 0)));
+    const first = (await readElementFiles([at(`${shape}-fleet.tle`)])).sets;
+    const second = (await readElementFiles([at(`${shape}-catalog.tle`)])).sets;
     const outcome = await runCommand([
-      ...['screen', '--fleet', at('fleet.tle'), '--catalog', at('catalog.tle'), '--out', at(shape)],
+      ...[
+        'screen',
+        '--fleet',
+        at(`${shape}-fleet.tle`),
+        '--catalog',
+        at(`${shape}-catalog.tle`),
+        '--out',
+        at(shape),
+      ],
       ...['--start', '2026-12-01T00:00:00Z', '--days', String(DAYS)],
       ...['--volume-rtn-km', halfSizesKm.join(','), '--volume-shape', shape],
     ]);
