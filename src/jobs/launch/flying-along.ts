@@ -3,15 +3,18 @@ import {
   COMPANION_LIMIT_KM,
   COMPANION_SPEED_KM_PER_S,
   type Companions,
-  findCompanions,
 } from '../../encounters/companions.js';
-import { searchObjectsOf } from '../../encounters/search-problem.js';
+import { type RefinedObject, relativeStateAt, slowTcas } from '../../encounters/refine.js';
 import { EARTH_MU_KM3_PER_S2 } from '../../ephemeris/gravity.js';
+import { dot, type Vector3 } from '../../vector.js';
 import type { ScreenedObject } from '../screened-object.js';
 import { groupBy } from './group-by.js';
 
 /** The first day decides: later a prediction and fresh elements of the same object drift apart. */
 const FIRST_STRETCH_MS = 86_400_000;
+const SAMPLE_MS = 300_000;
+const MS_PER_MINUTE = 60_000;
+const CLOSEST_GRID_MS = 20_000;
 /** Osculating elements swing about mean ones by less than this. */
 const SWING_KM = 40;
 const SWING_RAD = 0.005;
@@ -21,11 +24,15 @@ export type FlyingAlong = Companions;
 
 /**
  * Objects of fleet and catalog that fly along with the batch: from the first moment of an object of the
- * batch on, for a day or to the end of its phase, within the distance of companions and slower than 10 m/s.
- * They are the object itself under a number, the stage that brought it, or a neighbor in its orbit; as
+ * batch on, for a day or to the end of its phase, within the distance of companions and hardly moving against
+ * it. They are the object itself under a number, the stage that brought it, or a neighbor in its orbit; as
  * encounters they would be told a hundred times.
  *
+ * Hardly moving: slower than 10 m/s beside what two objects at rest to each other in the orbiting frame have,
+ * which is distance times orbital rate (29 m/s at 25 km in low orbit).
+ *
  * @param objects primaries (phases of the batch), then the others; `validToMs` not after the end of the window
+ * @param missKm pairs that are never closer than this are left out: they are no encounters either
  */
 export function findFlyingAlong(
   objects: readonly ScreenedObject[],
@@ -33,38 +40,25 @@ export function findFlyingAlong(
   missKm: number,
 ): FlyingAlong[] {
   const limitKm = Math.max(COMPANION_LIMIT_KM, 2 * missKm);
-  const others = Array.from({ length: objects.length - primaryCount }, (_, k) => primaryCount + k);
   const primaries = Array.from({ length: primaryCount }, (_, k) => k);
   const found: FlyingAlong[] = [];
-  const endOf = ({ validFromMs, validToMs }: ScreenedObject) =>
-    Math.min(validFromMs + FIRST_STRETCH_MS, validToMs);
-  const groups = groupBy(primaries, (k) => `${objects[k].validFromMs} ${endOf(objects[k])}`);
-  for (const group of groups.values()) {
+  for (const group of groupBy(primaries, (k) => objects[k].validFromMs).values()) {
     const like = orbitTest(
       group.map((k) => objects[k]),
       limitKm,
     );
-    const near = others.filter((k) => like(objects[k]));
-    if (near.length === 0) continue;
-    const indices = [...group, ...near];
-    const searched = searchObjectsOf(
-      indices.map((k) => ({
-        ...objects[k].set,
-        validFromMs: objects[k].validFromMs,
-        validToMs: objects[k].validToMs,
-      })),
-      group.length,
-      indices.map((k) => objects[k].record),
-    );
-    const pairs = findCompanions(searched, {
-      startMs: objects[group[0]].validFromMs,
-      endMs: endOf(objects[group[0]]),
-      missKm,
-      withinPrimaries: false,
-      skippedPairs: new Set(),
-    });
-    for (const pair of pairs) {
-      found.push({ ...pair, first: indices[pair.first], second: indices[pair.second] });
+    const startMs = objects[group[0]].validFromMs;
+    const near: { readonly second: number; readonly normal: Vector3 | undefined }[] = [];
+    for (let second = primaryCount; second < objects.length; second++) {
+      if (like(objects[second])) near.push({ second, normal: planeNormal(objects[second], startMs) });
+    }
+    for (const first of group) {
+      const own = planeNormal(objects[first], startMs);
+      for (const { second, normal } of near) {
+        if (own !== undefined && normal !== undefined && dot(own, normal) < like.leastCosine) continue;
+        const pair = flyTogether(objects[first], objects[second], limitKm);
+        if (pair !== undefined && pair.closestKm <= missKm) found.push({ first, second, ...pair });
+      }
     }
   }
   return found;
@@ -89,12 +83,69 @@ export function probablySame(
     });
 }
 
+const relative = new Float64Array(6);
+
+function flyTogether(
+  first: ScreenedObject,
+  second: ScreenedObject,
+  limitKm: number,
+): Omit<FlyingAlong, 'first' | 'second'> | undefined {
+  const object1: RefinedObject = { record: first.record, epochMs: first.set.epochMs };
+  const object2: RefinedObject = { record: second.record, epochMs: second.set.epochMs };
+  const startMs = first.validFromMs;
+  const endMs = Math.min(startMs + FIRST_STRETCH_MS, first.validToMs);
+  const rate = orbitalRate(first);
+  const distanceAt = (timeMs: number) =>
+    relativeStateAt(object1, object2, timeMs, relative)
+      ? Math.hypot(relative[0], relative[1], relative[2])
+      : Number.NaN;
+  let closestMs = startMs;
+  let closestKm = Number.POSITIVE_INFINITY;
+  let farthestKm = 0;
+  let slowest = Number.POSITIVE_INFINITY;
+  let fastest = 0;
+  const samples = Math.max(1, Math.ceil((endMs - startMs) / SAMPLE_MS));
+  for (let k = 0; k <= samples; k++) {
+    const timeMs = startMs + ((endMs - startMs) * k) / samples;
+    const distance = distanceAt(timeMs);
+    if (!(distance <= limitKm)) return undefined;
+    const speed = Math.hypot(relative[3], relative[4], relative[5]);
+    if (!(speed <= COMPANION_SPEED_KM_PER_S + rate * distance)) return undefined;
+    if (distance < closestKm) {
+      closestKm = distance;
+      closestMs = timeMs;
+    }
+    farthestKm = Math.max(farthestKm, distance);
+    slowest = Math.min(slowest, speed);
+    fastest = Math.max(fastest, speed);
+  }
+  const fromMs = Math.max(startMs, closestMs - SAMPLE_MS);
+  const toMs = Math.min(endMs, closestMs + SAMPLE_MS);
+  for (const timeMs of slowTcas(object1, object2, fromMs, toMs, CLOSEST_GRID_MS)) {
+    const distance = distanceAt(timeMs);
+    if (distance < closestKm) {
+      closestKm = distance;
+      closestMs = timeMs;
+    }
+  }
+  return { closestMs, closestKm, farthestKm, slowestKmPerS: slowest, fastestKmPerS: fastest };
+}
+
+/** At perigee, where it is highest; radians a second, with a tenth for J2 and for the swing of a relative orbit. */
+function orbitalRate({ orbit }: ScreenedObject): number {
+  const perigeeKm = orbit.perigeeHeightKm + EARTH_RADIUS_KM;
+  return 1.1 * Math.sqrt((EARTH_MU_KM3_PER_S2 * (1 + orbit.eccentricity)) / perigeeKm ** 3);
+}
+
 /**
- * A quick test that lets everything pass that can be close and slow: at distance D and relative speed V the
- * planes differ by at most D / r + V / v, and the semi-major axes by at most 2 a^2 (v V / mu + D / r^2)
- * (from the energy). It spares the flight of the whole catalog for each object of the batch.
+ * A quick test that lets everything pass that can fly along: at distance D and relative speed V the planes
+ * differ by at most D / r + V / v, and the semi-major axes by at most 2 a^2 (v V / mu + D / r^2) (from the
+ * energy). It spares the flight of the whole catalog for each object of the batch.
  */
-function orbitTest(batch: readonly ScreenedObject[], limitKm: number): (other: ScreenedObject) => boolean {
+function orbitTest(
+  batch: readonly ScreenedObject[],
+  limitKm: number,
+): ((other: ScreenedObject) => boolean) & { readonly leastCosine: number } {
   const inclinations = batch.map(({ orbit }) => orbit.inclinationDeg);
   const axes = batch.map(({ orbit }) => orbit.semiMajorAxisKm);
   const perigeeKm = Math.min(...batch.map(({ orbit }) => orbit.perigeeHeightKm)) + EARTH_RADIUS_KM - SWING_KM;
@@ -102,17 +153,28 @@ function orbitTest(batch: readonly ScreenedObject[], limitKm: number): (other: S
   const fastest = Math.sqrt(EARTH_MU_KM3_PER_S2 * (2 / perigeeKm - 1 / axis));
   const apogeeKm = 2 * axis - perigeeKm;
   const slowest = Math.sqrt(EARTH_MU_KM3_PER_S2 * (2 / apogeeKm - 1 / axis));
-  const angleDeg = (limitKm / perigeeKm + COMPANION_SPEED_KM_PER_S / slowest + SWING_RAD) * (180 / Math.PI);
+  const speed = COMPANION_SPEED_KM_PER_S + Math.max(...batch.map(orbitalRate)) * limitKm;
+  const angle = limitKm / perigeeKm + speed / slowest + SWING_RAD;
+  const angleDeg = angle * (180 / Math.PI);
   const axisKm =
-    2 *
-      (1.1 * axis) ** 2 *
-      ((fastest * COMPANION_SPEED_KM_PER_S) / EARTH_MU_KM3_PER_S2 + limitKm / perigeeKm ** 2) +
-    SWING_KM;
+    2 * (1.1 * axis) ** 2 * ((fastest * speed) / EARTH_MU_KM3_PER_S2 + limitKm / perigeeKm ** 2) + SWING_KM;
   const [lowDeg, highDeg] = [Math.min(...inclinations) - angleDeg, Math.max(...inclinations) + angleDeg];
   const [lowKm, highKm] = [Math.min(...axes) - axisKm, Math.max(...axes) + axisKm];
-  return ({ orbit }) =>
+  const test = ({ orbit }: ScreenedObject) =>
     orbit.inclinationDeg >= lowDeg &&
     orbit.inclinationDeg <= highDeg &&
     orbit.semiMajorAxisKm >= lowKm &&
     orbit.semiMajorAxisKm <= highKm;
+  return Object.assign(test, { leastCosine: Math.cos(angle) });
+}
+
+/**
+ * Normal of the mean orbit plane at a time, its node moved by SGP4's own rate; `undefined` for deep-space
+ * orbits, whose nodes Moon and Sun turn as well.
+ */
+function planeNormal({ record, set }: ScreenedObject, timeMs: number): Vector3 | undefined {
+  if (record.method === 'd') return undefined;
+  const node = record.nodeo + (record.nodedot * (timeMs - set.epochMs)) / MS_PER_MINUTE;
+  const sine = Math.sin(record.inclo);
+  return [sine * Math.sin(node), -sine * Math.cos(node), Math.cos(record.inclo)];
 }

@@ -117,6 +117,6 @@ export function gapLine(gaps: readonly PhaseGap[], file: string | undefined): st
   const [{ designator, fromMs, toMs, line }] = gaps;
   const hours = ((toMs - fromMs) / 3_600_000).toFixed(1);
   const others = new Set(gaps.map((gap) => gap.designator)).size - 1;
-  const more = others === 0 ? '' : `; ${others} more objects have gaps too (batch-objects.csv)`;
+  const more = others === 0 ? '' : `; ${others} other objects have gaps too (batch-objects.csv)`;
   return `${file}:${line}: no set of ${designator} holds from ${formatUtc(fromMs)} to ${formatUtc(toMs)} (${hours} h): not screened then${more}`;
 }

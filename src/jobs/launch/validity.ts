@@ -81,7 +81,7 @@ function refuseOverlaps(rows: readonly SetValidity[], file: string): void {
         ? `holds until ${formatUtc(before.toMs)}`
         : 'has no valid_until';
       throw new InputError(
-        `${file}:${after.line}: valid_from is ${formatUtc(after.fromMs)}, but line ${before.line} of ${designator} too ${until}: only one set can hold at a time`,
+        `${file}:${after.line}: valid_from is ${formatUtc(after.fromMs)}, but the set of ${designator} on line ${before.line} ${until}: only one set can hold at a time`,
       );
     }
   }

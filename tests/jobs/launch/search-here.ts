@@ -1,0 +1,22 @@
+import {
+  createSlabSearcher,
+  distinctApproaches,
+  searchSlab,
+  slabCount,
+} from '../../../src/encounters/search-slab.js';
+import { loadBulkPropagator } from '../../../src/ephemeris/bulk-nodes.js';
+import { assessApproaches } from '../../../src/jobs/assess-approach.js';
+import { createEncounterRecords, type EncounterRecords } from '../../../src/jobs/encounter-records.js';
+import { objectsOfPlan, rulesOfPlan, type SearchPlan } from '../../../src/jobs/search-plan.js';
+
+/** Searches a plan in this thread. */
+export async function searchHere(plan: SearchPlan): Promise<EncounterRecords> {
+  await loadBulkPropagator();
+  const objects = objectsOfPlan(plan);
+  const rules = rulesOfPlan(plan);
+  const searcher = createSlabSearcher(objects, rules);
+  const found = Array.from({ length: slabCount(rules) }, (_, slab) => searchSlab(searcher, slab).approaches);
+  const records = createEncounterRecords();
+  assessApproaches(distinctApproaches(found.flat(), objects.count), objects, plan, records);
+  return records;
+}
