@@ -27,7 +27,7 @@ const relative = new Float64Array(6);
  * near-circular orbits, up to some m/s in eccentric deep-space ones.
  */
 function velocityDefectKmPerS(object1: RefinedObject, object2: RefinedObject): number {
-  return object1.record.ecco < 0.01 && object2.record.ecco < 0.01 ? 2e-4 : 0.02;
+  return object1.record.ecco < 0.01 && object2.record.ecco < 0.01 ? 1e-4 : 0.02;
 }
 
 /** Relative state, object 2 minus object 1; false where SGP4 gives no state for one of them. */
@@ -91,6 +91,7 @@ export function refineFastTca(
   reachMs: number,
   widestKm = Number.POSITIVE_INFINITY,
 ): number {
+  const defectKmPerS = velocityDefectKmPerS(object1, object2);
   let timeMs = guessMs;
   let speed2 = 0;
   let distance = 0;
@@ -113,22 +114,26 @@ export function refineFastTca(
     const stepMs = stepS * MS_PER_S;
     timeMs += stepMs;
     if (!(Math.abs(timeMs - guessMs) <= reachMs)) return Number.NaN;
-    if (Math.abs(stepMs) * newtonError(distance, speed2) < SETTLED_MS) break;
+    if (Math.abs(stepMs) * newtonError(distance, speed2, defectKmPerS) < SETTLED_MS) break;
   }
-  if (distance * velocityDefectKmPerS(object1, object2) > speed2 * TOLERATED_SHIFT_S) {
+  if (distance * defectKmPerS > speed2 * TOLERATED_SHIFT_S) {
     for (let iteration = 0; iteration < 6; iteration++) {
       const stepMs = (-closingRateAt(object1, object2, timeMs) / speed2) * MS_PER_S;
       timeMs += stepMs;
       if (!(Math.abs(timeMs - guessMs) <= reachMs)) return Number.NaN;
-      if (Math.abs(stepMs) * newtonError(distance, speed2) < SETTLED_MS) break;
+      if (Math.abs(stepMs) * newtonError(distance, speed2, defectKmPerS) < SETTLED_MS) break;
     }
   }
   return roundTca(timeMs);
 }
 
-/** What is left of a Newton step for the TCA: (d^2)'' / 2 = v^2 + d . d'', of which the step takes but v^2. */
-function newtonError(distanceKm: number, speed2: number): number {
-  return Math.min(1, (STRONGEST_TIDE_PER_S2 * distanceKm * distanceKm) / speed2 + 1e-4);
+/**
+ * What part of a Newton step for the TCA may be wrong: (d^2)'' / 2 = v^2 + d . d'', of which the step takes but
+ * v^2, and that from SGP4's velocities.
+ */
+function newtonError(distanceKm: number, speed2: number, defectKmPerS: number): number {
+  const curved = (STRONGEST_TIDE_PER_S2 * distanceKm * distanceKm) / speed2;
+  return Math.min(1, curved + defectKmPerS / Math.sqrt(speed2));
 }
 
 /**

@@ -63,7 +63,7 @@ export type SlabResult = {
 /** Steps that a slab can be cut into; the search takes the one that costs least. */
 const STEPS_S = [20, 24, 30, 36, 40, 48, 60, 72, 80, 90, 96, 120, 150, 160, 180, 200, 240, 300];
 /** Cost of stepping an object against that of looking at a pair: sets the step, not the result. */
-const OBJECT_COST = 30;
+const OBJECT_COST = 16;
 const TRIAL_STEP_S = 120;
 /** Grid of the sign changes of a slow pair. */
 const SLOW_GRID_MS = 80_000;
