@@ -1,7 +1,7 @@
 import type { Writable } from 'node:stream';
-import { LAUNCH_CAUTION } from '../caution.js';
 import type { Vector3 } from '../vector.js';
 import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
+import { LAUNCH_CAUTION_COLUMN } from './shared-columns.js';
 
 /** One element set of a launch batch: which object it is, and when it counts. Times in milliseconds of UTC since 1970-01-01. */
 export type BatchObjectRow = {
@@ -19,8 +19,6 @@ export type BatchObjectRow = {
   readonly sigmaToRtnM: Vector3;
   readonly sigmaSource: string;
 };
-
-const CAUTION_CELL = textCell(LAUNCH_CAUTION);
 
 /** The columns of `batch-objects.csv`; new ones only ever follow the last one. */
 export const BATCH_OBJECT_COLUMNS: readonly CsvColumn<BatchObjectRow>[] = [
@@ -86,12 +84,7 @@ export const BATCH_OBJECT_COLUMNS: readonly CsvColumn<BatchObjectRow>[] = [
     meaning: 'Where the sigmas come from: the injection errors of the batch, or file and line',
     cell: (row) => textCell(row.sigmaSource),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  LAUNCH_CAUTION_COLUMN,
 ];
 
 function sigmaColumns(

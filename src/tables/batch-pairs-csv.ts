@@ -1,7 +1,7 @@
 import type { Writable } from 'node:stream';
-import { LAUNCH_CAUTION } from '../caution.js';
 import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
 import { compareDesignators } from './rank-conjunctions.js';
+import { LAUNCH_CAUTION_COLUMN } from './shared-columns.js';
 
 export type PairTrend = 'OPENING' | 'CLOSING' | 'STEADY';
 
@@ -30,8 +30,6 @@ export type BatchPair = {
   readonly endDistanceM: number;
   readonly remarks: readonly PairRemark[];
 };
-
-const CAUTION_CELL = textCell(LAUNCH_CAUTION);
 
 /** The columns of `batch-pairs.csv`; new ones only ever follow the last one. */
 export const BATCH_PAIR_COLUMNS: readonly CsvColumn<BatchPair>[] = [
@@ -121,12 +119,7 @@ export const BATCH_PAIR_COLUMNS: readonly CsvColumn<BatchPair>[] = [
     meaning: 'Codes of what to know about the row, one blank between them; empty if there is none',
     cell: (row) => textCell(row.remarks.join(' ')),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  LAUNCH_CAUTION_COLUMN,
 ];
 
 /** Closest pair first, then by designators; the given array stays as it is. */

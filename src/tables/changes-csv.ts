@@ -1,8 +1,6 @@
 import type { Writable } from 'node:stream';
-import { CAUTION } from '../caution.js';
 import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-
-const CAUTION_CELL = textCell(CAUTION);
+import { CAUTION_COLUMN } from './shared-columns.js';
 
 /** How an encounter stands tonight against the runs before; explained at the column `change`. */
 export const CHANGE_KINDS = [
@@ -129,12 +127,7 @@ export const CHANGES_COLUMNS: readonly CsvColumn<Change>[] = [
     meaning: 'Number of runs that listed it, this one included',
     cell: (row) => String(row.runsSeen),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
 ];
 
 /** Writes `changes.csv` to `output` and ends it, in the order given. */

@@ -1,7 +1,7 @@
 import type { Writable } from 'node:stream';
-import { CAUTION } from '../caution.js';
 import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
 import { compareDesignators } from './rank-conjunctions.js';
+import { CAUTION_COLUMN, OBJECT_COLUMNS } from './shared-columns.js';
 
 /** One object of a pair that flies together. */
 export type CompanionObject = {
@@ -26,34 +26,9 @@ export type CompanionPair = {
   readonly remarks: readonly string[];
 };
 
-const CAUTION_CELL = textCell(CAUTION);
-
 /** The columns of `companions.csv`. */
 export const COMPANION_COLUMNS: readonly CsvColumn<CompanionPair>[] = [
-  {
-    name: 'object1_designator',
-    unit: '',
-    meaning: 'Catalog number of object 1, in decimal',
-    cell: (row) => textCell(row.object1.designator),
-  },
-  {
-    name: 'object1_name',
-    unit: '',
-    meaning: 'Name of object 1, empty if the elements give none',
-    cell: (row) => textCell(row.object1.name),
-  },
-  {
-    name: 'object2_designator',
-    unit: '',
-    meaning: 'Catalog number of object 2, in decimal',
-    cell: (row) => textCell(row.object2.designator),
-  },
-  {
-    name: 'object2_name',
-    unit: '',
-    meaning: 'Name of object 2, empty if the elements give none',
-    cell: (row) => textCell(row.object2.name),
-  },
+  ...OBJECT_COLUMNS,
   {
     name: 'closest_utc',
     unit: 'UTC',
@@ -91,12 +66,7 @@ export const COMPANION_COLUMNS: readonly CsvColumn<CompanionPair>[] = [
       'Codes of what makes the figures less trustworthy, one blank between them; empty if there is none',
     cell: (row) => textCell(row.remarks.join(' ')),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
 ];
 
 /** Closest pair first, then by designators; the given array stays as it is. */

@@ -1,5 +1,4 @@
 import type { Writable } from 'node:stream';
-import { CAUTION } from '../caution.js';
 import type { Conjunction } from './conjunction.js';
 import {
   type CsvColumn,
@@ -11,8 +10,7 @@ import {
   utcCell,
   writeCsv,
 } from './csv-text.js';
-
-const CAUTION_CELL = textCell(CAUTION);
+import { CAUTION_COLUMN, OBJECT_COLUMNS } from './shared-columns.js';
 
 /**
  * The columns of `conjunctions.csv`. The order is fixed: loaders go by position, so new columns only ever
@@ -33,30 +31,7 @@ export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
     meaning: 'Time of closest approach, ISO 8601 to the millisecond',
     cell: (row) => utcCell(row.tcaMs),
   },
-  {
-    name: 'object1_designator',
-    unit: '',
-    meaning: 'Catalog number of object 1, in decimal',
-    cell: (row) => textCell(row.object1.designator),
-  },
-  {
-    name: 'object1_name',
-    unit: '',
-    meaning: 'Name of object 1, empty if the elements give none',
-    cell: (row) => textCell(row.object1.name),
-  },
-  {
-    name: 'object2_designator',
-    unit: '',
-    meaning: 'Catalog number of object 2, in decimal',
-    cell: (row) => textCell(row.object2.designator),
-  },
-  {
-    name: 'object2_name',
-    unit: '',
-    meaning: 'Name of object 2, empty if the elements give none',
-    cell: (row) => textCell(row.object2.name),
-  },
+  ...OBJECT_COLUMNS,
   {
     name: 'miss_distance_m',
     unit: 'm',
@@ -198,12 +173,7 @@ export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
       'Codes of what makes the figures less trustworthy, one blank between them; empty if there is none',
     cell: (row) => textCell(row.remarks.join(' ')),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
   {
     name: 'collision_probability_foster',
     unit: '0 to 1',

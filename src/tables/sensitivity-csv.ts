@@ -1,6 +1,6 @@
 import type { Writable } from 'node:stream';
-import { CAUTION } from '../caution.js';
 import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
+import { CAUTION_COLUMN } from './shared-columns.js';
 
 /** How the probability of one conjunction changes when all its sigmas are scaled by one factor. */
 export type ConjunctionSensitivity = {
@@ -18,7 +18,6 @@ export type ConjunctionSensitivity = {
   readonly peakProbability: number | undefined;
 };
 
-const CAUTION_CELL = textCell(CAUTION);
 /** Within this of 1 the sigmas count as standing at the peak, where the curve is flat. */
 const PEAK_TOLERANCE = 0.05;
 
@@ -99,12 +98,7 @@ export const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] =
     meaning: 'In words: what smaller sigmas, that is better orbits, would do to the probability',
     cell: (row) => textCell(describeSensitivity(row.peakScale)),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
 ];
 
 /**

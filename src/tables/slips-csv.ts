@@ -1,6 +1,6 @@
 import type { Writable } from 'node:stream';
-import { LAUNCH_CAUTION } from '../caution.js';
 import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
+import { LAUNCH_CAUTION_COLUMN } from './shared-columns.js';
 
 /** One encounter of a candidate liftoff, as far as its row tells it. */
 export type LiftoffEncounter = {
@@ -34,8 +34,6 @@ export type LiftoffRow = {
   readonly closest: LiftoffEncounter | undefined;
   readonly mostProbable: LiftoffEncounter | undefined;
 };
-
-const CAUTION_CELL = textCell(LAUNCH_CAUTION);
 
 /** The columns of `slips.csv`; new ones only ever follow the last one. */
 export const SLIP_COLUMNS: readonly CsvColumn<LiftoffRow>[] = [
@@ -99,12 +97,7 @@ export const SLIP_COLUMNS: readonly CsvColumn<LiftoffRow>[] = [
     'the encounter with the highest probability',
     (row) => row.mostProbable,
   ),
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  LAUNCH_CAUTION_COLUMN,
 ];
 
 function encounterColumns(

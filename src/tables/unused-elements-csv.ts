@@ -1,9 +1,7 @@
 import type { Writable } from 'node:stream';
-import { CAUTION } from '../caution.js';
 import type { UnusedElements } from '../elements/element-set.js';
 import { type CsvColumn, textCell, utcCell, writeCsv } from './csv-text.js';
-
-const CAUTION_CELL = textCell(CAUTION);
+import { CAUTION_COLUMN } from './shared-columns.js';
 
 /** The columns of `unused-elements.csv`: every set that was read and not used, or not to the end. */
 export const UNUSED_ELEMENTS_COLUMNS: readonly CsvColumn<UnusedElements>[] = [
@@ -51,12 +49,7 @@ export const UNUSED_ELEMENTS_COLUMNS: readonly CsvColumn<UnusedElements>[] = [
     meaning: 'The set as it stood in the file, with its line breaks',
     cell: (row) => textCell(row.source.text),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
 ];
 
 /**
