@@ -30,8 +30,8 @@ beforeAll(() => {
       .filter(({ number }) => numbers.test(number))
       .map(({ text }) => text)
       .join('');
-  writeFileSync(at('fleet.tle'), few('fleet.tle', /^9801[68]/));
-  writeFileSync(at('catalog.tle'), few('catalog.tle', /^W900/));
+  writeFileSync(at('fleet.tle'), few('fleet.tle', /^980[12]/));
+  writeFileSync(at('catalog.tle'), few('catalog.tle', /^(W90|97)/));
 });
 
 /** Each run has its own start, by which its results are told from those of the others. */
@@ -39,7 +39,7 @@ const startOf = (round: number) => `2026-12-01T03:15:${String(round).padStart(2,
 
 const run = (lane: number, round: number) => [
   ...['screen', '--fleet', at('fleet.tle'), '--catalog', at('catalog.tle'), '--start', startOf(round)],
-  ...['--days', '0.005', '--workers', '1', '--cdm-from-pc', '0', '--keep-runs', '2'],
+  ...['--days', '0.01', '--miss-km', '1000', '--workers', '1', '--cdm-from-pc', '0', '--keep-runs', '2'],
   ...['--out', at(`${lane}/tonight`), '--history', at(`${lane}/runs`)],
 ];
 
@@ -50,12 +50,13 @@ function standing(lane: number): string {
     wholeRunIn(join(history, name), ['encounters.json']);
   }
   const record = wholeRunIn(at(`${lane}/tonight`));
-  expect(record.counts).toMatchObject({ encounters: 1, messages: 1 });
+  // Many small files, so that putting them in place takes a while.
+  expect(record.counts.messages).toBeGreaterThan(10);
   return record.window.startUtc;
 }
 
 test(`killed at ${KILLS} random moments of its work`, async () => {
-  const found = { old: 0, new: 0, ended: 0, lockLeft: 0 };
+  const found = { old: 0, new: 0, lockLeft: 0 };
   const lane = async (number: number): Promise<void> => {
     let seed = 508 + number;
     const random = () => {
@@ -87,15 +88,14 @@ test(`killed at ${KILLS} random moments of its work`, async () => {
       await pause(1.1 * tookMs[fromSign] * random());
       child.kill('SIGKILL');
       const { status, stderr } = await end;
-      if (status !== null) {
-        expect(status, stderr).toBe(0);
-        found.ended += 1;
-      }
+      if (status !== null) expect(status, stderr).toBe(0);
       if (existsSync(lock)) found.lockLeft += 1;
       const now = standing(number);
       expect([before, startOf(round)]).toContain(now);
       if (status === 0) expect(now).toBe(startOf(round));
       found[now === before ? 'old' : 'new'] += 1;
+      // The machine may have become slower or faster meanwhile.
+      tookMs[fromSign] *= now === before ? 1.1 : 0.85;
       before = now;
     }
     const last = await runCommand(run(number, 59));
@@ -105,10 +105,11 @@ test(`killed at ${KILLS} random moments of its work`, async () => {
     expect(readdirSync(at(`${number}/runs`)).length).toBe(2);
   };
   await Promise.all(Array.from({ length: LANES }, (_, number) => lane(number)));
+  // Not that all came too early or too late.
   expect(found.old).toBeGreaterThan(KILLS / 10);
-  expect(found.new).toBeGreaterThan(KILLS / 20);
-  expect(found.lockLeft).toBeGreaterThan(KILLS / 4);
-});
+  expect(found.new).toBeGreaterThan(KILLS / 10);
+  expect(found.lockLeft).toBeGreaterThan(KILLS / 10);
+}, 240_000);
 
 /** Tells a file from one of the same name before it. */
 function stamp(path: string): string | undefined {

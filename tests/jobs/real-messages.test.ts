@@ -26,8 +26,8 @@ const folder = freshFolder();
 afterAll(folder.remove);
 const at = (name: string) => join(folder.path, name);
 
-/** So low that passes of every kind get a message, so high that not all do. */
-const FROM = 1e-12;
+/** Among probabilities that lie close together, to see where the line is drawn. */
+const FROM = 1.2e-7;
 
 let rows: Row[];
 let messages: Map<string, ConjunctionMessage>;
@@ -56,7 +56,7 @@ beforeAll(async () => {
 const enough = () => rows.filter((row) => Number(row.collision_probability) >= FROM);
 
 test('one for each encounter from the given probability on, and no other', () => {
-  expect(enough().length).toBeGreaterThan(10);
+  expect(enough().length).toBeGreaterThan(8);
   expect(enough().length).toBeLessThan(rows.length);
   expect([...messages.keys()].sort()).toEqual(enough().map(fileOf).sort());
   expect(runRecordOf(at('out')).counts.messages).toBe(messages.size);

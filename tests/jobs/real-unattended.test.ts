@@ -147,7 +147,8 @@ describe.each([
     const child = startCommand(screenFor(out, 60, CATALOG));
     children.add(child);
     const end = outcomeOf(child);
-    child.stderr?.once('data', async () => {
+    child.stderr?.on('data', async (text: string) => {
+      if (!text.includes('searching')) return;
       await pause(100);
       child.kill(signal);
     });
