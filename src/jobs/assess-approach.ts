@@ -60,15 +60,18 @@ function assessApproach(
   const hardBodyRadiusM = plan.hardBodyRadiusM[first] + plan.hardBodyRadiusM[second];
   const side1 = { ...object1, state: stateFrom(0), covarianceRtnM2: covarianceRtnM2(sigma1) };
   const side2 = { ...object2, state: stateFrom(6), covarianceRtnM2: covarianceRtnM2(sigma2) };
-  const assessed = assessInFull({
-    object1: { ...side1.state, covarianceRtnM2: side1.covarianceRtnM2 },
-    object2: { ...side2.state, covarianceRtnM2: side2.covarianceRtnM2 },
-    hardBodyRadiusM,
-  });
+  const assessed = assessInFull(
+    {
+      object1: { ...side1.state, covarianceRtnM2: side1.covarianceRtnM2 },
+      object2: { ...side2.state, covarianceRtnM2: side2.covarianceRtnM2 },
+      hardBodyRadiusM,
+    },
+    plan.onlyProbability !== true,
+  );
   const path = pathProbability(side1, side2, tcaMs, hardBodyRadiusM, assessed, fromMs, toMs);
   const { plane } = assessed;
   const scaled = (factor: number) =>
-    plane === undefined
+    plane === undefined || plan.onlyProbability === true
       ? Number.NaN
       : discProbability(
           plane.sigmaXM * factor,

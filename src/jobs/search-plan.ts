@@ -24,6 +24,8 @@ export type SearchPlan = {
   readonly skippedPairs: readonly number[];
   readonly volume: ScreeningVolume;
   readonly maxAgeDays: number;
+  /** The probability alone: no maximum over scaled sigmas, no sensitivity. Default: everything. */
+  readonly onlyProbability?: boolean;
 };
 
 const PLAN_FIELDS = 10;

@@ -66,8 +66,15 @@ export type FullAssessment = EncounterAssessment & {
   readonly peakSigmaScale: number | undefined;
 };
 
-/** `assessEncounter` without the checks, for states and covariances that were computed, not given. */
-export function assessInFull({ object1, object2, hardBodyRadiusM }: Encounter): FullAssessment {
+/**
+ * `assessEncounter` without the checks, for states and covariances that were computed, not given.
+ *
+ * @param withMaximum whether the largest probability over all scales of the sigmas is wanted
+ */
+export function assessInFull(
+  { object1, object2, hardBodyRadiusM }: Encounter,
+  withMaximum = true,
+): FullAssessment {
   const frame1 = rtnFrame(object1.positionKm, object1.velocityKmPerS);
   const frame2 = rtnFrame(object2.positionKm, object2.velocityKmPerS);
   const positionM = scale(subtract(object2.positionKm, object1.positionKm), 1000);
@@ -77,7 +84,7 @@ export function assessInFull({ object1, object2, hardBodyRadiusM }: Encounter): 
     covarianceOutOf(frame2, object2.covarianceRtnM2),
   );
   const plane = encounterPlane(positionM, velocityMPerS, covarianceM2);
-  const maximum = plane && maximumProbability({ ...plane, hardBodyRadiusM });
+  const maximum = withMaximum && plane ? maximumProbability({ ...plane, hardBodyRadiusM }) : undefined;
   return {
     missDistanceM: norm(positionM),
     relativeSpeedMPerS: norm(velocityMPerS),

@@ -89,9 +89,10 @@ async function launchInto(
   warnOfIdleSigmas(knowledge, nominal, ports);
   const tooSmall = volumeWarning(nominal, options.volume, endMs);
   if (tooSmall !== undefined) ports.log.warn(tooSmall);
-  const searchOf = (slipsMs: readonly number[]) => liftoffSearch(slipsMs, nominal, others, window, options);
+  const searchOf = (slipsMs: readonly number[], onlyProbability: boolean) =>
+    liftoffSearch(slipsMs, nominal, others, window, { ...options, onlyProbability });
   // On its own, so that its figures are to the last digit those of a run without slips.
-  const search = searchOf([0]);
+  const search = searchOf([0], false);
   timings.end('preparing');
 
   ports.log.info(
@@ -126,7 +127,8 @@ async function launchInto(
   unranked.push(
     ...(await slippedRows(
       slips.filter((slipMs) => slipMs !== 0),
-      searchOf,
+      (slipsMs) => searchOf(slipsMs, true),
+      nominal.length,
       new Set([...outcome.lastMsOf.keys()].map((index) => search.objects[index].set.source)),
       options,
       ports,
@@ -271,13 +273,14 @@ async function readLaunch(
 async function slippedRows(
   slipsMs: readonly number[],
   searchOf: (slipsMs: readonly number[]) => LiftoffSearch,
+  phaseCount: number,
   knownFailures: ReadonlySet<unknown>,
   options: LaunchOptions,
   ports: JobPorts,
 ): Promise<UnrankedLiftoff[]> {
   const rows: UnrankedLiftoff[] = [];
   if (slipsMs.length === 0) return rows;
-  for (const group of slipGroups(slipsMs, searchOf([0]).phaseCount)) {
+  for (const group of slipGroups(slipsMs, phaseCount)) {
     const search = searchOf(group);
     ports.log.info(
       `searching ${group.length} more liftoffs, ${formatUtc(options.liftoffMs + group[0])} to ${formatUtc(options.liftoffMs + group[group.length - 1])}`,

@@ -28,13 +28,18 @@ export const MOST_COPIES = 6000;
  *
  * @param batch phases of the nominal launch
  * @param window of the nominal launch
+ * @param settings `onlyProbability` where the rest of an assessment is not wanted
  */
 export function liftoffSearch(
   slipsMs: readonly number[],
   batch: readonly ScreenedObject[],
   others: readonly ScreenedObject[],
   window: { readonly startMs: number; readonly endMs: number },
-  settings: { readonly volume: ScreeningVolume; readonly maxAgeDays: number },
+  settings: {
+    readonly volume: ScreeningVolume;
+    readonly maxAgeDays: number;
+    readonly onlyProbability: boolean;
+  },
 ): LiftoffSearch {
   const phaseCount = batch.length;
   const copies = slipsMs.flatMap((slipMs) =>
@@ -60,6 +65,7 @@ export function liftoffSearch(
     skippedPairs: [...skipped],
     volume: settings.volume,
     maxAgeDays: settings.maxAgeDays,
+    onlyProbability: settings.onlyProbability,
   });
   return { slipsMs, phaseCount, objects, flying, plan };
 }

@@ -22,7 +22,7 @@ const KNOWLEDGE: ObjectKnowledge = {
   defaultSigmas: defaultSigmaTable(),
 };
 const WINDOW = { startMs: RELEASE_MS, endMs: RELEASE_MS + 72 * HOUR_MS };
-const VOLUME = { volume: { shape: 'SPHERE', missKm: 25 }, maxAgeDays: 30 } as const;
+const VOLUME = { volume: { shape: 'SPHERE', missKm: 25 }, maxAgeDays: 30, onlyProbability: true } as const;
 
 /** Ten objects a step apart, and the same ten under numbers, with the errors of another fit. */
 const batchSets = Array.from(

@@ -72,7 +72,7 @@ describe('several liftoffs in one search', () => {
       batchObjects(PHASES, KNOWLEDGE, INJECTION),
       catalog.map((set) => screenedObject(set, KNOWLEDGE)),
       WINDOW,
-      { volume: { shape: 'SPHERE', missKm: MISS_KM }, maxAgeDays: 30 },
+      { volume: { shape: 'SPHERE', missKm: MISS_KM }, maxAgeDays: 30, onlyProbability: true },
     );
     records = await searchHere(search.plan);
   });
