@@ -88,7 +88,7 @@ async function launchInto(
   warnOfUnlisted(knowledge.listed, options.objectsPath, [...nominal, ...others], ports);
   warnOfIdleSigmas(knowledge, nominal, ports);
   const tooSmall = volumeWarning(nominal, options.volume, endMs);
-  if (tooSmall !== undefined) ports.log.warn(tooSmall);
+  if (tooSmall !== undefined) ports.log.warn(tooSmall.warning);
   const searchOf = (slipsMs: readonly number[], onlyProbability: boolean) =>
     liftoffSearch(slipsMs, nominal, others, window, { ...options, onlyProbability });
   // On its own, so that its figures are to the last digit those of a run without slips.
@@ -213,6 +213,7 @@ async function launchInto(
 
   const lines = [
     ...liftoffLines(liftoffs, options.limits),
+    ...(tooSmall === undefined ? [] : wrapWords(terminalText(tooSmall.note), COLUMNS)),
     '',
     `With the nominal liftoff, ${formatUtc(options.liftoffMs)}:`,
     ...alertLines(forTerminal(ranked), alertPc),

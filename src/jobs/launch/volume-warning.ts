@@ -12,13 +12,13 @@ const AXES = ['radial', 'transverse', 'normal'] as const;
  * object that is off by no more than must be expected passes by outside of it.
  *
  * @param batch phases of the nominal launch
- * @returns `undefined` where the volume is large enough
+ * @returns words for the log and, shorter, for beside the verdict; `undefined` where the volume is large enough
  */
 export function volumeWarning(
   batch: readonly ScreenedObject[],
   volume: ScreeningVolume,
   windowEndMs: number,
-): string | undefined {
+): { readonly warning: string; readonly note: string } | undefined {
   const halfSizeKm =
     volume.shape === 'SPHERE' ? [volume.missKm, volume.missKm, volume.missKm] : volume.halfSizeRtnKm;
   let worst: { object: ScreenedObject; endMs: number; axis: number; threeSigmaKm: number } | undefined;
@@ -37,5 +37,7 @@ export function volumeWarning(
   if (worst === undefined) return undefined;
   const { object, endMs, axis, threeSigmaKm } = worst;
   const reachKm = halfSizeKm[axis];
-  return `the screening volume reaches ${reachKm} km in ${AXES[axis]} direction, but three sigma of ${object.designator} are ${threeSigmaKm.toFixed(1)} km at ${formatUtc(endMs)}, ${(threeSigmaKm - reachKm).toFixed(1)} km more (${(threeSigmaKm / reachKm).toFixed(1)} times as far): objects that may be met then are not listed; give a larger --miss-km or --volume-rtn-km, fewer --days, or the injection errors of your launch vehicle`;
+  const note = `Clear or not, this is about the predicted orbits: three sigma of the batch grow to ${threeSigmaKm.toFixed(1)} km in the window, the screening volume reaches ${reachKm} km.`;
+  const warning = `the screening volume reaches ${reachKm} km in ${AXES[axis]} direction, but three sigma of ${object.designator} are ${threeSigmaKm.toFixed(1)} km at ${formatUtc(endMs)}, ${(threeSigmaKm - reachKm).toFixed(1)} km more (${(threeSigmaKm / reachKm).toFixed(1)} times as far): objects that may be met then are not listed; give a larger --miss-km or --volume-rtn-km, fewer --days, or the injection errors of your launch vehicle`;
+  return { warning, note };
 }

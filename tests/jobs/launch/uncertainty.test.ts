@@ -60,15 +60,19 @@ describe('the warning of a volume that is too small', () => {
   const end = RELEASE_MS + 2 * DAY_MS;
 
   it('says by how much, at the end of the window', () => {
-    expect(volumeWarning(object(), { shape: 'SPHERE', missKm: 25 }, end)).toMatch(
+    const { warning, note } = volumeWarning(object(), { shape: 'SPHERE', missKm: 25 }, end) ?? {};
+    expect(warning).toMatch(
       // Three times the root of 3^2 + 40^2 km.
       /^the screening volume reaches 25 km in transverse direction, but three sigma of B-SAT-1 are 120\.3 km at 2026-12-07T15:22:30\.000Z, 95\.3 km more \(4\.8 times as far\)/,
+    );
+    expect(note).toBe(
+      'Clear or not, this is about the predicted orbits: three sigma of the batch grow to 120.3 km in the window, the screening volume reaches 25 km.',
     );
   });
 
   it('looks at each direction of a box', () => {
     const box = (...halfSizeRtnKm: [number, number, number]) =>
-      volumeWarning(object(), { shape: 'BOX', halfSizeRtnKm }, end);
+      volumeWarning(object(), { shape: 'BOX', halfSizeRtnKm }, end)?.warning;
     expect(box(3, 121, 1.5)).toBeUndefined();
     expect(box(2.9, 121, 1.5)).toContain('in radial direction, but three sigma of B-SAT-1 are 3.0 km');
     expect(box(3, 121, 1.4)).toContain('in normal direction');
