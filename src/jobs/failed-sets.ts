@@ -45,6 +45,6 @@ export function warnOfFailures(
 export function failedLines(count: number): string[] {
   if (count === 0) return [];
   return [
-    `${count} of the used sets fail before the end of the window (decayed, or elements too old): see unused-elements.csv`,
+    `${count} of the used sets ${count === 1 ? 'fails' : 'fail'} before the end of the window (decayed, or elements too old): see unused-elements.csv`,
   ];
 }

@@ -25,6 +25,20 @@ export function alertLines({ count, at }: RankedConjunctions, alertPc: number | 
   ];
 }
 
+/** The end of a run in one line of the log, where a collector sees nothing else of it. */
+export function finishedText(
+  outPath: string,
+  { count, at }: RankedConjunctions,
+  alertReached: boolean,
+): string {
+  const highest = count === 0 ? undefined : at(0).collisionProbability;
+  const probability =
+    highest === undefined
+      ? ''
+      : `, highest probability ${exponentText(highest, 1)}${alertReached ? ', which reaches --alert-pc' : ''}`;
+  return `finished: ${count} conjunction${count === 1 ? '' : 's'}${probability}; results in ${outPath}`;
+}
+
 /** Where the results are and what is there, the messages counted instead of named. */
 export function resultsLine(outPath: string, files: readonly string[]): string {
   const messages = files.filter((name) => name.startsWith('cdm/')).length;

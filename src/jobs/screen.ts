@@ -21,9 +21,10 @@ import { type EncounterRecords, FIELD, FIELDS } from './encounter-records.js';
 import { failedLines, failedSets, warnOfFailures } from './failed-sets.js';
 import { keepInHistory, prepareHistory, readPastRuns } from './history.js';
 import { readElementInputs, readKnowledge } from './inputs.js';
-import { alertLines, resultsLine } from './outcome-lines.js';
+import { alertLines, finishedText, resultsLine } from './outcome-lines.js';
 import { type OutputFolder, openOutputFolder } from './output-folder.js';
 import { rankedRecords, writeRankedTables } from './ranked-records.js';
+import { warnOfRejected } from './rejected-sets.js';
 import { RUN_RECORD } from './run-folder.js';
 import { environmentOf, recordedOptions, runRecordText } from './run-record.js';
 import type { JobPorts, ScreenOptions, ScreenOutcome } from './screen-options.js';
@@ -76,6 +77,7 @@ async function screenInto(
     options.maxAgeDays,
     ports,
   );
+  if (!options.allOnAll) warnOfRejected(inputs.unused, options.fleetPaths, inputs.fleet, ports);
   timings.end('reading');
 
   const primaries = (options.allOnAll ? inputs.catalog : inputs.fleet).map((set) =>
@@ -201,6 +203,7 @@ async function screenInto(
       ports,
     );
   }
+  ports.log.info(finishedText(options.outPath, ranked, alertReached));
   const lines = [
     ...alertLines(ranked, options.alertPc),
     ...(comparison === undefined ? [] : [...changeLines(comparison.changes, RISEN_SHOWN, past[0]?.name), '']),

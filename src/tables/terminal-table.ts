@@ -32,12 +32,13 @@ export type RankedConjunctions = {
 
 /**
  * The first `limit` conjunctions as a table of 100 columns, then the nearest of those that have no
- * probability and so stand at the end of the ranking. Ends with a line break.
- *
+ * probability and so stand at the end of the ranking; with a `limit` of 0 only how many there are. Ends with
+ * a line break.
  */
 export function formatConjunctionTable(ranked: RankedConjunctions, limit: number): string {
   const { count, at } = ranked;
   if (count === 0) return 'No conjunctions in the window.\n';
+  if (limit === 0) return `${counted(count, 'conjunction')}, none of them shown here.\n`;
   const shown = Math.min(limit, count);
   let firstWithout = count;
   while (firstWithout > 0 && !hasProbability(at(firstWithout - 1))) firstWithout--;
