@@ -96,6 +96,9 @@ test('it ends well, says so on standard output alone, and leaves five files and 
   expect(outcome.stderr.split('\n').slice(0, -1)).toEqual([
     expect.stringMatching(/^\[\S+Z\] WARN: 1 of 2825 catalog element sets are further than 30 days/),
     expect.stringMatching(/^\[\S+Z\] INFO: searching 2026-12-01T00:00:00.000Z to 2026-12-02T00:00:00.000Z: /),
+    expect.stringMatching(
+      /^\[\S+Z\] INFO: finished: \d+ conjunctions, highest probability 3\.\dE-04; results in \S+tonight$/,
+    ),
   ]);
   expect(readdirSync(folder.path)).toEqual(['tonight']);
   expect(readdirSync(out).sort()).toEqual([

@@ -97,6 +97,8 @@ test.concurrent('status 3 where an encounter reaches --alert-pc, 0 where none do
     /^Alert: 1 conjunction reaches the probability \S+ of --alert-pc,\nthe highest with \S+: 98018 QUILLMERE A 18 \/ 309007, TCA 2026-12-01T03:18:44Z\n\n/,
   );
 
+  expect(reached.stderr).toMatch(/INFO: finished: .*, which reaches --alert-pc; results in \S+tonight\n$/);
+
   const missed = await runCommand(screen(out, CATALOG, '--alert-pc', String(highest * 1.001)));
   expect(missed.status).toBe(0);
   expect(wholeRunIn(out).alert.reached).toBe(false);
@@ -210,6 +212,33 @@ describe('where nothing can be written', () => {
 });
 
 describe('what it prints', () => {
+  test.concurrent('a satellite of the fleet that is not screened, or not to the end, is told in the log', async () => {
+    const { out, path } = newPlace();
+    const own = setsInText(readFileSync(FLEET, 'utf8'));
+    const decaying = setsInText(readFileSync(CATALOG, 'utf8')).filter(({ number }) => number === '97061');
+    const damaged = own[4].text.replace(/.\n$/, 'X\n');
+    writeFileSync(
+      join(path, 'mixed.tle'),
+      [own[0].text, own[1].text, damaged, damaged, own[1].text.replace(/.\n$/, 'X\n'), decaying[0].text].join(
+        '',
+      ),
+    );
+    const { status, stdout, stderr } = await runCommand([
+      ...['screen', '--fleet', join(path, 'mixed.tle'), '--catalog', CATALOG, '--out', out],
+      ...['--start', '2026-12-02T12:00:00Z', '--days', '0.3', '--top', '0'],
+    ]);
+    expect(status, stderr).toBe(0);
+    // 98002 has another set, which is used.
+    expect(stderr).toMatch(
+      /WARN: \S+mixed\.tle:7: 98005 of the fleet is rejected and so not screened: line 2, column 69: checksum "X".*; and 1 more, see unused-elements\.csv\n/,
+    );
+    expect(stderr).toMatch(/WARN: fleet, 97061 DUNMARROW 6 R\/B: SGP4 gives no state after 2026-12-02T15:1/);
+    expect(stdout).toMatch(
+      /^(No conjunctions in the window\.|\d+ conjunctions?, none of them shown here\.)\n\n/,
+    );
+    expect(stdout).toContain('1 of the used sets fails before the end of the window');
+  });
+
   test.concurrent('a reader of the table that closes the pipe early is no failure', async () => {
     const { out } = newPlace();
     const script = `"$0" "$@" 2>/dev/null | head -n 1; echo "status \${PIPESTATUS[0]}"`;
