@@ -1,5 +1,5 @@
 import { availableParallelism } from 'node:os';
-import { resolve } from 'node:path';
+import { resolve, sep } from 'node:path';
 import { InputError } from '../input-error.js';
 import { screen } from '../jobs/screen.js';
 import { type JobPorts, LONGEST_WINDOW_DAYS, type ScreenOptions } from '../jobs/screen-options.js';
@@ -155,6 +155,11 @@ export function screenOptions(
   }
   if (values.history !== undefined && resolve(values.history) === resolve(values.out)) {
     throw new InputError(`--out and --history are both ${values.out}: name two folders`);
+  }
+  if (values.history !== undefined && resolve(values.history).startsWith(`${resolve(values.out)}${sep}`)) {
+    throw new InputError(
+      `--history is ${values.history}, inside --out ${values.out}, which is replaced as a whole: name a folder beside it`,
+    );
   }
   return {
     fleetPaths: values.fleet,
