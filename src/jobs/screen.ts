@@ -88,6 +88,11 @@ async function screenInto(
   const missKm = enclosingRadiusKm(options.volume);
   const objects = [...primaries, ...withinReach(others, primaries, missKm, options.startMs, endMs)];
   const withinPrimaries = options.allOnAll || options.withinFleet;
+  if (!withinPrimaries && others.length === 0) {
+    ports.log.warn(
+      'every object of the catalog is one of the fleet, so there is nothing to screen it against: give another --catalog, or --within-fleet for the fleet against itself',
+    );
+  }
   const searched = searchObjectsOf(
     objects.map(({ set }) => set),
     primaries.length,
