@@ -77,6 +77,11 @@ const MISTAKES: readonly Mistake[] = [
     [...withCatalog(FLEET), '--miss-km', '3', '--volume-rtn-km', '1,2,3'],
     '--miss-km and --volume-rtn-km exclude each other: give one of them',
   ],
+  [
+    'a history in the output folder',
+    [...withCatalog(FLEET), '--history', 'new/a history in the output folder/runs'],
+    /^--history is new\/\S.*runs, inside --out new\/\S.*, which is replaced as a whole: name a folder beside it$/,
+  ],
   ['no fleet', ['--catalog', FLEET, ...NIGHT], /^no fleet: give --fleet FILE, or --all-on-all/],
 ];
 

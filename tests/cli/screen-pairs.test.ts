@@ -147,6 +147,16 @@ describe.concurrent('against brute force', () => {
     expectSame(both, [...within, ...between(fleet, catalog)]);
   });
 
+  test('a catalog of the fleet alone is no all-clear', async () => {
+    const { status, stdout, stderr } = await runCommand([
+      ...['screen', '--fleet', at('fleet.tle'), '--catalog', at('fleet.tle'), '--out', at('itself')],
+      ...['--start', '2026-12-01T00:00:00Z', '--days', '0.01'],
+    ]);
+    expect(status, stderr).toBe(0);
+    expect(stdout).toMatch(/^No conjunctions in the window\.\n/);
+    expect(stderr).toContain('WARN: every object of the catalog is one of the fleet, so there is nothing to');
+  });
+
   test('all on all: every pair once', async () => {
     const result = await screened('all', '--all-on-all', '--catalog', at('fleet.tle'), at('catalog.tle'));
     const twins = ['310003 311000', '310005 311001', '310007 310100', '311002 311003'];
