@@ -79,7 +79,7 @@ export async function searchInWorkers(
     forget();
     stop();
   }
-  return joined(answers as SlabAnswer[], plan.hardBodyRadiusM.length);
+  return joined(answers as SlabAnswer[], plan.hardBodyRadiusM.length, plan.startMs);
 }
 
 function ask(worker: Worker, slab: number): Promise<SlabAnswer> {
@@ -108,7 +108,7 @@ function ask(worker: Worker, slab: number): Promise<SlabAnswer> {
   });
 }
 
-function joined(answers: readonly SlabAnswer[], objectCount: number): SearchOutcome {
+function joined(answers: readonly SlabAnswer[], objectCount: number, startMs: number): SearchOutcome {
   const lastMsOf = new Map<number, number>();
   for (const { failures } of answers) {
     for (const { object, lastMs } of failures) {
@@ -119,7 +119,9 @@ function joined(answers: readonly SlabAnswer[], objectCount: number): SearchOutc
     answers.reduce((sum, each) => sum + each.records.length / FIELDS, 1),
   );
   const edge = new Map<number, number>();
-  for (const { records: data } of answers) {
+  for (const { records: data, slab } of answers) {
+    // Only what lies at the very end of a slab can be found by the next one too.
+    const edgeMs = startMs + (slab + 1) * SLAB_S * 1000 - 2 * SAME_MS;
     const latest = new Map<number, number>();
     for (let from = 0; from < data.length; from += FIELDS) {
       const first = data[from + FIELD.first];
@@ -129,8 +131,8 @@ function joined(answers: readonly SlabAnswer[], objectCount: number): SearchOutc
       if (tcaMs > (lastMsOf.get(first) ?? Number.POSITIVE_INFINITY)) continue;
       if (tcaMs > (lastMsOf.get(second) ?? Number.POSITIVE_INFINITY)) continue;
       const key = first * objectCount + second;
+      if (tcaMs >= edgeMs) latest.set(key, tcaMs);
       const before = edge.get(key);
-      latest.set(key, tcaMs);
       if (before !== undefined && tcaMs - before <= SAME_MS) continue;
       const at = extendRecords(records, 1);
       records.data.set(data.subarray(from, from + FIELDS), at);

@@ -17,8 +17,8 @@ export type LiftoffSearch = {
   readonly plan: SearchPlan;
 };
 
-/** More copies of the batch in one search would cost memory in every worker. */
-export const MOST_COPIES = 6000;
+/** More copies of the batch in one search would cost memory: for their records, and for all that they meet. */
+export const MOST_COPIES = 3100;
 
 /**
  * Puts all slipped copies of the batch as primaries into one search, each with a time of its own in which it
