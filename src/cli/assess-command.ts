@@ -1,7 +1,7 @@
 import { InputError } from '../input-error.js';
 import { assessMessage } from '../jobs/assess-message.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
-import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
+import { CAUTION_IN_HELP, EXIT_STATUS } from './exit-status.js';
 import { type Options, optionsHelp } from './options.js';
 
 export const ASSESS_OPTIONS = {
@@ -43,7 +43,8 @@ ${optionsHelp({ ...ASSESS_OPTIONS, ...COMMON_OPTIONS })}
 An example
   wideberth assess message.kvn --hard-body-radius 10 --monte-carlo 1000000
 
-${EXIT_STATUS_HELP}
+Exit status
+  0 done   1 unexpected error   2 a mistake in the options or in the message
 
 ${CAUTION_IN_HELP}`;
 

@@ -23,7 +23,7 @@ export type MeanElements = Pick<
 >;
 
 /**
- * Initialises SGP4 (WGS-72, improved mode) for one element set.
+ * Initializes SGP4 (WGS-72, improved mode) for one element set.
  *
  * satellite.js takes an epoch only to the millisecond. Near-earth orbits do not care, but the lunar-solar
  * and resonance constants of deep-space orbits hang on it: up to 35 mm over the published verification
@@ -51,7 +51,7 @@ export function sgp4RecordOf(set: MeanElements): SatRec {
 }
 
 /**
- * Initialises SGP4 as `sgp4RecordOf` does, but with the epoch of deep-space constants rounded to a
+ * Initializes SGP4 as `sgp4RecordOf` does, but with the epoch of deep-space constants rounded to a
  * millisecond: in half the time, for a check of the elements.
  */
 export function roundedSgp4RecordOf(set: MeanElements): SatRec {

@@ -4,10 +4,12 @@ import type { SearchObjects, SearchRules } from './search-problem.js';
 
 /** Companions never part by more than this, km, or by twice the miss distance where that is more. */
 export const COMPANION_LIMIT_KM = 10;
-/** Companions are never faster than this relative to each other. */
+/** Companions are slower than this relative to each other, at every sample. */
 export const COMPANION_SPEED_KM_PER_S = 0.01;
 
 const SAMPLE_MS = 300_000;
+/** Two satellites that drift past each other in a short window part within days: they are an encounter. */
+const LEAST_FOLLOWED_MS = 3 * 86_400_000;
 const CLOSEST_GRID_MS = 20_000;
 
 /** Two objects that fly together for the whole window. */
@@ -23,10 +25,11 @@ export type Companions = {
 };
 
 /**
- * Pairs that fly together for the whole window: docked complexes, one object under two numbers, trailing
- * neighbors. They are within the limit of each other at every sample, five minutes apart, and slower than
- * 10 m/s at all of them, so that between samples they part by 1.5 km more at the most. Their closest
- * approach within the miss distance is told once; the search leaves them out.
+ * Pairs that fly together for the whole window, and for three days where it is shorter: docked complexes, one
+ * object under two numbers, trailing neighbors. At samples five minutes apart they are within the limit of each
+ * other and slower than 10 m/s; gravity changes the speed of two objects 10 km apart by less than 0.03 m/s a
+ * second, so that between samples they part by 2 km more at the most. Their closest approach within the miss
+ * distance is told once; the search leaves them out.
  *
  * Pairs that never come within the miss distance are no companions: they are not encounters either.
  */
@@ -97,13 +100,15 @@ function followPair(
   let farthestKm = 0;
   let slowest = Number.POSITIVE_INFINITY;
   let fastest = 0;
-  const samples = Math.max(1, Math.ceil((endMs - startMs) / SAMPLE_MS));
+  const followedMs = Math.max(endMs - startMs, LEAST_FOLLOWED_MS);
+  const samples = Math.ceil(followedMs / SAMPLE_MS);
   for (let k = 0; k <= samples; k++) {
-    const timeMs = startMs + ((endMs - startMs) * k) / samples;
+    const timeMs = startMs + (followedMs * k) / samples;
     const distance = distanceAt(timeMs);
     if (!(distance <= limitKm)) return undefined;
     const speed = Math.hypot(relative[3], relative[4], relative[5]);
     if (!(speed <= COMPANION_SPEED_KM_PER_S)) return undefined;
+    if (timeMs > endMs) continue;
     if (distance < closestKm) {
       closestKm = distance;
       closestMs = timeMs;

@@ -1,7 +1,7 @@
 import { dot, norm, type Vector3 } from '../vector.js';
 import type { OrbitState } from './state.js';
 
-/** Earth's gravitational parameter of WGS-84 and IERS 2010 (TT-compatible), km^3/s^2. */
+/** IERS Conventions 2010, TT-compatible, km^3/s^2: the states come from messages, not from SGP4 and its WGS-72. */
 const MU_KM3_PER_S2 = 398_600.4415;
 const MOST_ITERATIONS = 60;
 

@@ -7,7 +7,7 @@ import { terminalText } from '../tables/terminal-text.js';
 /** By this factor a probability must change to be called risen or fallen: less is the noise of new element sets. */
 export const CHANGE_FACTOR = 2;
 
-/** Below this a probability is as good as none, and a change of it is no news (common practice). */
+/** Below this a probability is as good as none, and a change of it is no news (own choice). */
 export const PROBABILITY_FLOOR = 1e-10;
 
 /** One encounter as a run keeps it for the runs after it. */

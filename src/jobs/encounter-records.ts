@@ -27,7 +27,7 @@ export const FIELD = {
   method: 24,
   entryMs: 25,
   exitMs: 26,
-  /** Sum over the pair's encounters in the window; filled in when all are known. */
+  /** At least one collision over the pair's encounters in the window; filled in when all are known. */
   pairProbability: 27,
 } as const;
 

@@ -1,8 +1,12 @@
 import { formatUtc } from '../elements/utc.js';
+import type { CompanionPair } from '../tables/companions-csv.js';
 import type { ConjunctionObject } from '../tables/conjunction.js';
 import { exponentText } from '../tables/csv-text.js';
 import type { RankedConjunctions } from '../tables/terminal-table.js';
 import { terminalText } from '../tables/terminal-text.js';
+import type { ScreenOptions } from './screen-options.js';
+
+const COMPANIONS_SHOWN = 3;
 
 /**
  * Why the command ends with status 3, for whoever is woken by that; nothing where no conjunction reaches
@@ -37,6 +41,43 @@ export function finishedText(
       ? ''
       : `, highest probability ${exponentText(highest, 1)}${alertReached ? ', which reaches --alert-pc' : ''}`;
   return `finished: ${count} conjunction${count === 1 ? '' : 's'}${probability}; results in ${outPath}`;
+}
+
+/** What was screened against what, when and how near: the first line, for whoever sees nothing else. */
+export function screenedLine(
+  options: Pick<ScreenOptions, 'allOnAll' | 'withinFleet' | 'startMs' | 'volume' | 'sigmaPath'>,
+  endMs: number,
+  primaryCount: number,
+  otherCount: number,
+): string {
+  const { volume } = options;
+  const objects = (count: number) => `${count} object${count === 1 ? '' : 's'}`;
+  const what = options.allOnAll
+    ? `${objects(primaryCount)} on each other`
+    : `${objects(primaryCount)} of the fleet on ${objects(otherCount)}${options.withinFleet ? ' and on each other' : ''}`;
+  const near =
+    volume.shape === 'SPHERE'
+      ? `within ${volume.missKm} km`
+      : `in a ${volume.shape} of ${volume.halfSizeRtnKm.join(', ')} km (half-sizes in RTN)`;
+  const minute = (ms: number) => formatUtc(ms).slice(0, 16).replace('T', ' ');
+  return `${what}, ${minute(options.startMs)} to ${minute(endMs)} UTC, ${near}, ${options.sigmaPath === undefined ? 'built-in sigmas' : `sigmas of ${options.sigmaPath}`}.`;
+}
+
+/** Pairs that fly together, the closest first, so that none is out of sight because it is no encounter. */
+export function companionLines(pairs: readonly CompanionPair[]): string[] {
+  if (pairs.length === 0) return [];
+  const side = ({ designator, name }: CompanionPair['object1']) =>
+    terminalText(`${designator} ${name}`.trimEnd());
+  const shown = pairs.toSorted((a, b) => a.closestDistanceM - b.closestDistanceM).slice(0, COMPANIONS_SHOWN);
+  const count = pairs.length === 1 ? '1 pair flies' : `${pairs.length} pairs fly`;
+  return [
+    `${count} together for the whole window, no encounters: see companions.csv. The closest:`,
+    ...shown.map(
+      (pair) =>
+        `  ${side(pair.object1)} / ${side(pair.object2)}: ${pair.closestDistanceM.toFixed(0)} m at ${formatUtc(pair.closestMs).slice(0, 19).replace('T', ' ')}`,
+    ),
+    '',
+  ];
 }
 
 /** Where the results are and what is there, the messages counted instead of named. */

@@ -9,8 +9,8 @@ import { cross, dot, type Matrix3, norm } from '../vector.js';
 import type { ProbabilityMethod } from './encounter-records.js';
 
 /**
- * Below this a probability is as good as none (common practice), and the path is not followed: the
- * two-dimensional figure stays, with its remark.
+ * Below this a probability is as good as none (own choice), and the path is not followed: the two-dimensional
+ * figure stays.
  */
 const NEGLIGIBLE_PROBABILITY = 1e-10;
 /** The two-dimensional figure at the nearest that a bent path may come, and room for all that is rough about it. */
@@ -25,7 +25,7 @@ const PASSAGE_SIGMAS = 3;
 export type PathProbability = {
   readonly probability: number | undefined;
   readonly method: ProbabilityMethod;
-  /** `undefined` where there is no encounter plane to ask it of. */
+  /** `undefined` where there is no encounter plane to ask it of, or the answer makes no difference. */
   readonly isStraight: boolean | undefined;
 };
 
@@ -77,7 +77,7 @@ export function pathProbability(
     const miss = plane.mahalanobisDistance;
     const nearest = Math.max(0, miss - deviationSigmas);
     const most = ROOM * collisionProbability * Math.exp((miss * miss - nearest * nearest) / 2);
-    if (most < NEGLIGIBLE_PROBABILITY) return { ...foster, isStraight };
+    if (most < NEGLIGIBLE_PROBABILITY) return { ...foster, isStraight: undefined };
     const quarterMs = 250 * Math.min(periodS(object1), periodS(object2));
     const reachMs = Math.min(quarterMs, Math.max(SHORTEST_MS, 1000 * PASSAGES * halfPassageS));
     const along = curvedPathProbability({

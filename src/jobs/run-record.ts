@@ -16,7 +16,8 @@ export type ElementAges = {
 
 /**
  * The contents of `run.json`: what was asked, of which input, with what outcome. The same input and options
- * give the same record, except for `environment`.
+ * give the same record, except for `environment` and the hashes of conjunction messages, which carry the time at
+ * which they were made.
  */
 export type RunRecord = {
   readonly command: string;
@@ -59,9 +60,14 @@ export type RunEnvironment = {
  * The text of `run.json`. The list of files at its end is what makes a folder a run of this program, and
  * lets a reader check that it is whole.
  */
-export function runRecordText(version: string, record: RunRecord, files: readonly RunFile[]): string {
+export function runRecordText(
+  version: string,
+  record: RunRecord,
+  files: readonly RunFile[],
+  caution = CAUTION,
+): string {
   const { environment, ...facts } = record;
-  return `${JSON.stringify({ program: 'wideberth', version, caution: CAUTION, ...facts, files, environment }, null, 2)}\n`;
+  return `${JSON.stringify({ program: 'wideberth', version, caution, ...facts, files, environment }, null, 2)}\n`;
 }
 
 /** Options for `run.json`, named as on the command line; the number of workers changes no result and stays out. */

@@ -3,9 +3,8 @@ import { formatUtc } from '../elements/utc.js';
 import { findCompanions } from '../encounters/companions.js';
 import { pairKey, searchObjectsOf } from '../encounters/search-problem.js';
 import { enclosingRadiusKm } from '../encounters/volume.js';
-import { SLAB_S } from '../ephemeris/node-spacing.js';
 import { writeChangesCsv } from '../tables/changes-csv.js';
-import { writeCompanionsCsv } from '../tables/companions-csv.js';
+import { type CompanionPair, writeCompanionsCsv } from '../tables/companions-csv.js';
 import {
   formatCaution,
   formatConjunctionTable,
@@ -21,7 +20,7 @@ import { type EncounterRecords, FIELD, FIELDS } from './encounter-records.js';
 import { failedLines, failedSets, warnOfFailures } from './failed-sets.js';
 import { keepInHistory, prepareHistory, readPastRuns } from './history.js';
 import { readElementInputs, readKnowledge } from './inputs.js';
-import { alertLines, finishedText, resultsLine } from './outcome-lines.js';
+import { alertLines, companionLines, finishedText, resultsLine, screenedLine } from './outcome-lines.js';
 import { type OutputFolder, openOutputFolder } from './output-folder.js';
 import { rankedRecords, writeRankedTables } from './ranked-records.js';
 import { warnOfRejected } from './rejected-sets.js';
@@ -29,6 +28,7 @@ import { RUN_RECORD } from './run-folder.js';
 import { environmentOf, recordedOptions, runRecordText } from './run-record.js';
 import type { JobPorts, ScreenOptions, ScreenOutcome } from './screen-options.js';
 import { type ScreenedObject, screenedObject } from './screened-object.js';
+import { searchFacts } from './search-facts.js';
 import { searchInWorkers } from './search-in-workers.js';
 import { searchPlanOf } from './search-plan.js';
 import { createTimings } from './timings.js';
@@ -131,10 +131,8 @@ async function screenInto(
   const unused = [...inputs.unused, ...failed];
   await writeRankedTables(folder, ranked);
   await writeUnusedElementsCsv(folder.stream('unused-elements.csv'), unused);
-  await writeCompanionsCsv(
-    folder.stream('companions.csv'),
-    companions.map((pair) => companionRow(pair, objects)),
-  );
+  const companionRows = companions.map((pair) => companionRow(pair, objects));
+  await writeCompanionsCsv(folder.stream('companions.csv'), companionRows);
   const messages = writeMessages(
     folder,
     ranked,
@@ -149,7 +147,7 @@ async function screenInto(
       : compareWithPast(seenEncounters(records, order, objects), past, {
           startMs: options.startMs,
           endMs,
-          isScreened: screenedTest(primaries, others, withinPrimaries),
+          isScreened: screenedTest(primaries, others, withinPrimaries, companionRows),
         });
   if (comparison !== undefined) await writeChangesCsv(folder.stream('changes.csv'), comparison.changes);
   timings.end('writing');
@@ -180,14 +178,7 @@ async function screenInto(
           fleet: options.allOnAll ? null : agesOf(inputs.fleet, options.startMs),
           catalog: agesOf(inputs.catalog, options.startMs),
         },
-        search: {
-          missKm,
-          slabS: SLAB_S,
-          slabs: outcome.slabs,
-          shortestStepS: outcome.shortestStepS,
-          longestStepS: outcome.longestStepS,
-          worstInterpolationKm: outcome.worstDefectKm,
-        },
+        search: searchFacts(outcome, options.volume),
         sigmaSource: options.sigmaPath ?? 'built-in table',
         counts,
         alert: { highestProbability: Number.isNaN(highest) ? null : highest, reached: alertReached },
@@ -210,11 +201,12 @@ async function screenInto(
   }
   ports.log.info(finishedText(options.outPath, ranked, alertReached));
   const lines = [
+    screenedLine(options, endMs, primaries.length, others.length),
     ...alertLines(ranked, options.alertPc),
     ...(comparison === undefined ? [] : [...changeLines(comparison.changes, RISEN_SHOWN, past[0]?.name), '']),
     formatConjunctionTable(ranked, options.top),
     '',
-    ...companionLines(companions.length),
+    ...companionLines(companionRows),
     formatFileCounts(inputs.files),
     ...failedLines(outcome.lastMsOf.size),
     ...(options.allOnAll
@@ -250,22 +242,24 @@ function seenEncounters(
   });
 }
 
-/** Whether two objects were screened against each other tonight. */
+/** Whether two objects were screened against each other tonight; companions were not. */
 function screenedTest(
   primaries: readonly ScreenedObject[],
   others: readonly ScreenedObject[],
   withinPrimaries: boolean,
+  companions: readonly CompanionPair[],
 ): (designatorA: string, designatorB: string) => boolean {
   const own = new Set(primaries.map(({ designator }) => designator));
   const rest = new Set(others.map(({ designator }) => designator));
+  const together = new Set(
+    companions.flatMap(({ object1: { designator: a }, object2: { designator: b } }) => [
+      `${a} ${b}`,
+      `${b} ${a}`,
+    ]),
+  );
   return (a, b) =>
-    (own.has(a) && rest.has(b)) ||
-    (own.has(b) && rest.has(a)) ||
-    (withinPrimaries && own.has(a) && own.has(b));
-}
-
-function companionLines(count: number): string[] {
-  if (count === 0) return [];
-  const pairs = count === 1 ? '1 pair flies' : `${count} pairs fly`;
-  return [`${pairs} together for the whole window: see companions.csv`, ''];
+    !together.has(`${a} ${b}`) &&
+    ((own.has(a) && rest.has(b)) ||
+      (own.has(b) && rest.has(a)) ||
+      (withinPrimaries && own.has(a) && own.has(b)));
 }

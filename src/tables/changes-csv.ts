@@ -49,7 +49,7 @@ export const CHANGES_COLUMNS: readonly CsvColumn<Change>[] = [
       'rose or fell: the collision probability by a factor of 2 or more (below 1E-10 every probability counts as 1E-10; ' +
       'without a probability on both sides, the miss distance halved or doubled); steady: less than that; ' +
       'new: in no run before; gone: no longer inside what this run lists, though both objects were screened at that time; ' +
-      'not-screened: one of the objects was not in this run; outside-window: later than the window of this run; ' +
+      'not-screened: one of the objects was not in this run, or the two now fly together (companions.csv); outside-window: later than the window of this run; ' +
       'past: over before the start of this run',
     cell: (row) => row.kind,
   },

@@ -186,7 +186,7 @@ export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
     name: 'pair_probability',
     unit: '0 to 1',
     meaning:
-      'Probability of collision over all encounters of this pair in the window, six significant digits',
+      'Probability of at least one collision over all encounters of this pair in the window, taken as independent, which errs on the high side; six significant digits',
     cell: (row) => exponentCell(row.pairProbability),
   },
   {

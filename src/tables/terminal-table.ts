@@ -20,6 +20,8 @@ const FIGURE_COLUMNS = [9, 9, 9, 11] as const;
 const FIGURE_HEADS = ['Miss m', 'Radial m', 'Speed m/s', 'Probability'];
 const DETAIL_COLUMNS = FIGURE_COLUMNS.reduce((sum, width) => sum + width + GAP.length, -GAP.length);
 const NEAREST_WITHOUT_PROBABILITY = 3;
+/** Down to here the method is checked; below, a figure would say more than anyone knows. */
+const LEAST_SHOWN = 1e-30;
 
 /** Age of one object's elements. */
 export type ElementAge = { readonly designator: string; readonly ageDays: number };
@@ -170,7 +172,8 @@ function object(side: ConjunctionObject, rankColumns: number): string {
 }
 
 function probability(value: number | undefined): string {
-  return value === undefined || Number.isNaN(value) ? 'none' : exponentText(value, 1);
+  if (value === undefined || Number.isNaN(value)) return 'none';
+  return value < LEAST_SHOWN ? `< ${exponentText(LEAST_SHOWN, 0)}` : exponentText(value, 1);
 }
 
 function days(value: number): string {

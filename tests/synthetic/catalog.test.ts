@@ -13,7 +13,7 @@ import {
 const START_MS = Date.UTC(2026, 11, 1);
 const SETS = syntheticCatalog({ seed: 11, count: 8000, epochMs: START_MS });
 
-test('every set initialises and propagates at its epoch', () => {
+test('every set initializes and propagates at its epoch', () => {
   for (const set of SETS) {
     const record = sgp4RecordOf(set);
     expect(record.error, set.designator).toBe(0);

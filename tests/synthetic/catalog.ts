@@ -63,7 +63,7 @@ type Elements = Omit<ElementSet, 'designator' | 'name' | 'internationalDesignato
 
 /**
  * A made-up catalog with the crowding of a real one, rounded to what two lines can hold. Numbers only: no
- * SGP4 runs here, but every set initialises and propagates at its epoch.
+ * SGP4 runs here, but every set initializes and propagates at its epoch.
  */
 export function syntheticCatalog(options: SyntheticCatalogOptions): ElementSet[] {
   const random = seededRandom(options.seed);

@@ -67,7 +67,7 @@ export function shortReport(summary: CalibrationSummary): string[] {
   return [
     setsLine(summary),
     `Objects: ${objectCount(summary)}, ${objects['own rows']} with rows of their own; classes with rows: ${classCount(summary)}.`,
-    `Maneuvers recognised: ${summary.maneuvers}, of ${summary.objectsWithManeuvers} objects; ${summary.pairs.acrossManeuver} pairs across them left out.`,
+    `Maneuvers recognized: ${summary.maneuvers}, of ${summary.objectsWithManeuvers} objects; ${summary.pairs.acrossManeuver} pairs across them left out.`,
     ...coverageTable('Held-back differences', [['within 1, 2, 3 sigma', coverage, undefined]]),
     `Common-error factor: ${summary.commonErrorFactor}. Differences cannot show errors that both sets share.`,
     `Table: ${paths.table}. Report: ${paths.report}.${tally.rejected > 0 ? ` Rejected sets: ${paths.unused}.` : ''}`,
@@ -143,11 +143,11 @@ function readPart(summary: CalibrationSummary): string[] {
 
 function maneuverPart({ maneuvers, objectsWithManeuvers, pairs, paths }: CalibrationSummary): string[] {
   return paragraph(
-    `${maneuvers} changes of orbit recognised, of ${objectsWithManeuvers} objects; ${pairs.acrossManeuver} ` +
+    `${maneuvers} changes of orbit recognized, of ${objectsWithManeuvers} objects; ${pairs.acrossManeuver} ` +
       `pairs across them left out. They are listed in ${paths.maneuvers}. A change counts when the mean ` +
       'semi-major axis or the plane jumps by more than 6 robust sigmas of the neighboring steps and the pairs ' +
       'that skip a set confirm it. A magnetic storm can look the same; burns below the scatter of the elements ' +
-      'and thrust that never pauses are not recognised.',
+      'and thrust that never pauses are not recognized.',
   );
 }
 

@@ -2,7 +2,6 @@ import { LAUNCH_CAUTION } from '../../caution.js';
 import { isBatchDesignator } from '../../elements/batch-designator.js';
 import { formatUtc } from '../../elements/utc.js';
 import { enclosingRadiusKm } from '../../encounters/volume.js';
-import { SLAB_S } from '../../ephemeris/node-spacing.js';
 import { InputError } from '../../input-error.js';
 import { type BatchObjectRow, writeBatchObjectsCsv } from '../../tables/batch-objects-csv.js';
 import { writeBatchPairsCsv } from '../../tables/batch-pairs-csv.js';
@@ -25,6 +24,7 @@ import { RUN_RECORD } from '../run-folder.js';
 import { environmentOf, runRecordText } from '../run-record.js';
 import type { JobPorts } from '../screen-options.js';
 import { type ObjectKnowledge, type ScreenedObject, screenedObject } from '../screened-object.js';
+import { searchFacts } from '../search-facts.js';
 import { type SearchOutcome, searchInWorkers } from '../search-in-workers.js';
 import { createTimings } from '../timings.js';
 import { warnOfUnlisted } from '../unlisted-objects.js';
@@ -177,15 +177,8 @@ async function launchInto(
         window: { startUtc: formatUtc(startMs), endUtc: formatUtc(endMs), days: options.days },
         inputs: { elements: [...batch.files, ...inputs.files], others: [...tables, ...otherFiles] },
         elementAges: { fleet: agesOf(inputs.fleet, startMs), catalog: agesOf(inputs.catalog, startMs) },
-        search: {
-          missKm,
-          slabS: SLAB_S,
-          slabs: outcome.slabs,
-          shortestStepS: outcome.shortestStepS,
-          longestStepS: outcome.longestStepS,
-          worstInterpolationKm: outcome.worstDefectKm,
-        },
-        sigmaSource: options.sigmaPath ?? 'built-in table',
+        search: searchFacts(outcome, options.volume),
+        sigmaSource: `${options.sigmaPath ?? 'built-in table'}; batch: injection sigmas and their growth, see batch-objects.csv`,
         counts: {
           batch: new Set(nominal.map(({ designator }) => designator)).size,
           batchSets: nominal.length,
@@ -207,6 +200,7 @@ async function launchInto(
         environment: environmentOf(startedMs, ports.nowMs(), timings.seconds, options.workers),
       },
       files,
+      LAUNCH_CAUTION,
     );
   });
   folder.publish();

@@ -213,7 +213,7 @@ describe('maneuvers', () => {
     const busy = Array.from({ length: 5 }, (_, i) => object(i, { days: 130, maneuvers }));
     const without = csvRecords((await runCalibration(filesOf(quiet))).results['.csv']);
     const { results, lines } = await runCalibration(filesOf(busy));
-    expect(lines.join('\n')).toContain('Maneuvers recognised: 25, of 5 objects');
+    expect(lines.join('\n')).toContain('Maneuvers recognized: 25, of 5 objects');
     const listed = csvRecords(results['.maneuvers.csv']);
     expect(listed).toHaveLength(25);
     listed.forEach((row, i) => {
