@@ -42,14 +42,16 @@ export function directionCells(angle: number): DirectionCells {
     south[row] = Math.min(south[row], Math.asin((2 * band) / BANDS - 1));
     north[row] = Math.max(north[row], Math.asin((2 * band + 2) / BANDS - 1));
   }
-  rowOfBand[BANDS] = rows - 1;
+  rowOfBand[BANDS] = rowOfBand[BANDS - 1];
   const firstCell = new Int32Array(rows);
   const lastCell = new Int32Array(rows);
   const cellsPerOctant = new Float64Array(rows);
   let count = 0;
   for (let row = 0; row < rows; row++) {
+    // Near the poles a row can be without bands: no direction falls into its one cell.
+    const isEmpty = south[row] > north[row];
     const width = (CELL_SLACK * longitudeReach(angle, Math.max(-south[row], north[row]))) / CELLS_PER_ANGLE;
-    const cells = Math.max(1, Math.floor((2 * Math.PI) / width));
+    const cells = isEmpty ? 1 : Math.max(1, Math.floor((2 * Math.PI) / width));
     firstCell[row] = count;
     cellsPerOctant[row] = cells / 8;
     count += cells;

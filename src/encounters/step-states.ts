@@ -16,8 +16,8 @@ export const FAST = 2;
 /** Is not there. */
 export const ABSENT = 3;
 
-/** Objects with a radius interval of more shells are steep. */
-const FLAT_SHELLS = 48;
+/** Objects whose radius can change by more in half a step are steep, km. */
+const FLAT_SWING_KM = 9;
 
 /** Where all objects are in the middle of a step, and what the search needs to know of each; by object. */
 export type StepStates = {
@@ -92,7 +92,7 @@ export function evaluateSteps(
   for (let k = 0; k < candidates.length; k++) {
     const object = candidates[k];
     const margin = marginKm[object];
-    const arc = curvature[object] * halfSquareS2 + margin;
+    const arc = curvature[object] * halfSquareS2;
     const perLength = 1 / segmentS[object];
     for (let b = 0; b < stepCount; b++) {
       const timeS = firstMiddleS + 2 * b * halfStepS;
@@ -135,8 +135,8 @@ export function evaluateSteps(
       const radius = Math.sqrt(radius2);
       const perRadius = 1 / radius;
       const swing = Math.abs(rDotV) * perRadius * halfStepS + arc;
-      const lowShell = shellOf(radius - swing);
-      const highShell = shellOf(radius + swing);
+      const lowShell = shellOf(radius - swing - margin);
+      const highShell = shellOf(radius + swing + margin);
       low[out] = lowShell;
       high[out] = highShell;
       cell[out] = cellOf(cells, records[to], records[to + 1], records[to + 2] * perRadius);
@@ -145,7 +145,7 @@ export function evaluateSteps(
       kind[out] =
         1.004 * (radius2 * speed2 - rDotV * rDotV) > rate * rate
           ? FAST
-          : highShell - lowShell > FLAT_SHELLS
+          : swing > FLAT_SWING_KM
             ? STEEP
             : FLAT;
     }

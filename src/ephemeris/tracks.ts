@@ -14,8 +14,10 @@ import { sgp4StateAt } from './sgp4-state.js';
  * @param eccentricity mean eccentricity
  */
 function trackToleranceKm(eccentricity: number): number {
-  return eccentricity < 0.01 ? 0.5 : 1.6;
+  return eccentricity < 0.01 ? 0.5 : WIDEST_TOLERANCE_KM;
 }
+
+export const WIDEST_TOLERANCE_KM = 1.6;
 
 /** Segments of an object that breaks its tolerance are cut into so many. */
 const FINER = 4;
@@ -31,6 +33,11 @@ const WATCHED_PERIGEE_KM = EARTH_RADIUS_KM + 90;
  * is measured, in the next slab the others.
  */
 const MOST_SEGMENTS_SAMPLED = 12;
+/**
+ * Where in a segment it is measured. Errors of interpolation are largest half-way, but velocities that are off
+ * alike at both ends leave no trace there.
+ */
+const MEASURED_PART = 3 / 8;
 /** Steps that a track goes on past the time at which SGP4 fails, for steps that it fails in. */
 const COASTING_STEPS = 3;
 const NODES_PER_WATCHED = WATCHED_STEPS + 1 + COASTING_STEPS;
@@ -166,7 +173,7 @@ type Laid = {
   readonly wide: number[];
 };
 
-/** Lays the tracks of one group from the bulk propagator's states and measures them half-way between nodes. */
+/** Lays the tracks of one group from the bulk propagator's states and measures them between nodes. */
 function layTracks(
   tracks: MutableTracks,
   { members, segments, bulk }: Group,
@@ -182,7 +189,7 @@ function layTracks(
   const timesMs: number[] = [];
   for (let k = 0; k <= segments; k++) timesMs.push(slabStartMs + k * lengthS * 1000);
   for (let k = firstMeasured; k < segments; k += stride) {
-    timesMs.push(slabStartMs + (k + 0.5) * lengthS * 1000);
+    timesMs.push(Math.round(slabStartMs + (k + MEASURED_PART) * lengthS * 1000));
   }
   const states = bulk.statesAt(timesMs);
   const { position, error } = states;
@@ -213,7 +220,7 @@ function layTracks(
     }
     let defectKm = 0;
     for (let k = firstMeasured, at = base + segments + 1; k < segments; k += stride, at++) {
-      defectKm = Math.max(defectKm, midpointDefectKm(nodes, firstNode + k, lengthS, position, at));
+      defectKm = Math.max(defectKm, defectAtKm(nodes, firstNode + k, lengthS, position, at));
     }
     if (defectKm > tracks.toleranceKm[object] / 2) wide.push(object);
     else if (defectKm > tracks.worstDefectKm) tracks.worstDefectKm = defectKm;
@@ -341,8 +348,8 @@ function copyState(
 const segment = new Float64Array(SEGMENT_SIZE);
 const sample = new Float64Array(6);
 
-/** Distance between the middle of the segment after a node and SGP4's position there. */
-function midpointDefectKm(
+/** Distance between the segment after a node, in its measured place, and SGP4's position there. */
+function defectAtKm(
   nodes: Float64Array,
   node: number,
   lengthS: number,
@@ -350,7 +357,7 @@ function midpointDefectKm(
   index: number,
 ): number {
   fitSegment(nodes, 6 * node, 6 * (node + 1), lengthS, segment, 0);
-  evaluateSegment(segment, 0, 0.5, 1 / lengthS, sample, 0);
+  evaluateSegment(segment, 0, MEASURED_PART, 1 / lengthS, sample, 0);
   const dx = sample[0] - positions[3 * index];
   const dy = sample[1] - positions[3 * index + 1];
   const dz = sample[2] - positions[3 * index + 2];
