@@ -1,5 +1,4 @@
 import { InputError } from '../input-error.js';
-import { assessMessage } from '../jobs/assess-message.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS } from './exit-status.js';
 import { type Options, optionsHelp } from './options.js';
@@ -61,6 +60,8 @@ export const assessCommand = defineCommand({
         'no size of the objects: give --hard-body-radius M, the sum of both radii in meters',
       );
     }
+    // Loaded when it is needed: help, and mistakes in the options, are there at once.
+    const { assessMessage } = await import('../jobs/assess-message.js');
     const lines = await assessMessage(file, hardBodyRadiusM, values['monte-carlo'], values.seed);
     return { lines, status: EXIT_STATUS.done };
   },

@@ -1,6 +1,4 @@
-import { streamElementSets } from '../elements/read.js';
 import { InputError } from '../input-error.js';
-import { calibrate } from '../jobs/calibrate/calibrate.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS } from './exit-status.js';
 import { type Options, optionsHelp } from './options.js';
@@ -68,6 +66,9 @@ export const calibrateCommand = defineCommand({
       throw new InputError("no history: give --history FILE, or a pattern such as 'archive/*.tle'");
     }
     if (values.out === undefined) throw new InputError('no place for the table: give --out CSV');
+    // Loaded when it is needed: help, and mistakes in the options, are there at once.
+    const { streamElementSets } = await import('../elements/read.js');
+    const { calibrate } = await import('../jobs/calibrate/calibrate.js');
     const lines = await calibrate(
       {
         historyPaths: values.history,

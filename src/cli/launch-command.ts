@@ -6,7 +6,6 @@ import {
   DEFAULT_INJECTION_GROWTH_M_PER_DAY,
   DEFAULT_INJECTION_SIGMA_RTN_M,
 } from '../jobs/launch/injection-sigma.js';
-import { launch } from '../jobs/launch/launch.js';
 import type { LaunchOptions, SlipRange } from '../jobs/launch/launch-options.js';
 import { LONGEST_WINDOW_DAYS } from '../jobs/screen-options.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
@@ -180,6 +179,8 @@ export const launchCommand = defineCommand({
     [['release'], ['release-times']],
   ],
   run: async (values, ports): Promise<CommandResult> => {
+    // Loaded when it is needed: help, and mistakes in the options, are there at once.
+    const { launch } = await import('../jobs/launch/launch.js');
     const outcome = await launch(launchOptions(values), ports);
     return { lines: outcome.lines, status: outcome.alertReached ? EXIT_STATUS.alert : EXIT_STATUS.done };
   },

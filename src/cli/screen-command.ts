@@ -1,7 +1,6 @@
 import { availableParallelism } from 'node:os';
 import { resolve, sep } from 'node:path';
 import { InputError } from '../input-error.js';
-import { screen } from '../jobs/screen.js';
 import { type JobPorts, LONGEST_WINDOW_DAYS, type ScreenOptions } from '../jobs/screen-options.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
 import { CAUTION_IN_HELP, EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
@@ -116,6 +115,8 @@ export const screenCommand = defineCommand({
     [['all-on-all'], ['fleet', 'within-fleet']],
   ],
   run: async (values, ports): Promise<CommandResult> => {
+    // Loaded when it is needed: help, and mistakes in the options, are there at once.
+    const { screen } = await import('../jobs/screen.js');
     const outcome = await screen(screenOptions(values, ports), ports);
     return { lines: outcome.lines, status: outcome.alertReached ? EXIT_STATUS.alert : EXIT_STATUS.done };
   },
