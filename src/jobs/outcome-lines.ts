@@ -43,7 +43,7 @@ export function finishedText(
   return `finished: ${count} conjunction${count === 1 ? '' : 's'}${probability}; results in ${outPath}`;
 }
 
-/** What was screened against what, when and how near: the first line, for whoever sees nothing else. */
+/** What was screened against what, when and how near, for whoever sees nothing else of the run. */
 export function screenedLine(
   options: Pick<ScreenOptions, 'allOnAll' | 'withinFleet' | 'startMs' | 'volume' | 'sigmaPath'>,
   endMs: number,
@@ -60,7 +60,7 @@ export function screenedLine(
       ? `within ${volume.missKm} km`
       : `in a ${volume.shape} of ${volume.halfSizeRtnKm.join(', ')} km (half-sizes in RTN)`;
   const minute = (ms: number) => formatUtc(ms).slice(0, 16).replace('T', ' ');
-  return `${what}, ${minute(options.startMs)} to ${minute(endMs)} UTC, ${near}, ${options.sigmaPath === undefined ? 'built-in sigmas' : `sigmas of ${options.sigmaPath}`}.`;
+  return `Screened: ${what}, ${minute(options.startMs)} to ${minute(endMs)} UTC, ${near}, ${options.sigmaPath === undefined ? 'built-in sigmas' : `sigmas of ${options.sigmaPath}`}.`;
 }
 
 /** Pairs that fly together, the closest first, so that none is out of sight because it is no encounter. */
@@ -71,7 +71,7 @@ export function companionLines(pairs: readonly CompanionPair[]): string[] {
   const shown = pairs.toSorted((a, b) => a.closestDistanceM - b.closestDistanceM).slice(0, COMPANIONS_SHOWN);
   const count = pairs.length === 1 ? '1 pair flies' : `${pairs.length} pairs fly`;
   return [
-    `${count} together for the whole window, no encounters: see companions.csv. The closest:`,
+    `${count} together for the whole window: see companions.csv. The closest:`,
     ...shown.map(
       (pair) =>
         `  ${side(pair.object1)} / ${side(pair.object2)}: ${pair.closestDistanceM.toFixed(0)} m at ${formatUtc(pair.closestMs).slice(0, 19).replace('T', ' ')}`,

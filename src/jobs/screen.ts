@@ -201,12 +201,13 @@ async function screenInto(
   }
   ports.log.info(finishedText(options.outPath, ranked, alertReached));
   const lines = [
-    screenedLine(options, endMs, primaries.length, others.length),
     ...alertLines(ranked, options.alertPc),
     ...(comparison === undefined ? [] : [...changeLines(comparison.changes, RISEN_SHOWN, past[0]?.name), '']),
     formatConjunctionTable(ranked, options.top),
     '',
     ...companionLines(companionRows),
+    screenedLine(options, endMs, primaries.length, others.length),
+    '',
     formatFileCounts(inputs.files),
     ...failedLines(outcome.lastMsOf.size),
     ...(options.allOnAll
