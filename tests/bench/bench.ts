@@ -65,7 +65,8 @@ const threads = options.workers === undefined ? availableParallelism() : Number(
 const workloads = [...(await publicWorkloads()), ...syntheticWorkloads()].filter(
   ({ name }) => options.only === undefined || options.only.split(',').some((part) => name.startsWith(part)),
 );
-if (workloads.length === 0) throw new Error(`--only is ${options.only}: no workload starts like that`);
+if (workloads.length === 0 && !options.only?.includes('launch'))
+  throw new Error(`--only is ${options.only}: no workload starts like that`);
 
 const results: Result[] = [];
 console.log(
@@ -90,6 +91,13 @@ for (const workload of workloads) {
   results.push(result);
   console.log(resultText(result));
 }
+const slips =
+  options.only === undefined || options.only.includes('launch') ? await measuredSlips() : undefined;
+if (slips !== undefined) {
+  console.log(
+    `launch-61-slips: one liftoff ${slips.oneS.toFixed(1)} s, 61 liftoffs ${slips.allS.toFixed(1)} s, ratio ${slips.ratio.toFixed(2)} (target 10)`,
+  );
+}
 mkdirSync(OUTPUT, { recursive: true });
 const machine = {
   cpu: cpus()[0].model,
@@ -99,7 +107,7 @@ const machine = {
 };
 writeFileSync(
   join(OUTPUT, 'bench.json'),
-  `${JSON.stringify({ machine, quick: options.quick, results }, null, 2)}\n`,
+  `${JSON.stringify({ machine, quick: options.quick, results, slips: slips ?? null }, null, 2)}\n`,
 );
 writeFileSync(join(OUTPUT, 'bench.txt'), `${results.map(resultText).join('\n')}\n`);
 
@@ -209,6 +217,55 @@ async function measured({ name, fleet, catalog, startMs, days, target }: Workloa
       encounters: record.counts.encounters,
       stagesS: record.environment.timingsS,
     };
+  } finally {
+    rmSync(folder, { recursive: true });
+  }
+}
+
+/** A batch of fifty near the crowd, one liftoff against sixty-one of them. */
+async function measuredSlips(): Promise<{ oneS: number; allS: number; ratio: number }> {
+  const startMs = SYNTHETIC_START_MS;
+  const folder = mkdtempSync(join(tmpdir(), 'wideberth-bench-'));
+  try {
+    const catalog = syntheticCatalog({
+      seed: 1,
+      count: options.quick ? 2500 : 25_000,
+      epochMs: startMs,
+      firstDesignator: FIRST_NINE_DIGIT_DESIGNATOR,
+    });
+    const batch = walkerShell({
+      count: 50,
+      planes: 1,
+      altitudeKm: 330,
+      inclinationDeg: 53,
+      epochMs: startMs,
+    });
+    writeFileSync(join(folder, 'catalog.csv'), toOmmCsv(catalog));
+    writeFileSync(join(folder, 'batch.csv'), toOmmCsv(batch));
+    const launch = (...slips: string[]) =>
+      run([
+        'launch',
+        '--batch',
+        join(folder, 'batch.csv'),
+        '--catalog',
+        join(folder, 'catalog.csv'),
+        '--liftoff',
+        new Date(startMs - 3_600_000).toISOString(),
+        '--release',
+        new Date(startMs).toISOString(),
+        '--days',
+        '1',
+        '--miss-km',
+        '25',
+        '--workers',
+        String(threads),
+        '--out',
+        join(folder, 'out'),
+        ...slips,
+      ]);
+    const oneS = await launch();
+    const allS = await launch('--slip-from', '-30', '--slip-to', '30', '--slip-every', '1');
+    return { oneS, allS, ratio: allS / oneS };
   } finally {
     rmSync(folder, { recursive: true });
   }
