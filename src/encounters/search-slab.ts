@@ -66,7 +66,7 @@ const STEPS_S = [20, 24, 30, 36, 40, 48, 60, 72, 80, 90, 96, 120, 150, 160, 180,
 const OBJECT_COST = 16;
 const TRIAL_STEP_S = 120;
 /** Grid of the sign changes of a slow pair. */
-const SLOW_GRID_MS = 80_000;
+const SLOW_GRID_MS = 40_000;
 /** A refined TCA is taken by the step that holds it; this much over its edges covers rounding. */
 const EDGE_MS = 0.01;
 /** Steps that are evaluated together. */
