@@ -197,7 +197,7 @@ test.concurrent('damaged files end with 0 or 2, and no record of them is lost', 
     'damaged.kvn': kvnFile(catalog.slice(110)),
   };
   let ended = 0;
-  for (let round = 0; round < 4; round += 1) {
+  for (let round = 0; round < 3; round += 1) {
     const paths = Object.entries(forms).map(([name, text]) => {
       const bytes = Buffer.from(text);
       for (let k = 0; k < 6; k += 1) bytes[random(bytes.length)] = 32 + random(95);
