@@ -111,8 +111,10 @@ export function farthestInStepKm(
 
 /**
  * Whether the distance of a pair has but one minimum in the step: (d^2)'' = 2 (v^2 + d . d'') is positive
- * where v > sqrt(g) d, and over the step v stays above V - g D T. Five percent are added for the tracks' errors.
+ * where v > sqrt(g) d, and over the step v stays above V - g D T.
+ *
+ * @param speedKmPerS V, less what the velocities of the two tracks may be off
  */
 export function isConvex(halfStepS: number, farthestKm: number, tide: number, speedKmPerS: number): boolean {
-  return speedKmPerS > 1.05 * farthestKm * (tide * halfStepS + Math.sqrt(tide));
+  return speedKmPerS > farthestKm * (tide * halfStepS + Math.sqrt(tide));
 }

@@ -30,6 +30,8 @@ export type SearchRules = {
   readonly withinPrimaries: boolean;
   /** Pairs that are not searched, as `pairKey`. */
   readonly skippedPairs: ReadonlySet<number>;
+  /** In place of the step that costs least: the result is the same for any, which tests hold it to. */
+  readonly stepS?: number;
 };
 
 /** One number for an unordered pair of object indices. */

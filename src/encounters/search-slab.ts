@@ -339,6 +339,8 @@ function planStep({ searcher, tracks, fromS, toS, primaries, others }: Workspace
  * on every machine.
  */
 function chooseStep(work: Workspace, lengthS: number): number {
+  const { stepS } = work.searcher.rules;
+  if (stepS !== undefined) return stepS;
   const plan = planStep(work, TRIAL_STEP_S);
   evaluateBatch(work, plan, lengthS / 2, 1);
   findNearPairs(work, plan, work.searcher.batch.steps[0]);
@@ -460,7 +462,9 @@ function refinePairs(
     const toleranceKm = tracks.toleranceKm[a] + tracks.toleranceKm[b];
     const tide = tidePerS2(shellFloorKm(Math.min(low[a], low[b])));
     const farthestKm = farthestInStepKm(halfStepS, reachKm, tide, speed);
-    const isFast = isConvex(halfStepS, farthestKm, tide, speed);
+    // What eps holds beyond the positions is the error of the tracks' velocities over half a step.
+    const speedErrorKmPerS = (plan.toleranceKm[a] + plan.toleranceKm[b] - toleranceKm) / halfStepS;
+    const isFast = isConvex(halfStepS, farthestKm, tide, speed - speedErrorKmPerS);
     const guessS = isFast
       ? nearestOnTracks(work, a, b, middleS, halfStepS, toleranceKm)
       : slowestOnTracks(work, a, b, middleS, halfStepS, toleranceKm, speed + tide * farthestKm * halfStepS);

@@ -10,6 +10,8 @@ import {
 } from '../../src/encounters/search-slab.js';
 import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
+import { setPassing } from '../synthetic/passing-orbit.js';
+import { seededRandom } from '../synthetic/random.js';
 import { type BruteForceEncounter, bruteForceEncounters } from './brute-force.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
@@ -21,9 +23,10 @@ type Screening = {
   readonly within: boolean;
   readonly hours: number;
   readonly missKm: number;
+  readonly stepS?: number;
 };
 
-function search({ fleet, catalog, within, hours, missKm }: Screening): ClosestApproach[] {
+function search({ fleet, catalog, within, hours, missKm, stepS }: Screening): ClosestApproach[] {
   const objects = searchObjectsOf([...fleet, ...catalog], fleet.length);
   const rules = {
     startMs: START_MS,
@@ -31,6 +34,7 @@ function search({ fleet, catalog, within, hours, missKm }: Screening): ClosestAp
     missKm,
     withinPrimaries: within,
     skippedPairs: new Set<number>(),
+    ...(stepS === undefined ? {} : { stepS }),
   };
   const searcher = createSlabSearcher(objects, rules);
   const found: ClosestApproach[] = [];
@@ -127,5 +131,46 @@ describe('the search finds what brute force finds, and nothing else', () => {
     });
     expect(expected.length).toBeGreaterThan(20);
     expectSameEncounters(found, expected, fleet.length);
+  });
+
+  describe('at any step, within a few kilometers', () => {
+    // Pairs that pass close on purpose: each leader, and one that comes by at a time and a distance of its own.
+    const random = seededRandom(17);
+    const leaders = syntheticCatalog({ seed: 17, count: 60, epochMs: START_MS });
+    const passing = leaders.flatMap((leader) => {
+      try {
+        return [
+          setPassing(
+            leader,
+            {
+              tcaMs: START_MS + random.between(0.3, 3.7) * HOUR_MS,
+              missM: random.between(0, 4900),
+              missAngleDeg: random.between(0, 360),
+              crossingDeg: random.between(2, 178),
+            },
+            leader,
+          ),
+        ];
+      } catch {
+        // No orbit of SGP4 could be fitted, a decaying leader for instance.
+        return [];
+      }
+    });
+    const sets = [...leaders, ...passing];
+    const expected = bruteForceEncounters({
+      first: sets,
+      startMs: START_MS,
+      endMs: START_MS + 4 * HOUR_MS,
+      missKm: 5,
+    });
+
+    it.each([20, 36, 60, 120, 300])('%i s', (stepS) => {
+      expect(expected.length).toBeGreaterThan(30);
+      expectSameEncounters(
+        search({ fleet: sets, catalog: [], within: true, hours: 4, missKm: 5, stepS }),
+        expected,
+        0,
+      );
+    });
   });
 });
