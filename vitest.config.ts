@@ -6,5 +6,7 @@ export default defineConfig({
     include: ['tests/**/*.test.ts'],
     testTimeout: 60_000,
     hookTimeout: 60_000,
+    // All cores: half of the tests wait for commands that they started.
+    maxWorkers: '100%',
   },
 });

@@ -58,8 +58,12 @@ export function passageThrough(
   const centerMs = leastBetween(depthAt, low, high);
   if (!(depthAt(centerMs) <= 1)) return undefined;
   return {
-    entryMs: edge(depthAt, samples.slice(0, innermost + 1).reverse(), centerMs),
-    exitMs: edge(depthAt, samples.slice(innermost), centerMs),
+    entryMs: edge(depthAt, samples.filter(({ timeMs }) => timeMs < centerMs).reverse(), centerMs),
+    exitMs: edge(
+      depthAt,
+      samples.filter(({ timeMs }) => timeMs > centerMs),
+      centerMs,
+    ),
   };
 }
 
@@ -128,10 +132,10 @@ function walk(
   }
 }
 
-/** Where the depth crosses 1, walking outward through samples that start inside; the last one if it never does. */
+/** Where the depth crosses 1, walking outward from the center through the samples on one side; the last one if it never does. */
 function edge(depthAt: (timeMs: number) => number, outward: readonly Sample[], centerMs: number): number {
   let insideMs = centerMs;
-  for (const { timeMs, depth: sampled } of outward.slice(1)) {
+  for (const { timeMs, depth: sampled } of outward) {
     if (sampled <= 1) {
       insideMs = timeMs;
       continue;
