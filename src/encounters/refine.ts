@@ -2,7 +2,36 @@ import type { SatRec } from 'satellite.js';
 import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 
 /** One side of a pair for work on true SGP4 states. */
-export type RefinedObject = { readonly record: SatRec; readonly epochMs: number };
+export type RefinedObject = {
+  readonly record: SatRec;
+  readonly epochMs: number;
+  /** Its latest states, where many pairs ask for it at the same times. */
+  readonly recent?: RecentStates;
+};
+
+/** A ring of times with their states; `NaN` positions where SGP4 gives none. */
+export type RecentStates = { readonly times: Float64Array; readonly states: Float64Array; next: number };
+
+const RECENT = 12;
+
+export function createRecentStates(): RecentStates {
+  return { times: new Float64Array(RECENT).fill(Number.NaN), states: new Float64Array(6 * RECENT), next: 0 };
+}
+
+function stateAt({ record, epochMs, recent }: RefinedObject, timeMs: number, out: Float64Array): boolean {
+  if (recent === undefined) return sgp4StateAt(record, epochMs, timeMs, out);
+  const { times, states } = recent;
+  let place = 0;
+  while (place < RECENT && times[place] !== timeMs) place++;
+  if (place === RECENT) {
+    place = recent.next;
+    recent.next = (place + 1) % RECENT;
+    times[place] = timeMs;
+    if (!sgp4StateAt(record, epochMs, timeMs, states, 6 * place)) states[6 * place] = Number.NaN;
+  }
+  for (let k = 0; k < 6; k++) out[k] = states[6 * place + k];
+  return !Number.isNaN(out[0]);
+}
 
 /** Half the base of the difference that gives the relative velocity of the positions, seconds. */
 const DIFFERENCE_S = 0.25;
@@ -37,8 +66,8 @@ export function relativeStateAt(
   timeMs: number,
   out: Float64Array,
 ): boolean {
-  if (!sgp4StateAt(object1.record, object1.epochMs, timeMs, state1)) return false;
-  if (!sgp4StateAt(object2.record, object2.epochMs, timeMs, state2)) return false;
+  if (!stateAt(object1, timeMs, state1)) return false;
+  if (!stateAt(object2, timeMs, state2)) return false;
   for (let k = 0; k < 6; k++) out[k] = state2[k] - state1[k];
   return true;
 }

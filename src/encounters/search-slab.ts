@@ -25,7 +25,14 @@ import {
   type Sweep,
   sweepOf,
 } from './near-pairs.js';
-import { type RefinedObject, refineFastTca, relativeStateAt, slowTcas } from './refine.js';
+import {
+  createRecentStates,
+  type RecentStates,
+  type RefinedObject,
+  refineFastTca,
+  relativeStateAt,
+  slowTcas,
+} from './refine.js';
 import { pairKey, type SearchObjects, type SearchRules } from './search-problem.js';
 import { shellFloorKm } from './shell.js';
 import {
@@ -169,6 +176,8 @@ type Workspace = {
   readonly primaries: Side;
   readonly others: Side;
   readonly pairs: NearPairs;
+  /** Latest states of the objects in slow pairs, by their index in `objects`. */
+  readonly recent: Map<number, RecentStates>;
 };
 
 /** What hangs on the length of a step. */
@@ -251,6 +260,7 @@ function createWorkspace(searcher: SlabSearcher, tracks: SlabTracks, lengthS: nu
     primaries: sideOf(primaries),
     others: sideOf(others),
     pairs: createNearPairs(),
+    recent: new Map(),
   };
 }
 
@@ -470,8 +480,8 @@ function refinePairs(
       : slowestOnTracks(work, a, b, middleS, halfStepS, toleranceKm, speed + tide * farthestKm * halfStepS);
     if (Number.isNaN(guessS)) continue;
     refined++;
-    const object1: RefinedObject = { record: objects.records[first], epochMs: objects.epochMs[first] };
-    const object2: RefinedObject = { record: objects.records[second], epochMs: objects.epochMs[second] };
+    const object1 = refinedObject(work, first, isFast);
+    const object2 = refinedObject(work, second, isFast);
     if (isFast) {
       const guessMs = tracks.startMs + guessS * 1000;
       const tcaMs = refineFastTca(object1, object2, guessMs, 2000 * halfStepS, rules.missKm);
@@ -483,6 +493,19 @@ function refinePairs(
     }
   }
   return refined;
+}
+
+function refinedObject({ searcher, recent }: Workspace, object: number, isFast: boolean): RefinedObject {
+  const { records, epochMs } = searcher.objects;
+  const refined = { record: records[object], epochMs: epochMs[object] };
+  if (isFast) return refined;
+  // Slow pairs are asked for at the same times, and one object is part of many in a train.
+  let states = recent.get(object);
+  if (states === undefined) {
+    states = createRecentStates();
+    recent.set(object, states);
+  }
+  return { ...refined, recent: states };
 }
 
 /**
