@@ -89,8 +89,31 @@ function followPair(
   objects: SearchObjects,
   { startMs, endMs }: SearchRules,
 ): Companions | undefined {
-  const object1: RefinedObject = { record: objects.records[first], epochMs: objects.epochMs[first] };
-  const object2: RefinedObject = { record: objects.records[second], epochMs: objects.epochMs[second] };
+  const side = (index: number) => ({ record: objects.records[index], epochMs: objects.epochMs[index] });
+  const followedToMs = startMs + Math.max(endMs - startMs, LEAST_FOLLOWED_MS);
+  const together = flightTogether(
+    side(first),
+    side(second),
+    { startMs, endMs, followedToMs },
+    (distanceKm) => (distanceKm <= limitKm ? COMPANION_SPEED_KM_PER_S : Number.NaN),
+  );
+  return together && { first, second, ...together };
+}
+
+/**
+ * How two objects fly together, sampled every five minutes.
+ *
+ * @param span figures are those from `startMs` to `endMs`; the pair must hold together to `followedToMs`
+ * @param fastestAt highest relative speed allowed at a distance, km/s; NaN where the distance is too large
+ * @returns `undefined` where a sample breaks that, or SGP4 gives no state
+ */
+export function flightTogether(
+  object1: RefinedObject,
+  object2: RefinedObject,
+  span: { readonly startMs: number; readonly endMs: number; readonly followedToMs: number },
+  fastestAt: (distanceKm: number) => number,
+): Omit<Companions, 'first' | 'second'> | undefined {
+  const { startMs, endMs, followedToMs } = span;
   const distanceAt = (timeMs: number) =>
     relativeStateAt(object1, object2, timeMs, relative)
       ? Math.hypot(relative[0], relative[1], relative[2])
@@ -100,14 +123,13 @@ function followPair(
   let farthestKm = 0;
   let slowest = Number.POSITIVE_INFINITY;
   let fastest = 0;
-  const followedMs = Math.max(endMs - startMs, LEAST_FOLLOWED_MS);
-  const samples = Math.ceil(followedMs / SAMPLE_MS);
+  const samples = Math.max(1, Math.ceil((followedToMs - startMs) / SAMPLE_MS));
   for (let k = 0; k <= samples; k++) {
-    const timeMs = startMs + (followedMs * k) / samples;
+    const timeMs = startMs + ((followedToMs - startMs) * k) / samples;
     const distance = distanceAt(timeMs);
-    if (!(distance <= limitKm)) return undefined;
     const speed = Math.hypot(relative[3], relative[4], relative[5]);
-    if (!(speed <= COMPANION_SPEED_KM_PER_S)) return undefined;
+    // Written so that a NaN breaks it, too.
+    if (!(speed <= fastestAt(distance))) return undefined;
     if (timeMs > endMs) continue;
     if (distance < closestKm) {
       closestKm = distance;
@@ -126,13 +148,5 @@ function followPair(
       closestMs = timeMs;
     }
   }
-  return {
-    first,
-    second,
-    closestMs,
-    closestKm,
-    farthestKm,
-    slowestKmPerS: slowest,
-    fastestKmPerS: fastest,
-  };
+  return { closestMs, closestKm, farthestKm, slowestKmPerS: slowest, fastestKmPerS: fastest };
 }

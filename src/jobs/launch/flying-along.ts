@@ -3,8 +3,8 @@ import {
   COMPANION_LIMIT_KM,
   COMPANION_SPEED_KM_PER_S,
   type Companions,
+  flightTogether,
 } from '../../encounters/companions.js';
-import { type RefinedObject, relativeStateAt, slowTcas } from '../../encounters/refine.js';
 import { EARTH_MU_KM3_PER_S2 } from '../../ephemeris/gravity.js';
 import { dot, type Vector3 } from '../../vector.js';
 import type { ScreenedObject } from '../screened-object.js';
@@ -12,9 +12,7 @@ import { groupBy } from './group-by.js';
 
 /** The first day decides: later a prediction and fresh elements of the same object drift apart. */
 const FIRST_STRETCH_MS = 86_400_000;
-const SAMPLE_MS = 300_000;
 const MS_PER_MINUTE = 60_000;
-const CLOSEST_GRID_MS = 20_000;
 /** Osculating elements swing about mean ones by less than this. */
 const SWING_KM = 40;
 const SWING_RAD = 0.005;
@@ -83,52 +81,18 @@ export function probablySame(
     });
 }
 
-const relative = new Float64Array(6);
-
 function flyTogether(
   first: ScreenedObject,
   second: ScreenedObject,
   limitKm: number,
 ): Omit<FlyingAlong, 'first' | 'second'> | undefined {
-  const object1: RefinedObject = { record: first.record, epochMs: first.set.epochMs };
-  const object2: RefinedObject = { record: second.record, epochMs: second.set.epochMs };
+  const side = ({ record, set }: ScreenedObject) => ({ record, epochMs: set.epochMs });
   const startMs = first.validFromMs;
   const endMs = Math.min(startMs + FIRST_STRETCH_MS, first.validToMs);
   const rate = orbitalRate(first);
-  const distanceAt = (timeMs: number) =>
-    relativeStateAt(object1, object2, timeMs, relative)
-      ? Math.hypot(relative[0], relative[1], relative[2])
-      : Number.NaN;
-  let closestMs = startMs;
-  let closestKm = Number.POSITIVE_INFINITY;
-  let farthestKm = 0;
-  let slowest = Number.POSITIVE_INFINITY;
-  let fastest = 0;
-  const samples = Math.max(1, Math.ceil((endMs - startMs) / SAMPLE_MS));
-  for (let k = 0; k <= samples; k++) {
-    const timeMs = startMs + ((endMs - startMs) * k) / samples;
-    const distance = distanceAt(timeMs);
-    if (!(distance <= limitKm)) return undefined;
-    const speed = Math.hypot(relative[3], relative[4], relative[5]);
-    if (!(speed <= COMPANION_SPEED_KM_PER_S + rate * distance)) return undefined;
-    if (distance < closestKm) {
-      closestKm = distance;
-      closestMs = timeMs;
-    }
-    farthestKm = Math.max(farthestKm, distance);
-    slowest = Math.min(slowest, speed);
-    fastest = Math.max(fastest, speed);
-  }
-  const fromMs = Math.max(startMs, closestMs - SAMPLE_MS);
-  const toMs = Math.min(endMs, closestMs + SAMPLE_MS);
-  for (const timeMs of slowTcas(object1, object2, fromMs, toMs, CLOSEST_GRID_MS)) {
-    const distance = distanceAt(timeMs);
-    if (distance < closestKm) {
-      closestKm = distance;
-      closestMs = timeMs;
-    }
-  }
-  return { closestMs, closestKm, farthestKm, slowestKmPerS: slowest, fastestKmPerS: fastest };
+  return flightTogether(side(first), side(second), { startMs, endMs, followedToMs: endMs }, (distanceKm) =>
+    distanceKm <= limitKm ? COMPANION_SPEED_KM_PER_S + rate * distanceKm : Number.NaN,
+  );
 }
 
 /** At perigee, where it is highest; radians a second, with a tenth for J2 and for the swing of a relative orbit. */
