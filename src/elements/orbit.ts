@@ -3,8 +3,8 @@ import { type MeanElements, roundedSgp4RecordOf } from './sgp4-record.js';
 
 /** Equatorial radius of WGS-72, the Earth of SGP4; heights are above this sphere. */
 export const EARTH_RADIUS_KM = 6378.135;
-/** WGS-72, km^3/s^2. */
-const GRAVITATIONAL_PARAMETER = 398_600.8;
+/** WGS-72. */
+export const EARTH_MU_KM3_PER_S2 = 398_600.8;
 const SECONDS_PER_MINUTE = 60;
 
 /** Size and shape of a mean orbit. */
@@ -27,7 +27,7 @@ export type OrbitSummary = {
  */
 export function orbitOf(set: MeanElements, record: SatRec = roundedSgp4RecordOf(set)): OrbitSummary {
   const meanMotionRadPerS = record.no / SECONDS_PER_MINUTE;
-  const semiMajorAxisKm = Math.cbrt(GRAVITATIONAL_PARAMETER / meanMotionRadPerS ** 2);
+  const semiMajorAxisKm = Math.cbrt(EARTH_MU_KM3_PER_S2 / meanMotionRadPerS ** 2);
   return {
     semiMajorAxisKm,
     eccentricity: set.eccentricity,

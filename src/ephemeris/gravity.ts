@@ -1,8 +1,7 @@
-import { EARTH_RADIUS_KM } from '../elements/orbit.js';
+import { EARTH_MU_KM3_PER_S2, EARTH_RADIUS_KM } from '../elements/orbit.js';
 
 /** Constants of WGS-72, which SGP4 works in (Hoots and Roehrich, Spacetrack Report #3, 1980; Vallado et al. 2006). */
-export const EARTH_MU_KM3_PER_S2 = 398_600.8;
-export { EARTH_RADIUS_KM };
+export { EARTH_MU_KM3_PER_S2, EARTH_RADIUS_KM };
 export const EARTH_J2 = 0.001_082_616;
 
 const OBLATENESS = 1.5 * EARTH_J2 * EARTH_RADIUS_KM * EARTH_RADIUS_KM * EARTH_MU_KM3_PER_S2;

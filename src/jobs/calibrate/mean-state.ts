@@ -1,9 +1,8 @@
 import { checkForDecay, type SatRec, sgp4 } from 'satellite.js';
+import { EARTH_RADIUS_KM } from '../../elements/orbit.js';
 
 /** Values in one state: position (km), velocity (km/s), mean semi-major axis (km), unit normal of the mean orbit plane. */
 export const MEAN_STATE_SIZE = 10;
-/** WGS-72, the unit of length inside SGP4. */
-const EARTH_RADIUS_KM = 6378.135;
 
 /**
  * SGP4 state with the mean orbit that belongs to it: what a maneuver changes for good shows in the mean
