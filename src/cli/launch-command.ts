@@ -1,4 +1,3 @@
-import { availableParallelism } from 'node:os';
 import { LAUNCH_CAUTION } from '../caution.js';
 import type { ScreeningVolume } from '../encounters/volume.js';
 import { InputError } from '../input-error.js';
@@ -7,11 +6,10 @@ import {
   DEFAULT_INJECTION_SIGMA_RTN_M,
 } from '../jobs/launch/injection-sigma.js';
 import type { LaunchOptions, SlipRange } from '../jobs/launch/launch-options.js';
-import { LONGEST_WINDOW_DAYS } from '../jobs/screen-options.js';
 import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js';
 import { EXIT_STATUS, EXIT_STATUS_HELP } from './exit-status.js';
 import { MAX_HALF_SIZE_KM, type Options, optionsHelp, type Values } from './options.js';
-import { volumeOf } from './volume-of.js';
+import { expectOneStdin, sharedJobOptions, sharedOptions, VOLUME_ALTERNATIVES } from './shared-options.js';
 import { wrap } from './wrap.js';
 
 const DEFAULT_MISS_KM = 25;
@@ -20,6 +18,20 @@ const DEFAULT_SLIP_EVERY_MIN = 1;
 const LARGEST_SLIP_MIN = 10_080;
 const LARGEST_SIGMA_M = 1_000_000;
 
+const SHARED = sharedOptions({
+  fleetIs: 'your satellites in orbit',
+  catalogIs: 'element sets of everything else',
+  defaultDays: 3,
+  daysHelp: 'length of the window from the first release on',
+  defaultMissKm: DEFAULT_MISS_KM,
+  volumeAround: 'the batch object',
+  sigmaHelp: 'one-sigma table; rows of a batch designator replace the above',
+  alertPcHelp:
+    'a liftoff with an encounter of this probability is not clear; status 3 if the nominal one has it',
+  messageFor: 'of the nominal liftoff ',
+});
+
+/** In the order of the help. */
 export const LAUNCH_OPTIONS = {
   batch: {
     kind: 'paths',
@@ -27,43 +39,15 @@ export const LAUNCH_OPTIONS = {
     help: 'predicted element sets of the batch: TLE or OMM; repeatable, with --batch-validity',
   },
   'batch-validity': { kind: 'path', value: 'CSV', help: 'from when to when each set of the batch holds' },
-  fleet: {
-    kind: 'paths',
-    value: 'FILE',
-    help: 'your satellites in orbit: TLE or OMM, also gzip, - for stdin; repeatable',
-  },
-  catalog: { kind: 'paths', value: 'FILE', help: 'element sets of everything else; the same, repeatable' },
+  fleet: SHARED.fleet,
+  catalog: SHARED.catalog,
   liftoff: { kind: 'time', value: 'UTC', help: 'nominal liftoff that the batch sets are made for' },
   release: { kind: 'time', value: 'UTC', help: 'when the batch is released; nothing of it exists before' },
   'release-times': { kind: 'path', value: 'CSV', help: 'in place of --release: a time for each object' },
-  days: {
-    kind: 'number',
-    value: 'N',
-    default: 3,
-    above: 0,
-    max: LONGEST_WINDOW_DAYS,
-    help: 'length of the window from the first release on',
-  },
-  'miss-km': {
-    kind: 'number',
-    value: 'KM',
-    above: 0,
-    max: MAX_HALF_SIZE_KM,
-    help: 'list passes closer than this',
-    defaultInWords: String(DEFAULT_MISS_KM),
-  },
-  'volume-rtn-km': {
-    kind: 'half-sizes',
-    value: 'R,T,N',
-    help: 'in place of --miss-km: half-sizes of a volume in RTN of the batch object',
-  },
-  'volume-shape': {
-    kind: 'choice',
-    value: 'SHAPE',
-    choices: ['BOX', 'ELLIPSOID'],
-    help: 'its shape, BOX or ELLIPSOID',
-    defaultInWords: 'BOX',
-  },
+  days: SHARED.days,
+  'miss-km': SHARED['miss-km'],
+  'volume-rtn-km': SHARED['volume-rtn-km'],
+  'volume-shape': SHARED['volume-shape'],
   'slip-from': {
     kind: 'number',
     value: 'MIN',
@@ -92,13 +76,7 @@ export const LAUNCH_OPTIONS = {
     max: MAX_HALF_SIZE_KM,
     help: 'a liftoff with a closer encounter is not clear',
   },
-  'alert-pc': {
-    kind: 'number',
-    value: 'P',
-    above: 0,
-    max: 1,
-    help: 'a liftoff with an encounter of this probability is not clear; status 3 if the nominal one has it',
-  },
+  'alert-pc': SHARED['alert-pc'],
   'batch-sigma-rtn-m': {
     kind: 'half-sizes',
     of: { words: 'sigmas', max: LARGEST_SIGMA_M, unit: 'm' },
@@ -114,38 +92,13 @@ export const LAUNCH_OPTIONS = {
     help: 'growth of its T with time since release',
     defaultInWords: String(DEFAULT_INJECTION_GROWTH_M_PER_DAY),
   },
-  objects: { kind: 'path', value: 'CSV', help: 'per object: name, radius, maneuverable' },
-  sigma: {
-    kind: 'path',
-    value: 'CSV',
-    help: 'one-sigma table; rows of a batch designator replace the above',
-  },
-  'max-age-days': {
-    kind: 'number',
-    value: 'N',
-    default: 30,
-    above: 0,
-    max: 3650,
-    help: 'warn of element sets older than this',
-  },
-  workers: {
-    kind: 'number',
-    value: 'N',
-    integer: true,
-    min: 1,
-    max: 256,
-    help: 'threads',
-    defaultInWords: 'all cores',
-  },
-  out: { kind: 'path', value: 'DIR', help: 'where the results go, replaced as a whole' },
-  'cdm-from-pc': {
-    kind: 'number',
-    value: 'P',
-    min: 0,
-    max: 1,
-    help: 'write a CCSDS 508 message for each of the nominal liftoff from this probability',
-  },
-  top: { kind: 'number', value: 'N', integer: true, min: 0, default: 15, help: 'rows of the printed table' },
+  objects: SHARED.objects,
+  sigma: SHARED.sigma,
+  'max-age-days': SHARED['max-age-days'],
+  workers: SHARED.workers,
+  out: SHARED.out,
+  'cdm-from-pc': SHARED['cdm-from-pc'],
+  top: SHARED.top,
 } as const satisfies Options;
 
 const HELP = `wideberth launch --batch FILE --catalog FILE --liftoff UTC --release UTC
@@ -174,10 +127,7 @@ export const launchCommand = defineCommand({
   summary: 'screen a launch batch, and tell which liftoffs are clear',
   help: HELP,
   options: LAUNCH_OPTIONS,
-  alternatives: [
-    [['miss-km'], ['volume-rtn-km', 'volume-shape']],
-    [['release'], ['release-times']],
-  ],
+  alternatives: [VOLUME_ALTERNATIVES, [['release'], ['release-times']]],
   run: async (values, ports): Promise<CommandResult> => {
     // Loaded when it is needed: help, and mistakes in the options, are there at once.
     const { launch } = await import('../jobs/launch/launch.js');
@@ -196,35 +146,22 @@ export function launchOptions(values: Values<typeof LAUNCH_OPTIONS>): LaunchOpti
   if (values.fleet.length === 0 && values.catalog.length === 0) {
     throw new InputError('nothing to screen against: give --catalog FILE, --fleet FILE, or both');
   }
-  if ([...values.batch, ...values.fleet, ...values.catalog].filter((path) => path === '-').length > 1) {
-    throw new InputError('- (standard input) is named more than once, but can be read only once');
-  }
+  expectOneStdin([...values.batch, ...values.fleet, ...values.catalog]);
   if (values.liftoff === undefined) throw new InputError('no liftoff: give --liftoff UTC');
-  if (values.out === undefined) throw new InputError('no place for the results: give --out DIR');
-  const volume = volumeOf(values, DEFAULT_MISS_KM);
+  const shared = sharedJobOptions(values, DEFAULT_MISS_KM);
   return {
+    ...shared,
     batchPaths: values.batch,
     validityPath: values['batch-validity'],
-    fleetPaths: values.fleet,
-    catalogPaths: values.catalog,
     liftoffMs: values.liftoff,
     release: releaseOf(values),
-    days: values.days,
-    volume,
     slips: slipRange(values),
-    limits: { clearKm: clearKm(values['clear-km'], volume), alertPc: values['alert-pc'] },
+    limits: { clearKm: clearKm(values['clear-km'], shared.volume), alertPc: values['alert-pc'] },
     injection: {
       sigmaRtnM: values['batch-sigma-rtn-m'] ?? DEFAULT_INJECTION_SIGMA_RTN_M,
       growthMPerDay: values['batch-growth-m-per-day'] ?? DEFAULT_INJECTION_GROWTH_M_PER_DAY,
       isDefault: values['batch-sigma-rtn-m'] === undefined,
     },
-    objectsPath: values.objects,
-    sigmaPath: values.sigma,
-    maxAgeDays: values['max-age-days'],
-    workers: values.workers ?? availableParallelism(),
-    outPath: values.out,
-    cdmFromPc: values['cdm-from-pc'],
-    top: values.top,
   };
 }
 

@@ -4,18 +4,13 @@ import type { Log } from './log.js';
 /** The longest window that can be screened, days. */
 export const LONGEST_WINDOW_DAYS = 60;
 
-/** Everything a screening depends on; checked and complete, paths as the process can open them (`-`: standard input). */
-export type ScreenOptions = {
-  /** Element-set files of the fleet; empty exactly when `allOnAll`. */
+/** What every screening depends on, that of a launch too; checked and complete, paths as the process can open them (`-`: standard input). */
+export type SharedOptions = {
+  /** Element-set files of the fleet. */
   readonly fleetPaths: readonly string[];
-  /** Element-set files of everything else; may be empty with `withinFleet`. */
+  /** Element-set files of everything else. */
   readonly catalogPaths: readonly string[];
-  /** Every object of the catalog against every other. */
-  readonly allOnAll: boolean;
-  /** Also the members of the fleet against each other. */
-  readonly withinFleet: boolean;
-  /** Start of the window, milliseconds of UTC since 1970-01-01. */
-  readonly startMs: number;
+  /** Length of the window. */
   readonly days: number;
   readonly volume: ScreeningVolume;
   readonly objectsPath: string | undefined;
@@ -24,15 +19,25 @@ export type ScreenOptions = {
   readonly maxAgeDays: number;
   readonly workers: number;
   readonly outPath: string;
+  /** Encounters of this collision probability or more get a conjunction message. */
+  readonly cdmFromPc: number | undefined;
+  /** Rows of the ranked table on standard output. */
+  readonly top: number;
+};
+
+/** Everything the nightly screening depends on. `fleetPaths` is empty exactly with `allOnAll`; `catalogPaths` may be empty with `withinFleet`. */
+export type ScreenOptions = SharedOptions & {
+  /** Every object of the catalog against every other. */
+  readonly allOnAll: boolean;
+  /** Also the members of the fleet against each other. */
+  readonly withinFleet: boolean;
+  /** Start of the window, milliseconds of UTC since 1970-01-01. */
+  readonly startMs: number;
   readonly historyPath: string | undefined;
   /** Past runs to keep in the history; `undefined` deletes nothing. */
   readonly keepRuns: number | undefined;
   /** An encounter of this collision probability or more makes the command end with status 3. */
   readonly alertPc: number | undefined;
-  /** Encounters of this collision probability or more get a conjunction message. */
-  readonly cdmFromPc: number | undefined;
-  /** Rows of the ranked table on standard output. */
-  readonly top: number;
 };
 
 /** How far a job is, for someone who waits. */
