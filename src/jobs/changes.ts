@@ -1,7 +1,7 @@
 import { formatUtc } from '../elements/utc.js';
 import { CHANGE_KINDS, type Change, type ChangeKind } from '../tables/changes-csv.js';
+import { compareDesignators } from '../tables/compare-designators.js';
 import { exponentText } from '../tables/csv-text.js';
-import { compareDesignators } from '../tables/rank-conjunctions.js';
 import { terminalText } from '../tables/terminal-text.js';
 
 /** By this factor a probability must change to be called risen or fallen: less is the noise of new element sets. */

@@ -1,7 +1,6 @@
 import { rtnFrame } from '../ephemeris/rtn-frame.js';
 import type { OrbitState } from '../ephemeris/state.js';
 import type { Conjunction, ConjunctionObject } from '../tables/conjunction.js';
-import { compareDesignators } from '../tables/rank-conjunctions.js';
 import type { ConjunctionSensitivity } from '../tables/sensitivity-csv.js';
 import { sigmaAt } from '../uncertainty/sigma-table.js';
 import { norm, rotate, scale, subtract } from '../vector.js';
@@ -10,64 +9,6 @@ import { remarksOfBits } from './remark-bits.js';
 import type { ScreenedObject } from './screened-object.js';
 
 const MS_PER_DAY = 86_400_000;
-
-/**
- * Puts the total of each pair over its encounters in the window into every one of its records, as `pairTotal`
- * does: at least one collision, encounters taken as independent, those without a figure as none.
- *
- * @param identities which object each index stands for, where several stand for one in turn
- */
-export function fillPairProbabilities(
-  records: EncounterRecords,
-  objectCount: number,
-  identities?: ArrayLike<number>,
-): void {
-  const { data, size } = records;
-  const totals = new Map<number, number>();
-  const identity = (index: number) => identities?.[index] ?? index;
-  const keyAt = (at: number) =>
-    identity(data[at + FIELD.first]) * objectCount + identity(data[at + FIELD.second]);
-  for (let at = 0; at < FIELDS * size; at += FIELDS) {
-    const probability = data[at + FIELD.probability];
-    if (Number.isNaN(probability)) continue;
-    const before = totals.get(keyAt(at)) ?? 0;
-    totals.set(keyAt(at), before + probability * (1 - before));
-  }
-  for (let at = 0; at < FIELDS * size; at += FIELDS) {
-    data[at + FIELD.pairProbability] = totals.get(keyAt(at)) ?? Number.NaN;
-  }
-}
-
-/**
- * The order of `compareConjunctions`, worked out on the records.
- *
- * @returns record numbers from the first rank to the last
- */
-export function rankRecords(records: EncounterRecords, objects: readonly ScreenedObject[]): Uint32Array {
-  const { data, size } = records;
-  const order = Uint32Array.from({ length: size }, (_, i) => i);
-  const probability = Float64Array.from(order, (i) => {
-    const value = data[FIELDS * i + FIELD.probability];
-    return Number.isNaN(value) ? -1 : value;
-  });
-  return order.sort((a, b) => {
-    const i = FIELDS * a;
-    const j = FIELDS * b;
-    return (
-      probability[b] - probability[a] ||
-      data[i + FIELD.missKm] - data[j + FIELD.missKm] ||
-      data[i + FIELD.tcaMs] - data[j + FIELD.tcaMs] ||
-      compareDesignators(
-        objects[data[i + FIELD.first]].designator,
-        objects[data[j + FIELD.first]].designator,
-      ) ||
-      compareDesignators(
-        objects[data[i + FIELD.second]].designator,
-        objects[data[j + FIELD.second]].designator,
-      )
-    );
-  });
-}
 
 /** One record as the tables and messages show it. */
 export function conjunctionOf(

@@ -2,9 +2,10 @@ import type { Conjunction } from '../tables/conjunction.js';
 import { writeConjunctionsCsv } from '../tables/conjunctions-csv.js';
 import { writeSensitivityCsv } from '../tables/sensitivity-csv.js';
 import type { RankedConjunctions } from '../tables/terminal-table.js';
-import { conjunctionOf, rankRecords, sensitivityOf } from './conjunctions.js';
+import { conjunctionOf, sensitivityOf } from './conjunctions.js';
 import type { EncounterRecords } from './encounter-records.js';
 import type { OutputFolder } from './output-folder.js';
+import { rankRecords } from './rank-records.js';
 import type { ScreenedObject } from './screened-object.js';
 
 export type RankedRecords = RankedConjunctions & {

@@ -14,7 +14,6 @@ import {
 import { writeUnusedElementsCsv } from '../tables/unused-elements-csv.js';
 import { changeLines, compareWithPast, type SeenEncounter } from './changes.js';
 import { companionRow } from './companion-row.js';
-import { fillPairProbabilities } from './conjunctions.js';
 import { agesAt, agesOf, warnOfOldElements } from './element-ages.js';
 import { type EncounterRecords, FIELD, FIELDS } from './encounter-records.js';
 import { failedLines, failedSets, warnOfFailures } from './failed-sets.js';
@@ -22,6 +21,7 @@ import { keepInHistory, prepareHistory, readPastRuns } from './history.js';
 import { readElementInputs, readKnowledge } from './inputs.js';
 import { alertLines, companionLines, finishedText, resultsLine, screenedLine } from './outcome-lines.js';
 import { type OutputFolder, openOutputFolder } from './output-folder.js';
+import { fillPairProbabilities } from './pair-probabilities.js';
 import { rankedRecords, writeRankedTables } from './ranked-records.js';
 import { warnOfRejected } from './rejected-sets.js';
 import { RUN_RECORD } from './run-folder.js';

@@ -1,6 +1,6 @@
 import type { Writable } from 'node:stream';
+import { compareDesignators } from './compare-designators.js';
 import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-import { compareDesignators } from './rank-conjunctions.js';
 import { LAUNCH_CAUTION_COLUMN } from './shared-columns.js';
 
 export type PairTrend = 'OPENING' | 'CLOSING' | 'STEADY';

@@ -1,6 +1,5 @@
 import type { Writable } from 'node:stream';
 import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-import { compareDesignators } from './rank-conjunctions.js';
 import { CAUTION_COLUMN, OBJECT_COLUMNS } from './shared-columns.js';
 
 /** One object of a pair that flies together. */
@@ -68,16 +67,6 @@ export const COMPANION_COLUMNS: readonly CsvColumn<CompanionPair>[] = [
   },
   CAUTION_COLUMN,
 ];
-
-/** Closest pair first, then by designators; the given array stays as it is. */
-export function sortCompanions(pairs: readonly CompanionPair[]): CompanionPair[] {
-  return pairs.toSorted(
-    (a, b) =>
-      a.closestDistanceM - b.closestDistanceM ||
-      compareDesignators(a.object1.designator, b.object1.designator) ||
-      compareDesignators(a.object2.designator, b.object2.designator),
-  );
-}
 
 /**
  * Writes `companions.csv` to `output` and ends it, the pairs in the order given.

@@ -1,15 +1,6 @@
 import type { Writable } from 'node:stream';
 import type { Conjunction } from './conjunction.js';
-import {
-  type CsvColumn,
-  csvHeader,
-  csvRow,
-  exponentCell,
-  fixedCell,
-  textCell,
-  utcCell,
-  writeCsv,
-} from './csv-text.js';
+import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
 import { CAUTION_COLUMN, OBJECT_COLUMNS } from './shared-columns.js';
 
 /**
@@ -203,19 +194,9 @@ export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
   },
 ];
 
-/** The header record of `conjunctions.csv` with its CRLF. */
-export function formatConjunctionHeader(): string {
-  return csvHeader(CONJUNCTION_COLUMNS);
-}
-
-/** One record of `conjunctions.csv` with its CRLF. */
-export function formatConjunctionRow(rank: number, conjunction: Conjunction): string {
-  return csvRow(CONJUNCTION_COLUMNS, conjunction, rank);
-}
-
 /**
  * Writes `conjunctions.csv` to `output` and ends it; the ranks count the conjunctions as they come, so
- * they come in the order of `rankConjunctions`.
+ * they come in their ranked order.
  *
  * @returns the number of conjunctions written
  * @throws what `output` throws, for instance when the disk is full

@@ -3,7 +3,6 @@ import type { FileCount } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
 import type { Conjunction, ConjunctionObject } from './conjunction.js';
 import { exponentText } from './csv-text.js';
-import { hasProbability } from './rank-conjunctions.js';
 import { padOrCut, terminalText, wrapWords } from './terminal-text.js';
 
 /*
@@ -26,7 +25,7 @@ const LEAST_SHOWN = 1e-30;
 /** Age of one object's elements. */
 export type ElementAge = { readonly designator: string; readonly ageDays: number };
 
-/** All conjunctions in the order of `rankConjunctions`; rows are made only where they are shown. */
+/** All conjunctions in their ranked order; rows are made only where they are shown. */
 export type RankedConjunctions = {
   readonly count: number;
   readonly at: (index: number) => Conjunction;
@@ -161,6 +160,11 @@ function tableRow(conjunction: Conjunction, rank: number, rankColumns: number): 
     `${margin}${object(conjunction.object2, rankColumns)}${GAP}${detail}`,
     ...more.map((line) => `${margin}${blank}${GAP}${line}`),
   ];
+}
+
+/** Whether there is a figure; not so for a singular covariance. */
+function hasProbability({ collisionProbability }: Conjunction): boolean {
+  return collisionProbability !== undefined && !Number.isNaN(collisionProbability);
 }
 
 function objectColumns(rankColumns: number): number {

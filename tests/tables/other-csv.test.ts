@@ -1,7 +1,7 @@
 import { describe, expect, test } from 'vitest';
 import { CAUTION } from '../../src/caution.js';
 import type { UnusedElements } from '../../src/elements/element-set.js';
-import { type CompanionPair, sortCompanions, writeCompanionsCsv } from '../../src/tables/companions-csv.js';
+import { type CompanionPair, writeCompanionsCsv } from '../../src/tables/companions-csv.js';
 import {
   type ConjunctionSensitivity,
   describeSensitivity,
@@ -89,11 +89,6 @@ describe('companions.csv', () => {
         CAUTION,
       ],
     ]);
-  });
-
-  test('sorts by distance, then designators as numbers', () => {
-    const sorted = sortCompanions([pair('100', 2), pair('99', 2), pair('101', 1)]);
-    expect(sorted.map((each) => each.object2.designator)).toEqual(['101', '99', '100']);
   });
 });
 
