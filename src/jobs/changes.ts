@@ -5,10 +5,10 @@ import { exponentText } from '../tables/csv-text.js';
 import { terminalText } from '../tables/terminal-text.js';
 
 /** By this factor a probability must change to be called risen or fallen: less is the noise of new element sets. */
-export const CHANGE_FACTOR = 2;
+const CHANGE_FACTOR = 2;
 
 /** Below this a probability is as good as none, and a change of it is no news (own choice). */
-export const PROBABILITY_FLOOR = 1e-10;
+const PROBABILITY_FLOOR = 1e-10;
 
 /** One encounter as a run keeps it for the runs after it. */
 export type SeenEncounter = {
@@ -40,14 +40,14 @@ export type PastRun = {
 };
 
 /** What tonight's run covered. */
-export type Coverage = {
+type Coverage = {
   readonly startMs: number;
   readonly endMs: number;
   /** Whether tonight the two objects were screened against each other. */
   readonly isScreened: (designatorA: string, designatorB: string) => boolean;
 };
 
-export type Comparison = {
+type Comparison = {
   /** Rows of `changes.csv` in their order: by kind, then probability from high to low. */
   readonly changes: readonly Change[];
   /** Tonight's encounters, in the order given, with what to keep for the next run. */
@@ -92,7 +92,7 @@ export function compareWithPast(
   const listed = known.map((encounter, i): Change => {
     const earlier = before.get(tonight[i]);
     return {
-      ...identity(encounter),
+      ...objectsOf(encounter),
       kind: earlier === undefined ? 'new' : trend(encounter, earlier),
       current: figures(encounter),
       previous: earlier === undefined ? undefined : figures(earlier),
@@ -104,7 +104,7 @@ export function compareWithPast(
     .filter((earlier) => !continued.has(earlier))
     .map((earlier): Change => {
       return {
-        ...identity(earlier),
+        ...objectsOf(earlier),
         kind: kindOfLost(earlier, coverage),
         current: undefined,
         previous: figures(earlier),
@@ -191,9 +191,11 @@ function kindOfLost(earlier: SeenEncounter, { startMs, endMs, isScreened }: Cove
   return isScreened(earlier.object1Designator, earlier.object2Designator) ? 'gone' : 'not-screened';
 }
 
-function identity(encounter: SeenEncounter) {
-  const { object1Designator, object1Name, object2Designator, object2Name } = encounter;
-  return { object1Designator, object1Name, object2Designator, object2Name };
+function objectsOf(encounter: SeenEncounter): Pick<Change, 'object1' | 'object2'> {
+  return {
+    object1: { designator: encounter.object1Designator, name: encounter.object1Name },
+    object2: { designator: encounter.object2Designator, name: encounter.object2Name },
+  };
 }
 
 function figures({ tcaMs, missDistanceM, collisionProbability }: SeenEncounter) {
@@ -207,16 +209,16 @@ function compareChanges(a: Change, b: Change): number {
     (y.collisionProbability ?? -1) - (x.collisionProbability ?? -1) ||
     x.missDistanceM - y.missDistanceM ||
     x.tcaMs - y.tcaMs ||
-    compareDesignators(a.object1Designator, b.object1Designator) ||
-    compareDesignators(a.object2Designator, b.object2Designator)
+    compareDesignators(a.object1.designator, b.object1.designator) ||
+    compareDesignators(a.object2.designator, b.object2.designator)
   );
 }
 
-function riseLine({ current, previous, ...pair }: Change): string {
-  const side = (designator: string, name: string) => terminalText(`${designator} ${name}`.trimEnd());
+function riseLine({ current, previous, object1, object2 }: Change): string {
+  const side = ({ designator, name }: Change['object1']) => terminalText(`${designator} ${name}`.trimEnd());
   const probability = (value: number | undefined) => (value === undefined ? 'none' : exponentText(value, 1));
   return (
-    `Rose: ${side(pair.object1Designator, pair.object1Name)} / ${side(pair.object2Designator, pair.object2Name)}, ` +
+    `Rose: ${side(object1)} / ${side(object2)}, ` +
     `TCA ${formatUtc(Math.round(current!.tcaMs / 1000) * 1000).replace('.000Z', 'Z')}, ` +
     `probability ${probability(previous!.collisionProbability)} -> ${probability(current!.collisionProbability)}, ` +
     `miss ${previous!.missDistanceM.toFixed(0)} -> ${current!.missDistanceM.toFixed(0)} m`

@@ -67,8 +67,8 @@ export function sensitivityOf(
   return {
     rank,
     tcaMs: data[at + FIELD.tcaMs],
-    object1Designator: objects[data[at + FIELD.first]].designator,
-    object2Designator: objects[data[at + FIELD.second]].designator,
+    object1: objects[data[at + FIELD.first]],
+    object2: objects[data[at + FIELD.second]],
     probabilityAtHalf: figure(FIELD.probabilityAtHalf),
     probabilityAtOnce: figure(FIELD.probabilityFoster),
     probabilityAtTwice: figure(FIELD.probabilityAtTwice),

@@ -1,12 +1,19 @@
 import type { Writable } from 'node:stream';
 import { compareDesignators } from './compare-designators.js';
-import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-import { LAUNCH_CAUTION_COLUMN } from './shared-columns.js';
+import { type CsvColumn, fixedCell, utcCell, writeCsv } from './csv-text.js';
+import {
+  CLOSEST_COLUMNS,
+  explainedAs,
+  LAUNCH_CAUTION_COLUMN,
+  OBJECT_COLUMNS,
+  remarksColumn,
+  slowestSpeedColumn,
+} from './shared-columns.js';
 
 export type PairTrend = 'OPENING' | 'CLOSING' | 'STEADY';
 
 /** Why a row is not what it looks like; explained in the README. */
-export const PAIR_REMARKS = {
+const PAIR_REMARKS = {
   'closest-at-start': 'The two are closest where their common time begins, such as at release.',
   'closest-at-end': 'The two are closest where their common time ends: they are still coming closer.',
   'inside-at-end': 'The two are within the screening distance where their common time ends.',
@@ -33,54 +40,20 @@ export type BatchPair = {
 
 /** The columns of `batch-pairs.csv`; new ones only ever follow the last one. */
 export const BATCH_PAIR_COLUMNS: readonly CsvColumn<BatchPair>[] = [
-  {
-    name: 'object1_designator',
-    unit: '',
-    meaning: 'Designator of object 1, of the batch',
-    cell: (row) => textCell(row.object1.designator),
-  },
-  {
-    name: 'object1_name',
-    unit: '',
-    meaning: 'Its name, empty if the elements give none',
-    cell: (row) => textCell(row.object1.name),
-  },
-  {
-    name: 'object2_designator',
-    unit: '',
-    meaning: 'Designator of object 2: of the batch, or the catalog number of an object that flies along',
-    cell: (row) => textCell(row.object2.designator),
-  },
-  {
-    name: 'object2_name',
-    unit: '',
-    meaning: 'Its name, empty if the elements give none',
-    cell: (row) => textCell(row.object2.name),
-  },
-  {
-    name: 'closest_utc',
-    unit: 'UTC',
-    meaning: 'When the two are closest in the window, ISO 8601 to the millisecond',
-    cell: (row) => utcCell(row.closestMs),
-  },
-  {
-    name: 'closest_distance_m',
-    unit: 'm',
-    meaning: 'Their smallest distance in the window, 3 decimals',
-    cell: (row) => fixedCell(row.closestDistanceM, 3),
-  },
+  ...explainedAs(OBJECT_COLUMNS, [
+    'Designator of object 1, of the batch',
+    'Its name, empty if the elements give none',
+    'Designator of object 2: of the batch, or the catalog number of an object that flies along',
+    'Its name, empty if the elements give none',
+  ]),
+  ...CLOSEST_COLUMNS,
   {
     name: 'closest_relative_speed_m_s',
     unit: 'm/s',
     meaning: 'Their relative speed then, 4 decimals',
     cell: (row) => fixedCell(row.closestSpeedMPerS, 4),
   },
-  {
-    name: 'slowest_relative_speed_m_s',
-    unit: 'm/s',
-    meaning: 'Their smallest relative speed while within the screening distance, 4 decimals',
-    cell: (row) => fixedCell(row.slowestMPerS, 4),
-  },
+  slowestSpeedColumn('while within the screening distance'),
   {
     name: 'last_inside_utc',
     unit: 'UTC',
@@ -113,12 +86,7 @@ export const BATCH_PAIR_COLUMNS: readonly CsvColumn<BatchPair>[] = [
     meaning: 'Their distance then, 3 decimals',
     cell: (row) => fixedCell(row.endDistanceM, 3),
   },
-  {
-    name: 'remarks',
-    unit: '',
-    meaning: 'Codes of what to know about the row, one blank between them; empty if there is none',
-    cell: (row) => textCell(row.remarks.join(' ')),
-  },
+  remarksColumn('what to know about the row'),
   LAUNCH_CAUTION_COLUMN,
 ];
 

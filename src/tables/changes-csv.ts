@@ -1,6 +1,6 @@
 import type { Writable } from 'node:stream';
-import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-import { CAUTION_COLUMN } from './shared-columns.js';
+import { type CsvColumn, exponentCell, fixedCell, utcCell, writeCsv } from './csv-text.js';
+import { CAUTION_COLUMN, OBJECT_COLUMNS } from './shared-columns.js';
 
 /** How an encounter stands tonight against the runs before; explained at the column `change`. */
 export const CHANGE_KINDS = [
@@ -17,7 +17,7 @@ export const CHANGE_KINDS = [
 export type ChangeKind = (typeof CHANGE_KINDS)[number];
 
 /** What one run says of an encounter, as far as another run is compared with it. */
-export type ChangeFigures = {
+type ChangeFigures = {
   readonly tcaMs: number;
   readonly missDistanceM: number;
   readonly collisionProbability: number | undefined;
@@ -26,10 +26,8 @@ export type ChangeFigures = {
 /** One row of `changes.csv`. */
 export type Change = {
   readonly kind: ChangeKind;
-  readonly object1Designator: string;
-  readonly object1Name: string;
-  readonly object2Designator: string;
-  readonly object2Name: string;
+  readonly object1: { readonly designator: string; readonly name: string };
+  readonly object2: { readonly designator: string; readonly name: string };
   /** Tonight's figures; `undefined` where tonight does not list the encounter. */
   readonly current: ChangeFigures | undefined;
   /** Of the latest run before that lists it; `undefined` for a new one. */
@@ -53,30 +51,7 @@ export const CHANGES_COLUMNS: readonly CsvColumn<Change>[] = [
       'past: over before the start of this run',
     cell: (row) => row.kind,
   },
-  {
-    name: 'object1_designator',
-    unit: '',
-    meaning: 'Catalog number of object 1, in decimal',
-    cell: (row) => textCell(row.object1Designator),
-  },
-  {
-    name: 'object1_name',
-    unit: '',
-    meaning: 'Name of object 1, empty if the elements give none',
-    cell: (row) => textCell(row.object1Name),
-  },
-  {
-    name: 'object2_designator',
-    unit: '',
-    meaning: 'Catalog number of object 2, in decimal',
-    cell: (row) => textCell(row.object2Designator),
-  },
-  {
-    name: 'object2_name',
-    unit: '',
-    meaning: 'Name of object 2, empty if the elements give none',
-    cell: (row) => textCell(row.object2Name),
-  },
+  ...OBJECT_COLUMNS,
   {
     name: 'tca_utc',
     unit: 'UTC',

@@ -1,9 +1,15 @@
 import type { Writable } from 'node:stream';
-import { type CsvColumn, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-import { CAUTION_COLUMN, OBJECT_COLUMNS } from './shared-columns.js';
+import { type CsvColumn, fixedCell, writeCsv } from './csv-text.js';
+import {
+  CAUTION_COLUMN,
+  CLOSEST_COLUMNS,
+  DOUBTS_COLUMN,
+  OBJECT_COLUMNS,
+  slowestSpeedColumn,
+} from './shared-columns.js';
 
 /** One object of a pair that flies together. */
-export type CompanionObject = {
+type CompanionObject = {
   readonly designator: string;
   readonly name: string;
 };
@@ -26,45 +32,23 @@ export type CompanionPair = {
 };
 
 /** The columns of `companions.csv`. */
-export const COMPANION_COLUMNS: readonly CsvColumn<CompanionPair>[] = [
+const COMPANION_COLUMNS: readonly CsvColumn<CompanionPair>[] = [
   ...OBJECT_COLUMNS,
-  {
-    name: 'closest_utc',
-    unit: 'UTC',
-    meaning: 'When the two are closest in the window, ISO 8601 to the millisecond',
-    cell: (row) => utcCell(row.closestMs),
-  },
-  {
-    name: 'closest_distance_m',
-    unit: 'm',
-    meaning: 'Their smallest distance in the window, 3 decimals',
-    cell: (row) => fixedCell(row.closestDistanceM, 3),
-  },
+  ...CLOSEST_COLUMNS,
   {
     name: 'farthest_distance_m',
     unit: 'm',
     meaning: 'Their greatest distance in the window, 3 decimals',
     cell: (row) => fixedCell(row.farthestDistanceM, 3),
   },
-  {
-    name: 'slowest_relative_speed_m_s',
-    unit: 'm/s',
-    meaning: 'Their smallest relative speed in the window, 4 decimals',
-    cell: (row) => fixedCell(row.slowestMPerS, 4),
-  },
+  slowestSpeedColumn('in the window'),
   {
     name: 'fastest_relative_speed_m_s',
     unit: 'm/s',
     meaning: 'Their greatest relative speed in the window, 4 decimals',
     cell: (row) => fixedCell(row.fastestMPerS, 4),
   },
-  {
-    name: 'remarks',
-    unit: '',
-    meaning:
-      'Codes of what makes the figures less trustworthy, one blank between them; empty if there is none',
-    cell: (row) => textCell(row.remarks.join(' ')),
-  },
+  DOUBTS_COLUMN,
   CAUTION_COLUMN,
 ];
 

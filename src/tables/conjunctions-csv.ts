@@ -1,7 +1,7 @@
 import type { Writable } from 'node:stream';
 import type { Conjunction } from './conjunction.js';
 import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-import { CAUTION_COLUMN, OBJECT_COLUMNS } from './shared-columns.js';
+import { CAUTION_COLUMN, DOUBTS_COLUMN, OBJECT_COLUMNS, TCA_COLUMN } from './shared-columns.js';
 
 /**
  * The columns of `conjunctions.csv`. The order is fixed: loaders go by position, so new columns only ever
@@ -16,12 +16,7 @@ export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
       'time of closest approach and designators from low to high; rows without a probability come last',
     cell: (_row, number) => String(number),
   },
-  {
-    name: 'tca_utc',
-    unit: 'UTC',
-    meaning: 'Time of closest approach, ISO 8601 to the millisecond',
-    cell: (row) => utcCell(row.tcaMs),
-  },
+  TCA_COLUMN,
   ...OBJECT_COLUMNS,
   {
     name: 'miss_distance_m',
@@ -157,13 +152,7 @@ export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
     meaning: 'The same for object 2',
     cell: (row) => fixedCell(row.object2.elementAgeDays, 4),
   },
-  {
-    name: 'remarks',
-    unit: '',
-    meaning:
-      'Codes of what makes the figures less trustworthy, one blank between them; empty if there is none',
-    cell: (row) => textCell(row.remarks.join(' ')),
-  },
+  DOUBTS_COLUMN,
   CAUTION_COLUMN,
   {
     name: 'collision_probability_foster',

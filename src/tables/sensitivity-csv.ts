@@ -1,14 +1,14 @@
 import type { Writable } from 'node:stream';
-import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
-import { CAUTION_COLUMN } from './shared-columns.js';
+import { type CsvColumn, exponentCell, fixedCell, textCell, writeCsv } from './csv-text.js';
+import { CAUTION_COLUMN, DESIGNATOR_COLUMNS, TCA_COLUMN } from './shared-columns.js';
 
 /** How the probability of one conjunction changes when all its sigmas are scaled by one factor. */
 export type ConjunctionSensitivity = {
   /** Rank in `conjunctions.csv`. */
   readonly rank: number;
   readonly tcaMs: number;
-  readonly object1Designator: string;
-  readonly object2Designator: string;
+  readonly object1: { readonly designator: string };
+  readonly object2: { readonly designator: string };
   /** At half, once and twice the sigmas; `undefined` where no figure can be given. */
   readonly probabilityAtHalf: number | undefined;
   readonly probabilityAtOnce: number | undefined;
@@ -37,31 +37,15 @@ export function describeSensitivity(peakScale: number | undefined): string {
 }
 
 /** The columns of `sensitivity.csv`. */
-export const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] = [
+const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] = [
   {
     name: 'rank',
     unit: '',
     meaning: 'Rank of the conjunction in conjunctions.csv',
     cell: (row) => String(row.rank),
   },
-  {
-    name: 'tca_utc',
-    unit: 'UTC',
-    meaning: 'Time of closest approach, ISO 8601 to the millisecond',
-    cell: (row) => utcCell(row.tcaMs),
-  },
-  {
-    name: 'object1_designator',
-    unit: '',
-    meaning: 'Catalog number of object 1, in decimal',
-    cell: (row) => textCell(row.object1Designator),
-  },
-  {
-    name: 'object2_designator',
-    unit: '',
-    meaning: 'Catalog number of object 2, in decimal',
-    cell: (row) => textCell(row.object2Designator),
-  },
+  TCA_COLUMN,
+  ...DESIGNATOR_COLUMNS,
   {
     name: 'collision_probability_half_sigma',
     unit: '0 to 1',

@@ -1,41 +1,108 @@
 import { CAUTION, LAUNCH_CAUTION } from '../caution.js';
-import { type CsvColumn, textCell } from './csv-text.js';
+import { type CsvColumn, fixedCell, textCell, utcCell } from './csv-text.js';
 
-type Named = { readonly designator: string; readonly name: string };
+type Numbered = { readonly designator: string };
+type Named = Numbered & { readonly name: string };
+
+/** Who met whom, for tables without names. */
+export const DESIGNATOR_COLUMNS = [designatorColumn('object1'), designatorColumn('object2')] as const;
 
 /** Who met whom, for tables whose rows have both objects with designator and name. */
 export const OBJECT_COLUMNS: readonly CsvColumn<{ readonly object1: Named; readonly object2: Named }>[] = [
+  DESIGNATOR_COLUMNS[0],
+  nameColumn('object1'),
+  DESIGNATOR_COLUMNS[1],
+  nameColumn('object2'),
+];
+
+export const TCA_COLUMN: CsvColumn<{ readonly tcaMs: number }> = {
+  name: 'tca_utc',
+  unit: 'UTC',
+  meaning: 'Time of closest approach, ISO 8601 to the millisecond',
+  cell: (row) => utcCell(row.tcaMs),
+};
+
+/** When and how far apart two objects that are told once are closest. */
+export const CLOSEST_COLUMNS: readonly CsvColumn<{
+  readonly closestMs: number;
+  readonly closestDistanceM: number;
+}>[] = [
   {
-    name: 'object1_designator',
-    unit: '',
-    meaning: 'Catalog number of object 1, in decimal',
-    cell: (row) => textCell(row.object1.designator),
+    name: 'closest_utc',
+    unit: 'UTC',
+    meaning: 'When the two are closest in the window, ISO 8601 to the millisecond',
+    cell: (row) => utcCell(row.closestMs),
   },
   {
-    name: 'object1_name',
-    unit: '',
-    meaning: 'Name of object 1, empty if the elements give none',
-    cell: (row) => textCell(row.object1.name),
-  },
-  {
-    name: 'object2_designator',
-    unit: '',
-    meaning: 'Catalog number of object 2, in decimal',
-    cell: (row) => textCell(row.object2.designator),
-  },
-  {
-    name: 'object2_name',
-    unit: '',
-    meaning: 'Name of object 2, empty if the elements give none',
-    cell: (row) => textCell(row.object2.name),
+    name: 'closest_distance_m',
+    unit: 'm',
+    meaning: 'Their smallest distance in the window, 3 decimals',
+    cell: (row) => fixedCell(row.closestDistanceM, 3),
   },
 ];
+
+/** @param when for which part of the window */
+export function slowestSpeedColumn(when: string): CsvColumn<{ readonly slowestMPerS: number }> {
+  return {
+    name: 'slowest_relative_speed_m_s',
+    unit: 'm/s',
+    meaning: `Their smallest relative speed ${when}, 4 decimals`,
+    cell: (row) => fixedCell(row.slowestMPerS, 4),
+  };
+}
+
+/** @param what what the codes tell */
+export function remarksColumn(what: string): CsvColumn<{ readonly remarks: readonly string[] }> {
+  return {
+    name: 'remarks',
+    unit: '',
+    meaning: `Codes of ${what}, one blank between them; empty if there is none`,
+    cell: (row) => textCell(row.remarks.join(' ')),
+  };
+}
+
+/** What to say of a row that may not be trusted. */
+export const DOUBTS_COLUMN = remarksColumn('what makes the figures less trustworthy');
 
 /** Stands in every table. */
 export const CAUTION_COLUMN = cautionColumn(CAUTION);
 
 /** Stands in every table about a launch. */
 export const LAUNCH_CAUTION_COLUMN = cautionColumn(LAUNCH_CAUTION);
+
+/** The same columns, each explained in the words of one table. */
+export function explainedAs<Row>(
+  columns: readonly CsvColumn<Row>[],
+  meanings: readonly string[],
+): CsvColumn<Row>[] {
+  return columns.map((column, i) => ({ ...column, meaning: meanings[i] }));
+}
+
+function designatorColumn<Side extends 'object1' | 'object2'>(
+  side: Side,
+): CsvColumn<{ readonly [S in Side]: Numbered }> {
+  return {
+    name: `${side}_designator`,
+    unit: '',
+    meaning: `Catalog number of ${inWords(side)}, in decimal`,
+    cell: (row) => textCell(row[side].designator),
+  };
+}
+
+function nameColumn<Side extends 'object1' | 'object2'>(
+  side: Side,
+): CsvColumn<{ readonly [S in Side]: Named }> {
+  return {
+    name: `${side}_name`,
+    unit: '',
+    meaning: `Name of ${inWords(side)}, empty if the elements give none`,
+    cell: (row) => textCell(row[side].name),
+  };
+}
+
+function inWords(side: 'object1' | 'object2'): string {
+  return side === 'object1' ? 'object 1' : 'object 2';
+}
 
 function cautionColumn(caution: string): CsvColumn<unknown> {
   const cell = textCell(caution);

@@ -178,7 +178,7 @@ test('the order is by kind, then probability, whatever order the encounters came
   ];
   const tonight = [pair(1, 3e-6), pair(2, 5e-6), pair(3, 1e-3), pair(4, undefined), pair(5, 1e-9)];
   const order = (list: SeenEncounter[]) =>
-    compare(list, [run(...before)]).changes.map((change) => `${change.kind} ${change.object2Designator}`);
+    compare(list, [run(...before)]).changes.map((change) => `${change.kind} ${change.object2.designator}`);
   expect(order(tonight)).toEqual(['rose 2', 'rose 1', 'new 3', 'new 5', 'new 4', 'gone 6']);
   expect(order([...tonight].reverse())).toEqual(order(tonight));
 });

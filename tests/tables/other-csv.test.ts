@@ -96,8 +96,8 @@ describe('sensitivity.csv', () => {
   const row: ConjunctionSensitivity = {
     rank: 3,
     tcaMs: Date.UTC(2026, 11, 1),
-    object1Designator: '79001',
-    object2Designator: '79002',
+    object1: { designator: '79001' },
+    object2: { designator: '79002' },
     probabilityAtHalf: 2.5e-6,
     probabilityAtOnce: 1e-6,
     probabilityAtTwice: 2.6e-7,

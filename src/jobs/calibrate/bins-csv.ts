@@ -1,5 +1,5 @@
-import { CAUTION } from '../../caution.js';
 import { type CsvColumn, fixedCell, textCell } from '../../tables/csv-text.js';
+import { CAUTION_COLUMN } from '../../tables/shared-columns.js';
 import { AGE_KNOTS_DAYS } from '../../uncertainty/calibrate-age-knots.js';
 import { differenceSigmaM } from '../../uncertainty/calibrate-growth-law.js';
 import type { SigmaClassBounds } from '../../uncertainty/sigma-table.js';
@@ -9,7 +9,7 @@ import type { ObjectResult } from './object-result.js';
 import { boundCell, type ClassResult } from './sigma-table-csv.js';
 
 /** What the differences of one object or class showed at one age. */
-export type BinRow = {
+type BinRow = {
   readonly designator: string;
   readonly orbitClass: SigmaClassBounds | undefined;
   readonly standing: string;
@@ -18,7 +18,6 @@ export type BinRow = {
   readonly growth: ErrorGrowth | undefined;
 };
 
-const CAUTION_CELL = textCell(CAUTION);
 const AXES = ['radial', 'transverse', 'normal'];
 
 export const BIN_COLUMNS: readonly CsvColumn<BinRow>[] = [
@@ -64,12 +63,7 @@ export const BIN_COLUMNS: readonly CsvColumn<BinRow>[] = [
   ...axisColumns('fitted_difference_sigma', 'The same after the fitted law', (row, axis) =>
     row.growth === undefined ? undefined : differenceSigmaM(row.growth.laws[axis], row.bin.ageDays),
   ),
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
 ];
 
 /** All bins that hold anything: classes first, then objects by designator. */

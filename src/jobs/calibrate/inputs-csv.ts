@@ -1,8 +1,6 @@
-import { CAUTION } from '../../caution.js';
 import { type CsvColumn, textCell } from '../../tables/csv-text.js';
+import { CAUTION_COLUMN } from '../../tables/shared-columns.js';
 import type { FileTally } from './history-counts.js';
-
-const CAUTION_CELL = textCell(CAUTION);
 
 export const INPUT_COLUMNS: readonly CsvColumn<FileTally>[] = [
   { name: 'file', unit: '', meaning: 'Input file', cell: (row) => textCell(row.file) },
@@ -12,12 +10,7 @@ export const INPUT_COLUMNS: readonly CsvColumn<FileTally>[] = [
   count('copies', 'Sets that also stand elsewhere in the history'),
   count('superseded', 'Sets with object and epoch of another one but other elements'),
   count('rejected', 'Faulty sets'),
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
 ];
 
 function count(name: Exclude<keyof FileTally, 'file'>, meaning: string): CsvColumn<FileTally> {

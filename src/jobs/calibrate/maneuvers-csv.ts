@@ -1,5 +1,5 @@
-import { CAUTION } from '../../caution.js';
-import { type CsvColumn, fixedCell, textCell, utcCell } from '../../tables/csv-text.js';
+import { type CsvColumn, fixedCell, utcCell } from '../../tables/csv-text.js';
+import { CAUTION_COLUMN } from '../../tables/shared-columns.js';
 
 /** A change of an orbit that pairs are not formed across. */
 export type ManeuverRow = {
@@ -9,8 +9,6 @@ export type ManeuverRow = {
   readonly semiMajorAxisChangeM: number;
   readonly planeChangeM: number;
 };
-
-const CAUTION_CELL = textCell(CAUTION);
 
 export const MANEUVER_COLUMNS: readonly CsvColumn<ManeuverRow>[] = [
   {
@@ -43,10 +41,5 @@ export const MANEUVER_COLUMNS: readonly CsvColumn<ManeuverRow>[] = [
     meaning: 'Largest displacement normal to the orbit that the change of the plane makes, 1 decimal',
     cell: (row) => fixedCell(row.planeChangeM, 1),
   },
-  {
-    name: 'caution',
-    unit: '',
-    meaning: 'What the figures are, and where to decide',
-    cell: () => CAUTION_CELL,
-  },
+  CAUTION_COLUMN,
 ];
