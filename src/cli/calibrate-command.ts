@@ -3,7 +3,7 @@ import { COMMON_OPTIONS, type CommandResult, defineCommand } from './command.js'
 import { CAUTION_IN_HELP, EXIT_STATUS } from './exit-status.js';
 import { type Options, optionsHelp } from './options.js';
 
-export const CALIBRATE_OPTIONS = {
+const CALIBRATE_OPTIONS = {
   history: {
     kind: 'paths',
     value: 'FILE',

@@ -30,9 +30,9 @@ export type Command = {
 };
 
 /** Options that exclude each other: each inner list is one alternative and names the options that belong to it. */
-export type Alternatives<S extends Options> = ReadonlyArray<readonly (keyof S & string)[]>;
+type Alternatives<S extends Options> = ReadonlyArray<readonly (keyof S & string)[]>;
 
-export type CommandDefinition<S extends Options> = {
+type CommandDefinition<S extends Options> = {
   readonly name: string;
   readonly summary: string;
   /** Everything that `--help` prints. */

@@ -32,7 +32,7 @@ const SHARED = sharedOptions({
 });
 
 /** In the order of the help. */
-export const LAUNCH_OPTIONS = {
+const LAUNCH_OPTIONS = {
   batch: {
     kind: 'paths',
     value: 'FILE',
@@ -141,7 +141,7 @@ export const launchCommand = defineCommand({
  *
  * @throws InputError for options that do not fit together.
  */
-export function launchOptions(values: Values<typeof LAUNCH_OPTIONS>): LaunchOptions {
+function launchOptions(values: Values<typeof LAUNCH_OPTIONS>): LaunchOptions {
   if (values.batch.length === 0) throw new InputError('no batch: give --batch FILE');
   if (values.fleet.length === 0 && values.catalog.length === 0) {
     throw new InputError('nothing to screen against: give --catalog FILE, --fleet FILE, or both');

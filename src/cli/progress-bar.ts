@@ -1,7 +1,7 @@
 import { Presets, SingleBar } from 'cli-progress';
 import type { Progress } from '../jobs/screen-options.js';
 
-export type ProgressBar = {
+type ProgressBar = {
   readonly show: (progress: Progress) => void;
   /** Takes the bar off the screen, so that something else can be printed. */
   readonly clear: () => void;

@@ -81,10 +81,7 @@ export const screenCommand = defineCommand({
  *
  * @throws InputError for options that do not fit together.
  */
-export function screenOptions(
-  values: Values<typeof SCREEN_OPTIONS>,
-  ports: Pick<JobPorts, 'nowMs'>,
-): ScreenOptions {
+function screenOptions(values: Values<typeof SCREEN_OPTIONS>, ports: Pick<JobPorts, 'nowMs'>): ScreenOptions {
   const allOnAll = values['all-on-all'];
   const withinFleet = values['within-fleet'];
   if (!allOnAll && values.fleet.length === 0) {

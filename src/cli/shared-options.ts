@@ -5,7 +5,7 @@ import { MAX_HALF_SIZE_KM, type Options, type Values } from './options.js';
 import { volumeOf } from './volume-of.js';
 
 /** What a command has of its own in the options of every screening: defaults, and words of the help. */
-export type OwnInShared = {
+type OwnInShared = {
   readonly fleetIs: string;
   readonly catalogIs: string;
   readonly defaultDays: number;

@@ -3,7 +3,7 @@ import { InputError } from '../input-error.js';
 import type { Vector3 } from '../vector.js';
 
 /** What the options of every screening say about its volume. */
-export type VolumeValues = {
+type VolumeValues = {
   readonly 'miss-km': number | undefined;
   readonly 'volume-rtn-km': Vector3 | undefined;
   readonly 'volume-shape': 'BOX' | 'ELLIPSOID' | undefined;

@@ -13,7 +13,7 @@ import type { ObjectKnowledge } from './screened-object.js';
 
 export type OtherFile = { readonly file: string; readonly sha256: string };
 
-export type ElementInputs = {
+type ElementInputs = {
   readonly fleet: readonly ElementSet[];
   readonly catalog: readonly ElementSet[];
   /** Rejected and superseded sets, in the order of the files. */

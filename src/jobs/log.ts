@@ -1,9 +1,9 @@
 import { type DestinationStream, pino, stdTimeFunctions } from 'pino';
 import { prettyFactory } from 'pino-pretty';
 
-export type LogFormat = 'text' | 'json';
+type LogFormat = 'text' | 'json';
 
-export type LogFields = Readonly<Record<string, unknown>>;
+type LogFields = Readonly<Record<string, unknown>>;
 
 /** What a job tells about its own course, apart from its results. */
 export type Log = {
@@ -12,7 +12,7 @@ export type Log = {
   readonly error: (message: string, fields?: LogFields) => void;
 };
 
-export type LogSettings = {
+type LogSettings = {
   readonly format: LogFormat;
   /** Takes each finished line with its newline. */
   readonly write: (line: string) => void;

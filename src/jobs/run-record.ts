@@ -45,7 +45,7 @@ export type RunRecord = {
   readonly environment: RunEnvironment;
 };
 
-export type RunEnvironment = {
+type RunEnvironment = {
   readonly startedUtc: string;
   readonly finishedUtc: string;
   /** Seconds by stage. */

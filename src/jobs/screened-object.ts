@@ -33,7 +33,7 @@ export type ObjectKnowledge = {
   readonly defaultSigmas: SigmaTable;
 };
 
-export type Validity = { readonly fromMs: number; readonly toMs: number };
+type Validity = { readonly fromMs: number; readonly toMs: number };
 
 const ALWAYS: Validity = { fromMs: Number.NEGATIVE_INFINITY, toMs: Number.POSITIVE_INFINITY };
 

@@ -10,7 +10,7 @@ import {
 } from './message-keywords.js';
 
 /** Frames that a conjunction message may use. */
-export type MessageFrame = 'GCRF' | 'EME2000' | 'ITRF';
+type MessageFrame = 'GCRF' | 'EME2000' | 'ITRF';
 
 /** One object of a conjunction message. */
 export type ConjunctionMessageObject = {

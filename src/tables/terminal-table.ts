@@ -23,7 +23,7 @@ const NEAREST_WITHOUT_PROBABILITY = 3;
 const LEAST_SHOWN = 1e-30;
 
 /** Age of one object's elements. */
-export type ElementAge = { readonly designator: string; readonly ageDays: number };
+type ElementAge = { readonly designator: string; readonly ageDays: number };
 
 /** All conjunctions in their ranked order; rows are made only where they are shown. */
 export type RankedConjunctions = {

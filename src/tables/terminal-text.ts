@@ -10,7 +10,7 @@ export function terminalText(text: string): string {
 }
 
 /** Columns that `text` takes on a terminal: wide letters two, combining marks none. */
-export function terminalWidth(text: string): number {
+function terminalWidth(text: string): number {
   return stringWidth(text);
 }
 

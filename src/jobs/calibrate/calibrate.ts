@@ -23,7 +23,7 @@ import { type ClassResult, SIGMA_TABLE_COLUMNS, sigmaTableHead, sigmaTableRows }
 import { type HistoryStudy, studyHistory } from './study-history.js';
 import { createUnusedSets } from './unused-sets.js';
 
-export type CalibrateOptions = {
+type CalibrateOptions = {
   /** Files and glob patterns, `-` for standard input. */
   readonly historyPaths: readonly string[];
   /** The table; the other results stand beside it. */

@@ -4,7 +4,7 @@ import type { Vector3 } from '../../vector.js';
 import type { AgeBin } from './age-bins.js';
 
 /** How much there must be behind a growth law. */
-export type Demand = {
+type Demand = {
   readonly minSamples: number;
   readonly minDisjoint: number;
   readonly minObjects: number;

@@ -5,7 +5,7 @@ import { type BufferedFile, createBufferedFile } from './buffered-file.js';
 const VALUES = 6;
 const BYTES = VALUES * 8;
 
-export type HeldBackDifference = {
+type HeldBackDifference = {
   /** Whether the object has rows of its own: then the class is not what a screening would use. */
   readonly hasOwnRows: boolean;
   readonly orbitClass: number;

@@ -8,7 +8,7 @@ import { type ErrorGrowth, tableAgesDays, tableSigmaRtnM } from './error-growth.
 import type { ObjectResult } from './object-result.js';
 
 /** One row of the table that `screen --sigma` reads. */
-export type SigmaTableRow = {
+type SigmaTableRow = {
   /** `''` in the row of a class. */
   readonly designator: string;
   /** `undefined` in the row of an object. */

@@ -4,7 +4,7 @@ import { relativeStateAt, slowTcas } from '../../encounters/refine.js';
 import { sgp4StateAt } from '../../ephemeris/sgp4-state.js';
 
 /** A stretch of time in which an object flies on one set; milliseconds of UTC since 1970-01-01. */
-export type FollowedPhase = {
+type FollowedPhase = {
   readonly record: SatRec;
   readonly epochMs: number;
   readonly fromMs: number;

@@ -18,7 +18,7 @@ export type LiftoffSearch = {
 };
 
 /** More copies of the batch in one search would cost memory: for their records, and for all that they meet. */
-export const MOST_COPIES = 3100;
+const MOST_COPIES = 3100;
 
 /**
  * Puts all slipped copies of the batch as primaries into one search, each with a time of its own in which it

@@ -15,7 +15,7 @@ export type BatchPhase = BatchSet & {
 };
 
 /** A stretch of the window in which no set says where an object is. */
-export type PhaseGap = {
+type PhaseGap = {
   readonly designator: string;
   readonly fromMs: number;
   readonly toMs: number;

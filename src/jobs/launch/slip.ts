@@ -3,7 +3,7 @@ import { InputError } from '../../input-error.js';
 import type { SlipRange } from './launch-options.js';
 
 /** Nominal mean angular velocity of the Earth, rad/s (IERS and GRS80; figure from memory). */
-export const EARTH_ROTATION_RAD_PER_S = 7.292115e-5;
+const EARTH_ROTATION_RAD_PER_S = 7.292115e-5;
 
 /** A day of liftoffs by the minute, and one. */
 export const MOST_LIFTOFFS = 1441;
