@@ -32,8 +32,9 @@ export type StepBounds = {
   readonly widestReachKm: number;
   /** No two ordinary objects whose directions are further apart than this can meet, radians. */
   readonly ordinaryAngle: number;
-  /** The same for an ordinary object and a fast one. */
+  /** The same for an ordinary object and a fast one, and for two fast ones. */
   readonly fastAngle: number;
+  readonly fastestAngle: number;
 };
 
 const ACCELERATION_SLACK_KM = 0.1;
@@ -55,6 +56,7 @@ export function stepBounds(missKm: number, halfStepS: number, widestToleranceKm:
     widestReachKm,
     ordinaryAngle: 2 * ORDINARY_RATE_PER_S * halfStepS + 1.01 * seenAngle,
     fastAngle: (ORDINARY_RATE_PER_S + FASTEST_RATE_PER_S) * halfStepS + 1.01 * seenAngle,
+    fastestAngle: 2 * FASTEST_RATE_PER_S * halfStepS + 1.01 * seenAngle,
   };
 }
 

@@ -19,7 +19,7 @@ export type DirectionCells = {
 /** For each cell a list of cells: those of cell c are `cells` from `start[c]` to before `start[c + 1]`. */
 export type CellLists = { readonly start: Int32Array; readonly cells: Int32Array };
 
-const BANDS = 4096;
+export const BANDS = 4096;
 /** Rows and cells per angle between two objects that can meet. */
 const ROWS_PER_ANGLE = 1;
 const CELLS_PER_ANGLE = 1;

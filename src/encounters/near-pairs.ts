@@ -1,254 +1,132 @@
 import { EARTH_RADIUS_KM } from '../ephemeris/gravity.js';
 import { FASTEST_RELATIVE_KM_PER_S, lineReachKm, type StepBounds, tidePerS2 } from './bounds.js';
-import { type Columns, ENTRY_SIZE, HIGH, HIGHEST, LOW } from './columns.js';
 import { type CellLists, cellsWithin, type DirectionCells, filterLists } from './direction-cells.js';
 import { shellFloorKm } from './shell.js';
-import { RECORD_SIZE, type StepStates } from './step-states.js';
+import {
+  FAST,
+  FLAT,
+  OTHER_FAST,
+  OTHER_FLAT,
+  OTHER_STEEP,
+  RECORD_LOW,
+  RECORD_SIZE,
+  STEEP,
+  type StepKernel,
+} from './step-kernel.js';
 
 /** Pairs of one step whose straight lines pass close enough to be looked at on their tracks. */
-export type NearPairs = {
-  size: number;
-  first: Int32Array;
-  second: Int32Array;
-  /** Pairs looked at so far, for choosing the step. */
-  visits: number;
-};
+export type NearPairs = { size: number; first: Int32Array; second: Int32Array };
 
 export function createNearPairs(): NearPairs {
-  return { size: 0, first: new Int32Array(1024), second: new Int32Array(1024), visits: 0 };
+  return { size: 0, first: new Int32Array(1024), second: new Int32Array(1024) };
 }
 
-/** For each cell, cells in which its objects can have a partner. */
-export type CellPartners = {
-  /** The cell alone. */
-  readonly own: CellLists;
-  /** Between two ordinary objects. */
-  readonly ordinary: CellLists;
-  /** Of those the ones with a lower number: the columns filled by these hold the objects of later cells. */
-  readonly earlier: CellLists;
-  /** Between an ordinary object and a fast one. */
-  readonly fast: CellLists;
-};
+/** Numbers of the lists of cells that `listsOf` makes: which cells can hold a partner for an object in a cell. */
+const ORDINARY = 0;
+/** Of those, the cell itself and the ones with a higher number. */
+const ORDINARY_LATER = 1;
+/** Between an ordinary object and a fast one, and between two fast ones. */
+const WITH_FAST = 2;
+const BOTH_FAST = 3;
+const BOTH_FAST_LATER = 4;
 
-export function cellPartners(cells: DirectionCells, bounds: StepBounds): CellPartners {
+/** For each cell, the cells in which its objects can have a partner, by kinds of objects. */
+export function listsOf(cells: DirectionCells, bounds: StepBounds): CellLists[] {
   const ordinary = cellsWithin(cells, bounds.ordinaryAngle);
-  return {
-    own: filterLists(ordinary, (cell, other) => other === cell),
+  const fast = cellsWithin(cells, bounds.fastestAngle);
+  const later = (cell: number, other: number) => other >= cell;
+  return [
     ordinary,
-    earlier: filterLists(ordinary, (cell, other) => other < cell),
-    fast: cellsWithin(cells, bounds.fastAngle),
-  };
+    filterLists(ordinary, later),
+    cellsWithin(cells, bounds.fastAngle),
+    fast,
+    filterLists(fast, later),
+  ];
 }
 
-/** What the pair finders share within one step. */
-export type Sweep = {
-  readonly step: StepStates;
-  readonly halfStepS: number;
-  readonly baseReachKm: number;
-  /** eps of each object. */
-  readonly toleranceKm: Float64Array;
-  /** Reach of a straight line for the fastest pair at the Earth's surface: what no pair exceeds. */
-  readonly widestReachKm: number;
-  readonly pairs: NearPairs;
-};
+/** Reach of a straight line for the fastest pair at the Earth's surface: what no pair exceeds, km. */
+function widestLineReachKm({ halfStepS, widestReachKm }: StepBounds): number {
+  return lineReachKm(halfStepS, widestReachKm, tidePerS2(EARTH_RADIUS_KM - 1), FASTEST_RELATIVE_KM_PER_S);
+}
 
-export function sweepOf(
-  step: StepStates,
+/** Hands over every pair that can come within reach in the step that the kernel has evaluated. */
+export function sweepStep(
+  { sweep }: Pick<StepKernel, 'sweep'>,
   bounds: StepBounds,
-  toleranceKm: Float64Array,
-  pairs: NearPairs,
-): Sweep {
-  return {
-    step,
-    halfStepS: bounds.halfStepS,
-    baseReachKm: bounds.baseReachKm,
-    toleranceKm,
-    widestReachKm: lineReachKm(
-      bounds.halfStepS,
-      bounds.widestReachKm,
-      tidePerS2(EARTH_RADIUS_KM - 1),
-      FASTEST_RELATIVE_KM_PER_S,
-    ),
-    pairs,
-  };
+  withinPrimaries: boolean,
+  hasOthers: boolean,
+): void {
+  const reachKm = widestLineReachKm(bounds);
+  if (withinPrimaries) {
+    sweep(FLAT, FLAT, ORDINARY_LATER, true, reachKm);
+    sweep(STEEP, STEEP, ORDINARY_LATER, true, reachKm);
+    sweep(STEEP, FLAT, ORDINARY, false, reachKm);
+    sweep(FAST, FLAT, WITH_FAST, false, reachKm);
+    sweep(FAST, STEEP, WITH_FAST, false, reachKm);
+    sweep(FAST, FAST, BOTH_FAST_LATER, true, reachKm);
+  }
+  if (!hasOthers) return;
+  for (const own of [FLAT, STEEP]) {
+    sweep(own, OTHER_FLAT, ORDINARY, false, reachKm);
+    sweep(OTHER_STEEP, own, ORDINARY, false, reachKm);
+    sweep(OTHER_FAST, own, WITH_FAST, false, reachKm);
+  }
+  sweep(FAST, OTHER_FLAT, WITH_FAST, false, reachKm);
+  sweep(FAST, OTHER_STEEP, WITH_FAST, false, reachKm);
+  sweep(FAST, OTHER_FAST, BOTH_FAST, false, reachKm);
 }
 
-/** Bound 4 of `bounds.ts` on a pair. */
-function lookAt(sweep: Sweep, a: number, b: number): void {
-  const { halfStepS, step } = sweep;
-  const { records } = step;
-  const i = RECORD_SIZE * a;
-  const k = RECORD_SIZE * b;
-  const x = records[k] - records[i];
-  const y = records[k + 1] - records[i + 1];
-  const z = records[k + 2] - records[i + 2];
-  const vx = records[k + 3] - records[i + 3];
-  const vy = records[k + 4] - records[i + 4];
-  const vz = records[k + 5] - records[i + 5];
-  const distance2 = x * x + y * y + z * z;
-  const along = x * vx + y * vy + z * vz;
-  const speed2 = vx * vx + vy * vy + vz * vz;
-  const absAlong = Math.abs(along);
-  const inside = absAlong <= speed2 * halfStepS;
-  // Squared distance of the line times speed2 where the nearest point lies inside the step.
-  const line = inside
-    ? distance2 * speed2 - along * along
-    : distance2 + halfStepS * (halfStepS * speed2 - 2 * absAlong);
-  const tide = tidePerS2(shellFloorKm(Math.min(step.low[a], step.low[b])));
-  const reachKm = sweep.baseReachKm + sweep.toleranceKm[a] + sweep.toleranceKm[b];
-  const reach = lineReachKm(halfStepS, reachKm, tide, Math.sqrt(speed2));
-  if (line > reach * reach * (inside ? speed2 : 1)) return;
-  const { pairs } = sweep;
+/**
+ * Takes those of the pairs that pass bound 4 of `bounds.ts` with their own speed, height and tolerances.
+ *
+ * @param handed two object numbers a pair
+ * @param records of all objects, as in `StepKernel`
+ * @param toleranceKm eps of each object
+ */
+export function takeNearPairs(
+  pairs: NearPairs,
+  handed: Int32Array,
+  records: Float32Array,
+  { halfStepS, baseReachKm }: StepBounds,
+  toleranceKm: Float64Array,
+): void {
+  for (let n = 0; n < handed.length; n += 2) {
+    const a = handed[n];
+    const b = handed[n + 1];
+    const i = RECORD_SIZE * a;
+    const k = RECORD_SIZE * b;
+    const x = records[k] - records[i];
+    const y = records[k + 1] - records[i + 1];
+    const z = records[k + 2] - records[i + 2];
+    const vx = records[k + 3] - records[i + 3];
+    const vy = records[k + 4] - records[i + 4];
+    const vz = records[k + 5] - records[i + 5];
+    const distance2 = x * x + y * y + z * z;
+    const along = Math.abs(x * vx + y * vy + z * vz);
+    const speed2 = vx * vx + vy * vy + vz * vz;
+    const inside = along <= speed2 * halfStepS;
+    // Squared distance of the line times speed2 where the nearest point lies inside the step.
+    const line = inside
+      ? distance2 * speed2 - along * along
+      : distance2 + halfStepS * (halfStepS * speed2 - 2 * along);
+    const tide = tidePerS2(shellFloorKm(Math.min(records[i + RECORD_LOW], records[k + RECORD_LOW])));
+    const reachKm = baseReachKm + toleranceKm[a] + toleranceKm[b];
+    const reach = lineReachKm(halfStepS, reachKm, tide, Math.sqrt(speed2));
+    if (line <= reach * reach * (inside ? speed2 : 1)) add(pairs, Math.min(a, b), Math.max(a, b));
+  }
+}
+
+function add(pairs: NearPairs, first: number, second: number): void {
   if (pairs.size === pairs.first.length) {
     pairs.first = grown(pairs.first);
     pairs.second = grown(pairs.second);
   }
-  pairs.first[pairs.size] = Math.min(a, b);
-  pairs.second[pairs.size++] = Math.max(a, b);
+  pairs.first[pairs.size] = first;
+  pairs.second[pairs.size++] = second;
 }
 
 function grown(array: Int32Array): Int32Array {
   const larger = new Int32Array(2 * array.length);
   larger.set(array);
   return larger;
-}
-
-/**
- * Pairs of the objects of one kind with each other.
- *
- * @param own the columns of the cells
- * @param later the columns of what lies in later cells within reach
- */
-export function findPairsWithin(sweep: Sweep, own: Columns, later: Columns): void {
-  const cellCount = own.start.length - 1;
-  for (let cell = 0; cell < cellCount; cell++) {
-    const start = own.start[cell];
-    const end = own.start[cell + 1];
-    if (start === end) continue;
-    sweepColumn(sweep, own, start, end);
-    sweepColumns(sweep, own, start, end, later, later.start[cell], later.start[cell + 1]);
-  }
-}
-
-/** Pairs between objects in two sets of columns, cell by cell; the second without steep objects. */
-export function findPairsAcross(sweep: Sweep, columns: Columns, others: Columns): void {
-  const cellCount = columns.start.length - 1;
-  for (let cell = 0; cell < cellCount; cell++) {
-    const start = columns.start[cell];
-    const end = columns.start[cell + 1];
-    if (start === end) continue;
-    sweepColumns(sweep, columns, start, end, others, others.start[cell], others.start[cell + 1]);
-  }
-}
-
-/** Pairs within one column. */
-function sweepColumn(sweep: Sweep, { entries }: Columns, start: number, end: number): void {
-  const last = ENTRY_SIZE * end;
-  for (let i = ENTRY_SIZE * start; i < last; i += ENTRY_SIZE) {
-    sweepRun(sweep, entries[i], entries[i + LOW], entries[i + HIGH], entries, i + ENTRY_SIZE, last);
-  }
-}
-
-/** Pairs between two columns. */
-function sweepColumns(
-  sweep: Sweep,
-  { entries }: Columns,
-  start: number,
-  end: number,
-  others: Columns,
-  otherStart: number,
-  otherEnd: number,
-): void {
-  const last = ENTRY_SIZE * otherEnd;
-  let first = ENTRY_SIZE * otherStart;
-  for (let i = ENTRY_SIZE * start; i < ENTRY_SIZE * end; i += ENTRY_SIZE) {
-    const bottom = entries[i + LOW];
-    // Columns rise in `LOW` and `HIGHEST`: whoever ends below this one ends below all that follow it.
-    while (first < last && others.entries[first + HIGHEST] < bottom) first += ENTRY_SIZE;
-    if (first === last) break;
-    sweepRun(sweep, entries[i], bottom, entries[i + HIGH], others.entries, first, last);
-  }
-}
-
-/**
- * Looks at an object and those of a run of entries that start no higher than it ends. Here the search spends
- * most of its time: nearly all pairs fail by the distance at which the straight lines of their motion pass.
- */
-function sweepRun(
-  sweep: Sweep,
-  a: number,
-  bottom: number,
-  top: number,
-  entries: Int32Array,
-  from: number,
-  to: number,
-): void {
-  const { records } = sweep.step;
-  const widest2 = sweep.widestReachKm * sweep.widestReachKm;
-  const i = RECORD_SIZE * a;
-  const x = records[i];
-  const y = records[i + 1];
-  const z = records[i + 2];
-  const vx = records[i + 3];
-  const vy = records[i + 4];
-  const vz = records[i + 5];
-  let k = from;
-  for (; k < to && entries[k + LOW] <= top; k += ENTRY_SIZE) {
-    const at = RECORD_SIZE * entries[k];
-    const dx = records[at] - x;
-    const dy = records[at + 1] - y;
-    const dz = records[at + 2] - z;
-    const dvx = records[at + 3] - vx;
-    const dvy = records[at + 4] - vy;
-    const dvz = records[at + 5] - vz;
-    const along = dx * dvx + dy * dvy + dz * dvz;
-    const speed2 = dvx * dvx + dvy * dvy + dvz * dvz;
-    if ((dx * dx + dy * dy + dz * dz - widest2) * speed2 > along * along) continue;
-    if (entries[k + HIGH] >= bottom) lookAt(sweep, a, entries[k]);
-  }
-  sweep.pairs.visits += (k - from) / ENTRY_SIZE;
-}
-
-/**
- * Pairs between listed objects and those in columns.
- *
- * @param objects object indices, `count` of them
- * @param lists for each cell, the columns that can hold partners of its objects
- */
-export function findPairsWithColumns(
-  sweep: Sweep,
-  objects: Int32Array,
-  count: number,
-  { start, entries }: Columns,
-  lists: CellLists,
-): void {
-  const { cell, low, high } = sweep.step;
-  for (let m = 0; m < count; m++) {
-    const a = objects[m];
-    const home = cell[a];
-    for (let n = lists.start[home]; n < lists.start[home + 1]; n++) {
-      const last = ENTRY_SIZE * start[lists.cells[n] + 1];
-      let first = ENTRY_SIZE * start[lists.cells[n]];
-      while (first < last && entries[first + HIGHEST] < low[a]) first += ENTRY_SIZE;
-      if (first < last) sweepRun(sweep, a, low[a], high[a], entries, first, last);
-    }
-  }
-}
-
-/** Pairs between the objects of two lists, or within one list that is given twice. */
-export function findPairsOfLists(
-  sweep: Sweep,
-  first: Int32Array,
-  firstCount: number,
-  second: Int32Array,
-  secondCount: number,
-): void {
-  const { low, high } = sweep.step;
-  for (let i = 0; i < firstCount; i++) {
-    const a = first[i];
-    for (let k = first === second ? i + 1 : 0; k < secondCount; k++) {
-      const b = second[k];
-      if (low[a] <= high[b] && low[b] <= high[a]) lookAt(sweep, a, b);
-    }
-  }
 }

@@ -12,15 +12,21 @@ export type TrackCursor = {
   readonly segmentEndS: Float64Array;
 };
 
-/** @param coefficients room for the segments, `SEGMENT_SIZE` numbers an object, that the cursor makes its own */
-export function createTrackCursor(tracks: SlabTracks, coefficients: Float64Array): TrackCursor {
-  const count = tracks.firstNode.length;
+/** Room for a cursor, which the next one may use again: `SEGMENT_SIZE` coefficients an object, and one time each. */
+export type CursorRoom = Omit<TrackCursor, 'tracks'>;
+
+export function createCursorRoom(objectCount: number): CursorRoom {
   return {
-    tracks,
-    coefficients,
-    segmentStartS: new Float64Array(count).fill(Number.POSITIVE_INFINITY),
-    segmentEndS: new Float64Array(count).fill(Number.NEGATIVE_INFINITY),
+    coefficients: new Float64Array(SEGMENT_SIZE * objectCount),
+    segmentStartS: new Float64Array(objectCount),
+    segmentEndS: new Float64Array(objectCount),
   };
+}
+
+export function createTrackCursor(tracks: SlabTracks, room: CursorRoom): TrackCursor {
+  room.segmentStartS.fill(Number.POSITIVE_INFINITY);
+  room.segmentEndS.fill(Number.NEGATIVE_INFINITY);
+  return { tracks, ...room };
 }
 
 /** Brings one object's segment to the time; before its first and past its last segment it stays on that. */

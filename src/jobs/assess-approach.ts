@@ -1,5 +1,5 @@
+import type { ClosestApproach } from '../encounters/closest-approach.js';
 import type { SearchObjects } from '../encounters/search-problem.js';
-import type { ClosestApproach } from '../encounters/search-slab.js';
 import { passageThrough } from '../encounters/volume.js';
 import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 import type { OrbitState } from '../ephemeris/state.js';

@@ -6,28 +6,17 @@ import {
   stepBounds,
   tidePerS2,
 } from '../../src/encounters/bounds.js';
-import {
-  createColumns,
-  ENTRY_SIZE,
-  fillColumns,
-  HIGHEST,
-  LOW,
-  sortByHeight,
-} from '../../src/encounters/columns.js';
 import { cellOf, cellsWithin, directionCells } from '../../src/encounters/direction-cells.js';
-import {
-  cellPartners,
-  createNearPairs,
-  findPairsAcross,
-  findPairsOfLists,
-  findPairsWithColumns,
-  findPairsWithin,
-  sweepOf,
-} from '../../src/encounters/near-pairs.js';
+import { createNearPairs, listsOf, sweepStep, takeNearPairs } from '../../src/encounters/near-pairs.js';
 import { shellFloorKm, shellOf } from '../../src/encounters/shell.js';
-import { createStepBatch, evaluateSteps, FAST, FLAT, STEEP } from '../../src/encounters/step-states.js';
-import { SEGMENT_SIZE } from '../../src/ephemeris/septic.js';
-import { createTrackCursor } from '../../src/ephemeris/track-cursor.js';
+import {
+  createStepKernel,
+  FLAT,
+  RECORD_LOW,
+  RECORD_SIZE,
+  type StepKernel,
+} from '../../src/encounters/step-kernel.js';
+import { createTrackCursor, moveCursor } from '../../src/ephemeris/track-cursor.js';
 import type { SlabTracks } from '../../src/ephemeris/tracks.js';
 import { move, stateOnOrbit } from '../ephemeris/motion-under-gravity.js';
 import { type Random, seededRandom } from '../synthetic/random.js';
@@ -155,6 +144,47 @@ function crowd(random: Random, count: number): { states: number[][]; curvature: 
 /** Parts of a step that paths are looked at in. */
 const PATH_STEPS = 50;
 
+type Crowd = { readonly states: readonly (readonly number[])[]; readonly curvature: Float64Array };
+
+/** The pairs of one step of a crowd, each as `a b` as often as it was handed over. */
+function pairsOf(
+  { states, curvature }: Crowd,
+  primaryCount: number,
+  halfStepS: number,
+  missKm: number,
+): { found: string[]; kernel: StepKernel } {
+  const count = states.length;
+  const lengthS = 2 * halfStepS + 20;
+  const tracks = tracksOf(states, lengthS);
+  const toleranceKm = new Float64Array(count).fill(0.05);
+  const bounds = stepBounds(missKm, halfStepS, 0.05);
+  const cells = directionCells(bounds.ordinaryAngle);
+  const lists = listsOf(cells, bounds);
+  const listed = lists.reduce((sum, each) => sum + each.start.length + each.cells.length, 0);
+  const pairs = createNearPairs();
+  const kernel = createStepKernel(
+    count,
+    primaryCount,
+    { cells: cells.count, rows: cells.firstCell.length, listed },
+    (handed) => takeNearPairs(pairs, handed, kernel.records, bounds, toleranceKm),
+  );
+  kernel.curvature.set(curvature);
+  kernel.toS.set(tracks.endS);
+  kernel.segmentS.set(tracks.segmentS);
+  kernel.marginKm.set(toleranceKm.map((tolerance) => bounds.baseReachKm / 2 + tolerance));
+  kernel.layCells(cells, lists);
+  const cursor = createTrackCursor(tracks, { ...kernel, segmentEndS: new Float64Array(count) });
+  for (let k = 0; k < count; k++) {
+    kernel.candidates[k] = k;
+    moveCursor(cursor, k, lengthS / 2);
+  }
+  kernel.evaluate(count, lengthS / 2, halfStepS);
+  sweepStep(kernel, bounds, true, primaryCount < count);
+  const found: string[] = [];
+  for (let k = 0; k < pairs.size; k++) found.push(`${pairs.first[k]} ${pairs.second[k]}`);
+  return { found, kernel };
+}
+
 describe('pairs of one step', () => {
   it.each([
     { halfStepS: 24, missKm: 60 },
@@ -164,57 +194,19 @@ describe('pairs of one step', () => {
     const random = seededRandom(31);
     const count = 2000;
     const { states, curvature } = crowd(random, count);
-    const lengthS = 2 * halfStepS + 20;
-    const tracks = tracksOf(states, lengthS);
-    const toleranceKm = new Float64Array(count).fill(0.05);
-    const bounds = stepBounds(missKm, halfStepS, 0.05);
-    const cells = directionCells(bounds.ordinaryAngle);
-    const partners = cellPartners(cells, bounds);
-    const batch = createStepBatch(count, 1);
-    const all = Int32Array.from({ length: count }, (_, k) => k);
-    evaluateSteps(
-      batch,
-      createTrackCursor(tracks, new Float64Array(SEGMENT_SIZE * count)),
-      all,
-      lengthS / 2,
-      1,
-      {
-        cells,
-        halfStepS,
-        fromS: new Float64Array(count),
-        toS: tracks.endS,
-        curvature,
-        marginKm: toleranceKm.map((tolerance) => bounds.baseReachKm / 2 + tolerance),
-      },
+    const { found: handed, kernel } = pairsOf({ states, curvature }, count, halfStepS, missKm);
+    const found = new Set(handed);
+    expect(found.size, 'a pair twice').toBe(handed.length);
+    const primaryCount = 900;
+    const sides = pairsOf({ states, curvature }, primaryCount, halfStepS, missKm).found;
+    const expected = handed.filter((pair) => Number(pair.split(' ')[0]) < primaryCount);
+    expect(sides.sort()).toEqual(expected.sort());
+    const widths = Array.from(
+      states,
+      (_, k) =>
+        kernel.records[RECORD_SIZE * k + RECORD_LOW + 1] - kernel.records[RECORD_SIZE * k + RECORD_LOW],
     );
-    const step = batch.steps[0];
-    const kinds = [FLAT, STEEP, FAST].map((kind) => all.filter((object) => step.kind[object] === kind));
-    expect(Math.min(...kinds.map((objects) => objects.length))).toBeGreaterThan(10);
-    const [flat, steep, fast] = kinds;
-    const filled = (objects: Int32Array, lists: typeof partners.own) => {
-      const sorted = new Int32Array(objects.length);
-      sortByHeight(objects, objects.length, step.low, sorted);
-      const columns = createColumns(cells.count);
-      fillColumns(columns, sorted, objects.length, step, lists);
-      return columns;
-    };
-    const pairs = createNearPairs();
-    const sweep = sweepOf(step, bounds, toleranceKm, pairs);
-    const flatOwn = filled(flat, partners.own);
-    const flatLater = filled(flat, partners.earlier);
-    const steepOwn = filled(steep, partners.own);
-    const steepLater = filled(steep, partners.earlier);
-    findPairsWithin(sweep, flatOwn, flatLater);
-    findPairsWithin(sweep, steepOwn, steepLater);
-    findPairsAcross(sweep, steepOwn, flatOwn);
-    findPairsAcross(sweep, steepOwn, flatLater);
-    findPairsAcross(sweep, steepLater, flatOwn);
-    findPairsWithColumns(sweep, fast, fast.length, flatOwn, partners.fast);
-    findPairsWithColumns(sweep, fast, fast.length, steepOwn, partners.fast);
-    findPairsOfLists(sweep, fast, fast.length, fast, fast.length);
-    const found = new Set<string>();
-    for (let k = 0; k < pairs.size; k++) found.add(`${pairs.first[k]} ${pairs.second[k]}`);
-    expect(found.size, 'a pair twice').toBe(pairs.size);
+    expect(widths.filter((shells) => shells > 100).length, 'steep orbits').toBeGreaterThan(10);
 
     const paths = states.map((state) => pathOf(state, halfStepS));
     const missed: string[] = [];
@@ -225,13 +217,7 @@ describe('pairs of one step', () => {
         if (lowest > missKm) continue;
         close++;
         if (!found.has(`${a} ${b}`)) missed.push(`${a} ${b}: ${lowest} km`);
-        expectOneMinimum(
-          states[a],
-          states[b],
-          halfStepS,
-          bounds.baseReachKm + 0.1,
-          distancesOf(paths[a], paths[b]),
-        );
+        expectOneMinimum(states[a], states[b], halfStepS, missKm + 0.2, distancesOf(paths[a], paths[b]));
       }
     }
     expect(missed).toEqual([]);
@@ -297,41 +283,75 @@ function expectOneMinimum(
   ).toBe(true);
 }
 
-describe('columns', () => {
-  it('hold the objects of their cells in order of height, with the highest end so far', () => {
-    const random = seededRandom(41);
-    const count = 3000;
-    const cells = directionCells(0.3);
-    const lists = cellsWithin(cells, 0.3);
-    const { steps } = createStepBatch(count, 1);
-    const step = steps[0];
+describe('the kernel', () => {
+  const halfStepS = 60;
+
+  it('hands over each pair whose straight lines pass near, once, and no other', () => {
+    const random = seededRandom(43);
+    // More pairs than are handed over at a time.
+    const count = 5000;
+    const states = Array.from({ length: count }, () =>
+      stateOnOrbit(random, random.between(7000, 7010), 0.0005, random.between(0, 6)),
+    );
+    const reachKm = 300;
+    const bounds = stepBounds(reachKm, halfStepS, 0.05);
+    const cells = directionCells(bounds.ordinaryAngle);
+    const lists = listsOf(cells, bounds);
+    const times = new Map<string, number>();
+    let calls = 0;
+    const kernel = createStepKernel(
+      count,
+      count,
+      { cells: cells.count, rows: cells.firstCell.length, listed: 100_000 },
+      (handed) => {
+        calls++;
+        for (let k = 0; k < handed.length; k += 2) {
+          const pair = `${Math.min(handed[k], handed[k + 1])} ${Math.max(handed[k], handed[k + 1])}`;
+          times.set(pair, (times.get(pair) ?? 0) + 1);
+        }
+      },
+    );
+    const tracks = tracksOf(states, 200);
+    kernel.toS.set(tracks.endS);
+    kernel.segmentS.set(tracks.segmentS);
+    kernel.marginKm.fill(20);
+    kernel.layCells(cells, lists);
+    const cursor = createTrackCursor(tracks, { ...kernel, segmentEndS: new Float64Array(count) });
     for (let k = 0; k < count; k++) {
-      step.cell[k] = random.integer(cells.count);
-      step.low[k] = random.integer(3000);
-      step.high[k] = step.low[k] + random.integer(60);
+      kernel.candidates[k] = k;
+      moveCursor(cursor, k, 100);
     }
-    const objects = Int32Array.from({ length: count }, (_, k) => count - 1 - k);
-    const sorted = new Int32Array(count);
-    sortByHeight(objects, count, step.low, sorted);
-    const columns = createColumns(cells.count);
-    fillColumns(columns, sorted, count, step, lists);
-    let wrong = 0;
-    for (let cell = 0; cell < cells.count; cell++) {
-      const own = lists.cells.subarray(lists.start[cell], lists.start[cell + 1]);
-      const expected = [...objects].filter((object) => own.includes(step.cell[object]));
-      const held: number[] = [];
-      let highest = -1;
-      for (let entry = columns.start[cell]; entry < columns.start[cell + 1]; entry++) {
-        const at = ENTRY_SIZE * entry;
-        const object = columns.entries[at];
-        highest = Math.max(highest, step.high[object]);
-        const ends = [...columns.entries.subarray(at + LOW, at + HIGHEST + 1)];
-        const inOrder = held.length === 0 || step.low[object] >= step.low[held[held.length - 1]];
-        if (!inOrder || `${ends}` !== `${[step.low[object], step.high[object], highest]}`) wrong++;
-        held.push(object);
+    kernel.evaluate(count, 100, halfStepS);
+    kernel.sweep(FLAT, FLAT, 1, true, reachKm);
+    expect(calls).toBeGreaterThan(1);
+    expect([...times.values()].every((each) => each === 1)).toBe(true);
+    const wide = [...times.keys()].filter((pair) => {
+      const [a, b] = pair.split(' ').map(Number);
+      return straightKm(kernel.records, a, b, halfStepS) > reachKm + 1;
+    });
+    expect(wide).toEqual([]);
+    const missed: string[] = [];
+    for (let a = 0; a < count; a++) {
+      for (let b = a + 1; b < count; b++) {
+        if (straightKm(kernel.records, a, b, halfStepS) < reachKm && !times.has(`${a} ${b}`))
+          missed.push(`${a} ${b}`);
       }
-      if (`${held.sort((a, b) => a - b)}` !== `${expected.sort((a, b) => a - b)}`) wrong++;
     }
-    expect(wrong).toBe(0);
+    expect(missed).toEqual([]);
   });
 });
+
+/** How near the straight lines of two records pass during a step. */
+function straightKm(records: Float32Array, a: number, b: number, halfStepS: number): number {
+  const i = RECORD_SIZE * a;
+  const k = RECORD_SIZE * b;
+  const x = records[k] - records[i];
+  const y = records[k + 1] - records[i + 1];
+  const z = records[k + 2] - records[i + 2];
+  const vx = records[k + 3] - records[i + 3];
+  const vy = records[k + 4] - records[i + 4];
+  const vz = records[k + 5] - records[i + 5];
+  const nearestS = -(x * vx + y * vy + z * vz) / (vx * vx + vy * vy + vz * vz);
+  const timeS = Math.max(-halfStepS, Math.min(halfStepS, nearestS));
+  return Math.sqrt((x + timeS * vx) ** 2 + (y + timeS * vy) ** 2 + (z + timeS * vz) ** 2);
+}

@@ -1,13 +1,8 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
+import { type ClosestApproach, distinctApproaches } from '../../src/encounters/closest-approach.js';
 import { searchObjectsOf } from '../../src/encounters/search-problem.js';
-import {
-  type ClosestApproach,
-  createSlabSearcher,
-  distinctApproaches,
-  searchSlab,
-  slabCount,
-} from '../../src/encounters/search-slab.js';
+import { createSlabSearcher, searchSlab, slabCount } from '../../src/encounters/search-slab.js';
 import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { setPassing } from '../synthetic/passing-orbit.js';

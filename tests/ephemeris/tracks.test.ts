@@ -3,9 +3,8 @@ import { orbitOf } from '../../src/elements/orbit.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
 import { SLAB_S } from '../../src/ephemeris/node-spacing.js';
-import { SEGMENT_SIZE } from '../../src/ephemeris/septic.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
-import { createTrackCursor, stateOnTrack } from '../../src/ephemeris/track-cursor.js';
+import { createCursorRoom, createTrackCursor, stateOnTrack } from '../../src/ephemeris/track-cursor.js';
 import { createTrackMaker, type TrackedObject } from '../../src/ephemeris/tracks.js';
 import { type CatalogMix, syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
@@ -45,7 +44,7 @@ describe('tracks', () => {
     for (const slab of [0, 1, 17]) {
       const slabStartMs = START_MS + slab * SLAB_S * 1000;
       const tracks = makeTracks(slabStartMs, slab);
-      const cursor = createTrackCursor(tracks, new Float64Array(SEGMENT_SIZE * objects.length));
+      const cursor = createTrackCursor(tracks, createCursorRoom(objects.length));
       objects.forEach(({ record, epochMs }, object) => {
         for (let k = 0; k < 25; k++) {
           const timeS = random.between(0, SLAB_S);
@@ -79,7 +78,7 @@ describe('tracks', () => {
     for (let slab = 0; slab < 42; slab += 3) {
       const slabStartMs = START_MS + slab * SLAB_S * 1000;
       const tracks = makeTracks(slabStartMs, slab);
-      const cursor = createTrackCursor(tracks, new Float64Array(SEGMENT_SIZE * objects.length));
+      const cursor = createTrackCursor(tracks, createCursorRoom(objects.length));
       objects.forEach(({ record, epochMs }, object) => {
         const endS = tracks.endS[object];
         if (endS === SLAB_S) return;
@@ -112,7 +111,7 @@ describe('tracks', () => {
     const again = makeTracks(START_MS + DAY_MS, 6);
     const fresh = createTrackMaker(objects)(START_MS + DAY_MS, 6);
     const cursors = [again, fresh].map((tracks) =>
-      createTrackCursor(tracks, new Float64Array(SEGMENT_SIZE * objects.length)),
+      createTrackCursor(tracks, createCursorRoom(objects.length)),
     );
     expect([...again.endS]).toEqual([...fresh.endS]);
     objects.forEach((_, object) => {

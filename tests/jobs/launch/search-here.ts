@@ -1,9 +1,5 @@
-import {
-  createSlabSearcher,
-  distinctApproaches,
-  searchSlab,
-  slabCount,
-} from '../../../src/encounters/search-slab.js';
+import { distinctApproaches } from '../../../src/encounters/closest-approach.js';
+import { createSlabSearcher, searchSlab, slabCount } from '../../../src/encounters/search-slab.js';
 import { loadBulkPropagator } from '../../../src/ephemeris/bulk-nodes.js';
 import { assessApproaches } from '../../../src/jobs/assess-approach.js';
 import { createEncounterRecords, type EncounterRecords } from '../../../src/jobs/encounter-records.js';
