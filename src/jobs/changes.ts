@@ -47,7 +47,7 @@ type Coverage = {
   readonly isScreened: (designatorA: string, designatorB: string) => boolean;
 };
 
-type Comparison = {
+export type Comparison = {
   /** Rows of `changes.csv` in their order: by kind, then probability from high to low. */
   readonly changes: readonly Change[];
   /** Tonight's encounters, in the order given, with what to keep for the next run. */

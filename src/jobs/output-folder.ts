@@ -81,6 +81,20 @@ export async function openOutputFolder(out: string, ports: JobPorts): Promise<Ou
   }
 }
 
+/** Does the work of a job in its output folder, which is closed whatever becomes of it. */
+export async function withOutputFolder<T>(
+  out: string,
+  ports: JobPorts,
+  work: (folder: OutputFolder) => Promise<T>,
+): Promise<T> {
+  const folder = await openOutputFolder(out, ports);
+  try {
+    return await work(folder);
+  } finally {
+    folder.close();
+  }
+}
+
 function openFolder(places: Places, lock: RunLock, ports: JobPorts): OutputFolder {
   const files: RunFile[] = [];
   const unfinished = new Map<string, OpenRunFile>();

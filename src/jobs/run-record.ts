@@ -64,7 +64,7 @@ export function runRecordText(
   version: string,
   record: RunRecord,
   files: readonly RunFile[],
-  caution = CAUTION,
+  caution: string = CAUTION,
 ): string {
   const { environment, ...facts } = record;
   return `${JSON.stringify({ program: 'wideberth', version, caution, ...facts, files, environment }, null, 2)}\n`;

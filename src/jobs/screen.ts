@@ -1,40 +1,36 @@
+import { CAUTION } from '../caution.js';
 import { expectCurrentFleet } from '../elements/age.js';
+import type { ElementSet } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
 import { findCompanions } from '../encounters/companions.js';
 import { pairKey, searchObjectsOf } from '../encounters/search-problem.js';
 import { enclosingRadiusKm } from '../encounters/volume.js';
 import { writeChangesCsv } from '../tables/changes-csv.js';
-import { type CompanionPair, writeCompanionsCsv } from '../tables/companions-csv.js';
 import {
   formatCaution,
   formatConjunctionTable,
   formatElementAges,
   formatFileCounts,
 } from '../tables/terminal-table.js';
-import { writeUnusedElementsCsv } from '../tables/unused-elements-csv.js';
-import { changeLines, compareWithPast, type SeenEncounter } from './changes.js';
+import { changeLines } from './changes.js';
 import { companionRow } from './companion-row.js';
+import { compareWithHistory } from './compare-with-history.js';
 import { agesAt, agesOf, warnOfOldElements } from './element-ages.js';
-import { type EncounterRecords, FIELD, FIELDS } from './encounter-records.js';
-import { failedLines, failedSets, warnOfFailures } from './failed-sets.js';
+import { failedLines, warnOfFailures } from './failed-sets.js';
 import { keepInHistory, prepareHistory, readPastRuns } from './history.js';
 import { readElementInputs, readKnowledge } from './inputs.js';
 import { alertLines, companionLines, finishedText, resultsLine, screenedLine } from './outcome-lines.js';
-import { type OutputFolder, openOutputFolder } from './output-folder.js';
-import { fillPairProbabilities } from './pair-probabilities.js';
-import { rankedRecords, writeRankedTables } from './ranked-records.js';
+import { type OutputFolder, withOutputFolder } from './output-folder.js';
+import { publishRun, writeResults } from './publish-run.js';
 import { warnOfRejected } from './rejected-sets.js';
-import { RUN_RECORD } from './run-folder.js';
-import { environmentOf, recordedOptions, runRecordText } from './run-record.js';
+import { recordedOptions } from './run-record.js';
 import type { JobPorts, ScreenOptions, ScreenOutcome } from './screen-options.js';
-import { type ScreenedObject, screenedObject } from './screened-object.js';
-import { searchFacts } from './search-facts.js';
-import { searchInWorkers } from './search-in-workers.js';
+import { screenedObject } from './screened-object.js';
+import { searchAndRank, type Window } from './search-and-rank.js';
 import { searchPlanOf } from './search-plan.js';
 import { createTimings } from './timings.js';
 import { warnOfUnlisted } from './unlisted-objects.js';
 import { withinReach } from './within-reach.js';
-import { writeMessages } from './write-messages.js';
 
 const MS_PER_DAY = 86_400_000;
 /** Changes told one by one on the terminal. */
@@ -48,12 +44,7 @@ const RISEN_SHOWN = 10;
  */
 export async function screen(options: ScreenOptions, ports: JobPorts): Promise<ScreenOutcome> {
   const startedMs = ports.nowMs();
-  const folder = await openOutputFolder(options.outPath, ports);
-  try {
-    return await screenInto(folder, options, ports, startedMs);
-  } finally {
-    folder.close();
-  }
+  return withOutputFolder(options.outPath, ports, (folder) => screenInto(folder, options, ports, startedMs));
 }
 
 async function screenInto(
@@ -63,141 +54,62 @@ async function screenInto(
   startedMs: number,
 ): Promise<ScreenOutcome> {
   const timings = createTimings();
-  const endMs = options.startMs + Math.round(options.days * MS_PER_DAY);
-  if (options.historyPath !== undefined) await prepareHistory(options.historyPath, ports);
-  const past =
-    options.historyPath === undefined ? [] : readPastRuns(options.historyPath, options.startMs, ports);
-
-  const inputs = await readElementInputs(options.fleetPaths, options.catalogPaths, options.startMs);
-  const { knowledge, files: otherFiles } = await readKnowledge(options.objectsPath, options.sigmaPath);
-  if (!options.allOnAll) expectCurrentFleet(inputs.fleet, options.startMs, options.maxAgeDays);
-  warnOfOldElements(
-    { fleet: options.allOnAll ? [] : inputs.fleet, catalog: inputs.catalog },
-    options.startMs,
-    options.maxAgeDays,
-    ports,
-  );
-  if (!options.allOnAll) warnOfRejected(inputs.unused, options.fleetPaths, inputs.fleet, ports);
+  const { startMs, historyPath } = options;
+  const window = { startMs, endMs: startMs + Math.round(options.days * MS_PER_DAY) };
+  if (historyPath !== undefined) await prepareHistory(historyPath, ports);
+  const past = historyPath === undefined ? [] : readPastRuns(historyPath, startMs, ports);
+  const read = await readScreened(options, ports);
   timings.end('reading');
 
-  const primaries = (options.allOnAll ? inputs.catalog : inputs.fleet).map((set) =>
-    screenedObject(set, knowledge),
-  );
-  const others = (options.allOnAll ? [] : inputs.catalog).map((set) => screenedObject(set, knowledge));
-  warnOfUnlisted(knowledge.listed, options.objectsPath, [...primaries, ...others], ports);
-  const missKm = enclosingRadiusKm(options.volume);
-  const objects = [...primaries, ...withinReach(others, primaries, missKm, options.startMs, endMs)];
-  const withinPrimaries = options.allOnAll || options.withinFleet;
-  if (!withinPrimaries && others.length === 0) {
-    ports.log.warn(
-      'every object of the catalog is one of the fleet, so there is nothing to screen it against: give another --catalog, or --within-fleet for the fleet against itself',
-    );
-  }
-  const searched = searchObjectsOf(
-    objects.map(({ set }) => set),
-    primaries.length,
-    objects.map(({ record }) => record),
-  );
-  const companions = findCompanions(searched, {
-    startMs: options.startMs,
-    endMs,
-    missKm,
-    withinPrimaries,
-    skippedPairs: new Set(),
-  });
+  const prepared = prepareSearch(read, options, window, ports);
+  const { primaries, others, objects, plan } = prepared;
   timings.end('preparing');
-
-  const plan = searchPlanOf(objects, {
-    primaryCount: primaries.length,
-    startMs: options.startMs,
-    endMs,
-    withinPrimaries,
-    skippedPairs: companions.map(({ first, second }) => pairKey(first, second, objects.length)),
-    volume: options.volume,
-    maxAgeDays: options.maxAgeDays,
-  });
   ports.log.info(
-    `searching ${formatUtc(options.startMs)} to ${formatUtc(endMs)}: ${primaries.length} ${options.allOnAll ? 'objects on each other' : 'of the fleet'}, ${objects.length - primaries.length} of ${others.length} others within reach`,
+    `searching ${formatUtc(startMs)} to ${formatUtc(window.endMs)}: ${primaries.length} ${options.allOnAll ? 'objects on each other' : 'of the fleet'}, ${objects.length - primaries.length} of ${others.length} others within reach`,
   );
-  const outcome = await searchInWorkers(plan, options.workers, ports);
-  timings.end('searching');
+  const search = await searchAndRank(plan, objects, window, options.workers, ports, timings);
+  const { outcome, ranked, failed } = search;
+  warnOfFailures(failed, read.inputs.fleet, ports);
 
-  const { records } = outcome;
-  fillPairProbabilities(records, objects.length);
-  const ranked = rankedRecords(records, objects);
-  const { order } = ranked;
-  const failed = failedSets(outcome, objects, options.startMs, endMs);
-  warnOfFailures(failed, inputs.fleet, ports);
-  const unused = [...inputs.unused, ...failed];
-  await writeRankedTables(folder, ranked);
-  await writeUnusedElementsCsv(folder.stream('unused-elements.csv'), unused);
-  const companionRows = companions.map((pair) => companionRow(pair, objects));
-  await writeCompanionsCsv(folder.stream('companions.csv'), companionRows);
-  const messages = writeMessages(
-    folder,
-    ranked,
-    options.cdmFromPc,
-    { startMs: options.startMs, endMs, volume: options.volume },
-    ports,
-  );
-
+  const companions = prepared.companions.map((pair) => companionRow(pair, objects));
+  const unused = [...read.inputs.unused, ...failed];
+  const messages = await writeResults(folder, { ranked, companions, unused }, window, options, ports);
   const comparison =
-    options.historyPath === undefined
+    historyPath === undefined
       ? undefined
-      : compareWithPast(seenEncounters(records, order, objects), past, {
-          startMs: options.startMs,
-          endMs,
-          isScreened: screenedTest(primaries, others, withinPrimaries, companionRows),
-        });
+      : compareWithHistory(ranked, past, window, { ...prepared, companions });
   if (comparison !== undefined) await writeChangesCsv(folder.stream('changes.csv'), comparison.changes);
   timings.end('writing');
 
-  const highest = order.length === 0 ? Number.NaN : records.data[FIELDS * order[0] + FIELD.probability];
-  const alertReached = options.alertPc !== undefined && highest >= options.alertPc;
-  const counts = {
-    primaries: primaries.length,
-    others: others.length,
-    othersWithinReach: objects.length - primaries.length,
-    failedInWindow: outcome.lastMsOf.size,
-    encounters: ranked.count,
-    pairsRefined: outcome.pairsRefined,
-    companionPairs: companions.length,
-    messages,
+  const facts = {
+    command: 'screen',
+    options: recordedOptions(options),
+    inputs: { elements: read.inputs.files, others: read.otherFiles },
+    elementAges: {
+      fleet: options.allOnAll ? null : agesOf(read.inputs.fleet, startMs),
+      catalog: agesOf(read.inputs.catalog, startMs),
+    },
+    sigmaSource: options.sigmaPath ?? 'built-in table',
+    counts: {
+      primaries: primaries.length,
+      others: others.length,
+      othersWithinReach: objects.length - primaries.length,
+      failedInWindow: outcome.lastMsOf.size,
+      encounters: ranked.count,
+      pairsRefined: outcome.pairsRefined,
+      companionPairs: companions.length,
+      messages,
+    },
+    comparedWith: past[0]?.name ?? null,
   };
-  let runFiles: readonly string[] = [];
-  folder.seal((files) => {
-    runFiles = [...files.map((file) => file.name), RUN_RECORD];
-    return runRecordText(
-      ports.version,
-      {
-        command: 'screen',
-        options: recordedOptions(options),
-        window: { startUtc: formatUtc(options.startMs), endUtc: formatUtc(endMs), days: options.days },
-        inputs: { elements: inputs.files, others: otherFiles },
-        elementAges: {
-          fleet: options.allOnAll ? null : agesOf(inputs.fleet, options.startMs),
-          catalog: agesOf(inputs.catalog, options.startMs),
-        },
-        search: searchFacts(outcome, options.volume),
-        sigmaSource: options.sigmaPath ?? 'built-in table',
-        counts,
-        alert: { highestProbability: Number.isNaN(highest) ? null : highest, reached: alertReached },
-        comparedWith: past[0]?.name ?? null,
-        environment: environmentOf(startedMs, ports.nowMs(), timings.seconds, options.workers),
-      },
-      files,
-    );
-  });
-  folder.publish();
-  if (options.historyPath !== undefined && comparison !== undefined) {
-    await keepInHistory(
-      options.historyPath,
-      options.startMs,
-      { folder: options.outPath, files: runFiles },
-      comparison.known,
-      options.keepRuns,
-      ports,
-    );
+  const { files, alertReached } = publishRun(
+    folder,
+    { options, alertPc: options.alertPc, window, search, facts, caution: CAUTION, startedMs, timings },
+    ports,
+  );
+  if (historyPath !== undefined && comparison !== undefined) {
+    const run = { folder: options.outPath, files };
+    await keepInHistory(historyPath, startMs, run, comparison.known, options.keepRuns, ports);
   }
   ports.log.info(finishedText(options.outPath, ranked, alertReached));
   const lines = [
@@ -205,62 +117,68 @@ async function screenInto(
     ...(comparison === undefined ? [] : [...changeLines(comparison.changes, RISEN_SHOWN, past[0]?.name), '']),
     formatConjunctionTable(ranked, options.top),
     '',
-    ...companionLines(companionRows),
-    screenedLine(options, endMs, primaries.length, others.length),
+    ...companionLines(companions),
+    screenedLine(options, window.endMs, primaries.length, others.length),
     '',
-    formatFileCounts(inputs.files),
+    formatFileCounts(read.inputs.files),
     ...failedLines(outcome.lastMsOf.size),
-    ...(options.allOnAll
-      ? []
-      : [formatElementAges('Fleet', agesAt(inputs.fleet, options.startMs)).trimEnd()]),
-    formatElementAges('Catalog', agesAt(inputs.catalog, options.startMs)),
-    resultsLine(options.outPath, runFiles),
+    ...(options.allOnAll ? [] : [formatElementAges('Fleet', agesAt(read.inputs.fleet, startMs)).trimEnd()]),
+    formatElementAges('Catalog', agesAt(read.inputs.catalog, startMs)),
+    resultsLine(options.outPath, files),
     formatCaution().trimEnd(),
   ];
   return { lines: lines.map((line) => line.replace(/\n$/, '')), alertReached };
 }
 
-function seenEncounters(
-  { data }: EncounterRecords,
-  order: Uint32Array,
-  objects: readonly ScreenedObject[],
-): SeenEncounter[] {
-  return Array.from(order, (number) => {
-    const at = FIELDS * number;
-    const first = objects[data[at + FIELD.first]];
-    const second = objects[data[at + FIELD.second]];
-    const probability = data[at + FIELD.probability];
-    return {
-      object1Designator: first.designator,
-      object1Name: first.name,
-      object2Designator: second.designator,
-      object2Name: second.name,
-      tcaMs: data[at + FIELD.tcaMs],
-      missDistanceM: 1000 * data[at + FIELD.missKm],
-      collisionProbability: Number.isNaN(probability) ? undefined : probability,
-      shorterPeriodS: Math.min(first.orbit.periodS, second.orbit.periodS),
-    };
-  });
+/** Everything that is read, with the warnings that it deserves. */
+async function readScreened(options: ScreenOptions, ports: JobPorts) {
+  const { startMs, maxAgeDays, allOnAll } = options;
+  const inputs = await readElementInputs(options.fleetPaths, options.catalogPaths, startMs);
+  const { knowledge, files: otherFiles } = await readKnowledge(options.objectsPath, options.sigmaPath);
+  if (!allOnAll) expectCurrentFleet(inputs.fleet, startMs, maxAgeDays);
+  const groups = { fleet: allOnAll ? [] : inputs.fleet, catalog: inputs.catalog };
+  warnOfOldElements(groups, startMs, maxAgeDays, ports);
+  if (!allOnAll) warnOfRejected(inputs.unused, options.fleetPaths, inputs.fleet, ports);
+  return { inputs, knowledge, otherFiles };
 }
 
-/** Whether two objects were screened against each other tonight; companions were not. */
-function screenedTest(
-  primaries: readonly ScreenedObject[],
-  others: readonly ScreenedObject[],
-  withinPrimaries: boolean,
-  companions: readonly CompanionPair[],
-): (designatorA: string, designatorB: string) => boolean {
-  const own = new Set(primaries.map(({ designator }) => designator));
-  const rest = new Set(others.map(({ designator }) => designator));
-  const together = new Set(
-    companions.flatMap(({ object1: { designator: a }, object2: { designator: b } }) => [
-      `${a} ${b}`,
-      `${b} ${a}`,
-    ]),
+/** Who is screened against whom, with companions set apart. */
+function prepareSearch(
+  { inputs, knowledge }: Awaited<ReturnType<typeof readScreened>>,
+  options: ScreenOptions,
+  { startMs, endMs }: Window,
+  ports: JobPorts,
+) {
+  const { allOnAll, volume, maxAgeDays } = options;
+  const screened = (set: ElementSet) => screenedObject(set, knowledge);
+  const primaries = (allOnAll ? inputs.catalog : inputs.fleet).map(screened);
+  const others = (allOnAll ? [] : inputs.catalog).map(screened);
+  warnOfUnlisted(knowledge.listed, options.objectsPath, [...primaries, ...others], ports);
+  const missKm = enclosingRadiusKm(volume);
+  const objects = [...primaries, ...withinReach(others, primaries, missKm, startMs, endMs)];
+  const primaryCount = primaries.length;
+  const withinPrimaries = allOnAll || options.withinFleet;
+  if (!withinPrimaries && others.length === 0) {
+    ports.log.warn(
+      'every object of the catalog is one of the fleet, so there is nothing to screen it against: give another --catalog, or --within-fleet for the fleet against itself',
+    );
+  }
+  const searched = searchObjectsOf(
+    objects.map(({ set }) => set),
+    primaryCount,
+    objects.map(({ record }) => record),
   );
-  return (a, b) =>
-    !together.has(`${a} ${b}`) &&
-    ((own.has(a) && rest.has(b)) ||
-      (own.has(b) && rest.has(a)) ||
-      (withinPrimaries && own.has(a) && own.has(b)));
+  const rules = { startMs, endMs, missKm, withinPrimaries, skippedPairs: new Set<number>() };
+  const companions = findCompanions(searched, rules);
+  const skippedPairs = companions.map(({ first, second }) => pairKey(first, second, objects.length));
+  const plan = searchPlanOf(objects, {
+    primaryCount,
+    startMs,
+    endMs,
+    withinPrimaries,
+    skippedPairs,
+    volume,
+    maxAgeDays,
+  });
+  return { primaries, others, objects, withinPrimaries, companions, plan };
 }

@@ -1,4 +1,4 @@
-type Timings = {
+export type Timings = {
   /** Seconds by stage, to the millisecond. */
   readonly seconds: Readonly<Record<string, number>>;
   /** Ends a stage; the next one begins. */
