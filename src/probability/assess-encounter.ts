@@ -1,5 +1,5 @@
 import { rtnFrame } from '../ephemeris/rtn-frame.js';
-import { cross, type Matrix3, norm, rotate, scale, subtract, type Vector3 } from '../vector.js';
+import { cross, dot, type Matrix3, norm, rotate, scale, subtract, type Vector3 } from '../vector.js';
 import { requireFinite, requireNotNegative, shown } from './arguments.js';
 import { covarianceOutOf, requireCovariance, sumOf } from './covariance.js';
 import { type EncounterPlane, encounterPlane } from './encounter-plane.js';
@@ -55,13 +55,20 @@ export function assessEncounter(encounter: Encounter): EncounterAssessment {
   requireObject('object1', encounter.object1);
   requireObject('object2', encounter.object2);
   requireNotNegative('hardBodyRadiusM', encounter.hardBodyRadiusM);
-  const { plane: _plane, peakSigmaScale: _scale, ...assessment } = assessInFull(encounter);
+  const {
+    plane: _plane,
+    sigmaAlongM: _sigma,
+    peakSigmaScale: _scale,
+    ...assessment
+  } = assessInFull(encounter);
   return assessment;
 }
 
 /** What `assessEncounter` finds on the way and the other figures of a row are made from. */
 export type FullAssessment = EncounterAssessment & {
   readonly plane: EncounterPlane | undefined;
+  /** One-sigma of the combined position error along the relative velocity; NaN without one. */
+  readonly sigmaAlongM: number;
   /** The common factor on the combined sigmas at which the probability is largest; see `maximumProbability`. */
   readonly peakSigmaScale: number | undefined;
 };
@@ -85,9 +92,11 @@ export function assessInFull(
   );
   const plane = encounterPlane(positionM, velocityMPerS, covarianceM2);
   const maximum = withMaximum && plane ? maximumProbability({ ...plane, hardBodyRadiusM }) : undefined;
+  const speed = norm(velocityMPerS);
   return {
     missDistanceM: norm(positionM),
-    relativeSpeedMPerS: norm(velocityMPerS),
+    relativeSpeedMPerS: speed,
+    sigmaAlongM: Math.sqrt(Math.max(0, dot(velocityMPerS, rotate(covarianceM2, velocityMPerS)))) / speed,
     relativePositionRtnM: rotate(frame1, positionM),
     relativeVelocityRtnMPerS: rotate(frame1, velocityMPerS),
     collisionProbability:

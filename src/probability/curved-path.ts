@@ -1,5 +1,6 @@
 import { dot, norm, rotate, scale, type Vector3 } from '../vector.js';
 import { massInBall } from './ball-mass.js';
+import { densityOf, logDensityWithin } from './density.js';
 import { type PathEncounter, requirePathEncounter, turningStateAt } from './encounter-path.js';
 import { encounterPlane } from './encounter-plane.js';
 import { firstEntryProbability } from './first-entry.js';
@@ -20,6 +21,9 @@ const COUNTING_DENSITY = 1e-3;
 const LEAST_COSINE = 0.5;
 /** Part of the sum that the ends of the window may have before the tubes' blunt ends show. */
 const LARGEST_END_PART = 0.01;
+
+/** An end below this part of the rest is left out. */
+const NEGLIGIBLE_END = 1e-9;
 
 type HermiteRule = { readonly nodes: readonly number[]; readonly weights: readonly number[] };
 
@@ -105,7 +109,8 @@ export function curvedPathProbability(encounter: PathEncounter): CurvedPathResul
     singlePassage(flux, encounter, atTca) ??
     integrate(flux, intervalsOf(encounter, atTca), RELATIVE_TOLERANCE);
   const ends =
-    halfBall(encounter, fromMs, -hardBodyRadiusM, 0) + halfBall(encounter, toMs, 0, hardBodyRadiusM);
+    halfBall(encounter, fromMs, -hardBodyRadiusM, 0, along) +
+    halfBall(encounter, toMs, 0, hardBodyRadiusM, along);
   const tubes = along + ends;
   const leastCosine = leastCosineOf(seen);
   if (leastCosine >= LEAST_COSINE && ends <= LARGEST_END_PART * tubes) {
@@ -166,13 +171,26 @@ function intervalsOf(
   return [...bounds].sort((one, other) => one - other);
 }
 
-/** Mass in the part of the ball behind (negative limits) or ahead of the plane in which its tube ends. */
-function halfBall(encounter: PathEncounter, timeMs: number, fromM: number, toM: number): number {
+/**
+ * Mass in the part of the ball behind (negative limits) or ahead of the plane in which its tube ends.
+ *
+ * @param rest what it is added to: 0 comes back for what does not show beside it
+ */
+function halfBall(
+  encounter: PathEncounter,
+  timeMs: number,
+  fromM: number,
+  toM: number,
+  rest: number,
+): number {
   const { positionM, velocityMPerS, covarianceM2 } = turningStateAt(encounter, timeMs);
-  const inverse = inverseOf(covarianceM2)?.inverse;
-  if (inverse === undefined) return 0;
-  const direction: Vector3 = norm(velocityMPerS) > 0 ? rotate(inverse, velocityMPerS) : [1, 0, 0];
-  return massInBall(positionM, encounter.hardBodyRadiusM, covarianceM2, direction, fromM, toM);
+  const radius = encounter.hardBodyRadiusM;
+  const density = densityOf(covarianceM2);
+  if (density === undefined) return 0;
+  const most = ((4 * Math.PI) / 3) * radius ** 3 * Math.exp(logDensityWithin(density, positionM, radius));
+  if (most < NEGLIGIBLE_END * rest) return 0;
+  const direction: Vector3 = norm(velocityMPerS) > 0 ? rotate(density.inverse, velocityMPerS) : [1, 0, 0];
+  return massInBall(positionM, radius, covarianceM2, direction, fromM, toM);
 }
 
 function leastCosineOf(seen: readonly { readonly density: number; readonly direction: Vector3 }[]): number {

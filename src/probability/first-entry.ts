@@ -1,17 +1,9 @@
 import { cross, norm, scale, type Vector3 } from '../vector.js';
 import { massInBall } from './ball-mass.js';
+import { type Density, logDensity, logDensityWithin } from './density.js';
 import type { PathEncounter } from './encounter-path.js';
 import { perpendicularTo } from './encounter-plane.js';
-import {
-  type Density,
-  knotsOf,
-  logDensity,
-  logDensityWithin,
-  type Piece,
-  piecesOf,
-  positionAt,
-  rateAt,
-} from './path-pieces.js';
+import { knotsOf, type Piece, piecesOf, positionAt, rateAt } from './path-pieces.js';
 import { legendreRule } from './quadrature.js';
 import { addNearChords, type Polygon, polygonOf, sweptBy } from './swept-path.js';
 

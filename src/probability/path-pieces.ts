@@ -1,6 +1,6 @@
 import { dot, type Matrix3, norm, rotate, type Vector3 } from '../vector.js';
+import { type Density, densityOf, logDensity, logDensityWithin, smallestSigmaOf } from './density.js';
 import { type PathEncounter, type TurningState, turningStateAt } from './encounter-path.js';
-import { inverseOf } from './inverse.js';
 
 /** Between times this far apart the path is interpolated by cubics: far finer than orbits bend. */
 const LONGEST_KNOT_MS = 20_000;
@@ -12,14 +12,6 @@ const LONGEST_IN_SIGMAS = 1;
 /** ... and turns by no more than this, radians, unless it is shorter than this part of the hard-body radius. */
 const LARGEST_TURN = 0.5;
 const SHORTEST_PART_OF_RADIUS = 0.5;
-
-/** A three-dimensional normal distribution about 0. */
-export type Density = {
-  readonly inverse: Matrix3;
-  readonly logNorm: number;
-  /** At most the smallest one-sigma, at least 0.57 of it. */
-  readonly smallestSigmaM: number;
-};
 
 /** The path at one time, and the density of the position error then. */
 export type Knot = TurningState & Density & { readonly timeMs: number };
@@ -55,11 +47,9 @@ export function knotsOf(encounter: PathEncounter): Knot[] | undefined {
   for (let i = 0; i <= count; i++) {
     const timeMs = fromMs + ((toMs - fromMs) * i) / count;
     const state = turningStateAt(encounter, timeMs);
-    const inverted = inverseOf(state.covarianceM2);
-    if (inverted === undefined) return undefined;
-    const { inverse, determinant } = inverted;
-    const logNorm = -0.5 * Math.log((2 * Math.PI) ** 3 * determinant);
-    knots.push({ ...state, timeMs, inverse, logNorm, smallestSigmaM: smallestSigmaOf(inverse) });
+    const density = densityOf(state.covarianceM2);
+    if (density === undefined) return undefined;
+    knots.push({ ...state, ...density, timeMs });
   }
   return knots;
 }
@@ -177,24 +167,4 @@ function densityAt({ left, right }: Span, part: number): Density {
     logNorm: between(left.logNorm, right.logNorm),
     smallestSigmaM: smallestSigmaOf(inverse),
   };
-}
-
-/** The trace of the inverse is at most three times its largest eigenvalue, at least that eigenvalue. */
-function smallestSigmaOf(inverse: Matrix3): number {
-  return 1 / Math.sqrt(inverse[0][0] + inverse[1][1] + inverse[2][2]);
-}
-
-export function logDensity({ inverse, logNorm }: Density, x: number, y: number, z: number): number {
-  const [[xx, xy, xz], [, yy, yz], [, , zz]] = inverse;
-  return logNorm - 0.5 * (x * (xx * x + 2 * (xy * y + xz * z)) + y * (yy * y + 2 * yz * z) + zz * z * z);
-}
-
-/** The largest density that a point within `reachM` of `centerM` can have. */
-export function logDensityWithin(
-  { inverse, logNorm, smallestSigmaM }: Density,
-  centerM: Vector3,
-  reachM: number,
-): number {
-  const nearest = Math.sqrt(dot(centerM, rotate(inverse, centerM))) - reachM / smallestSigmaM;
-  return logNorm - 0.5 * Math.max(0, nearest) ** 2;
 }

@@ -1,5 +1,7 @@
+import { EARTH_MU_KM3_PER_S2 } from '../elements/orbit.js';
 import { rtnFrame } from '../ephemeris/rtn-frame.js';
-import { dot, type Matrix3, norm, rotate, scale, subtract, type Vector3 } from '../vector.js';
+import { cross, dot, type Matrix3, norm, rotate, scale, subtract, type Vector3 } from '../vector.js';
+import type { FullAssessment } from './assess-encounter.js';
 import { covarianceOutOf, sumOf } from './covariance.js';
 import { type PathEncounter, turningPositionAt } from './encounter-path.js';
 import { encounterPlane } from './encounter-plane.js';
@@ -11,6 +13,11 @@ const COMPARED_AT = [-1, -0.5, 0.5, 1] as const;
 const LARGEST_SHIFT = 0.2;
 /** Of the way along the relative velocity: the objects must go through the passage, not turn back in it. */
 const LARGEST_PART_ALONG = 0.25;
+
+/** The quick bound holds up to these; its margin is for what turning and gravity change in that time and space. */
+const LONGEST_BOUNDED_S = 60;
+const FARTHEST_BOUNDED_M = 200_000;
+const MARGIN = 1.2;
 
 export type StraightLineTest = {
   readonly isStraight: boolean;
@@ -101,4 +108,52 @@ export function testStraightLine(
     deviationSigmas * Math.max(1, plane.mahalanobisDistance) <= LARGEST_SHIFT &&
     deviationAlong <= LARGEST_PART_ALONG;
   return { isStraight, halfPassageS, deviationSigmas, deviationAlong };
+}
+
+/**
+ * A quick bound on what `testStraightLine` measures, from the states at closest approach and at one more time.
+ *
+ * With w the relative velocity, T half the passage and D = miss + w T, the relative position in inertial axes
+ * is r0 + w t + e(t), which in the axes that turn with object 1 is turned by at most n T, n the rate of its
+ * turning. The shift from the straight line is thus up to n T D + |e|. What makes up e is the difference of
+ * gravity, an acceleration of up to g = 2 mu D / r^3, and that the velocities of a theory are not quite the
+ * rates of its positions, by some d: |e| <= d T + g T^2 / 2. A look at one end of the passage bounds d: there
+ * |e(T)| >= d T - g T^2 / 2. So the shift is nowhere above n T D + g T^2 + |e(T)|.
+ *
+ * In a minute the rate of turning changes by up to 5 %, in it and over 200 km the gradient of gravity by up to
+ * 18 %, flattening included, from low orbits to the most eccentric ones; the margin is for that.
+ *
+ * @param assessed the same encounter, as `assessInFull` does
+ * @returns `isStraight` where the test is sure to pass; the largest deviation in sigmas, infinite where the bound
+ * does not hold
+ */
+export function boundStraightLine(
+  { statesAt, tcaMs, hardBodyRadiusM }: Pick<PathEncounter, 'statesAt' | 'tcaMs' | 'hardBodyRadiusM'>,
+  { plane, sigmaAlongM, missDistanceM, relativeSpeedMPerS: speed }: FullAssessment,
+): Pick<StraightLineTest, 'isStraight' | 'deviationSigmas'> {
+  const seconds = (PASSAGE_SIGMAS * sigmaAlongM + hardBodyRadiusM) / speed;
+  const reachM = missDistanceM + speed * seconds;
+  if (plane === undefined || !(seconds <= LONGEST_BOUNDED_S && reachM <= FARTHEST_BOUNDED_M)) {
+    return { isStraight: false, deviationSigmas: Number.POSITIVE_INFINITY };
+  }
+  const { object1, object2 } = statesAt(tcaMs);
+  const later = statesAt(tcaMs + 1000 * seconds);
+  const offLineM = (k: 0 | 1 | 2): number =>
+    1000 *
+    (later.object2.positionKm[k] -
+      later.object1.positionKm[k] -
+      (object2.positionKm[k] - object1.positionKm[k]) -
+      seconds * (object2.velocityKmPerS[k] - object1.velocityKmPerS[k]));
+  const { positionKm, velocityKmPerS } = object1;
+  const squareKm2 = dot(positionKm, positionKm);
+  const turning = (norm(cross(positionKm, velocityKmPerS)) / squareKm2) * seconds;
+  const gradient = ((2 * EARTH_MU_KM3_PER_S2) / squareKm2 ** 1.5) * seconds * seconds;
+  const shiftM = MARGIN * (turning + gradient) * reachM + Math.hypot(offLineM(0), offLineM(1), offLineM(2));
+  const deviationSigmas = shiftM / plane.sigmaYM;
+  return {
+    isStraight:
+      deviationSigmas * Math.max(1, plane.mahalanobisDistance) <= LARGEST_SHIFT &&
+      shiftM <= LARGEST_PART_ALONG * speed * seconds,
+    deviationSigmas,
+  };
 }

@@ -1,8 +1,9 @@
 import { describe, expect, it } from 'vitest';
 import { assessEncounter } from '../../src/index.js';
+import { assessInFull } from '../../src/probability/assess-encounter.js';
 import { curvedPathProbability } from '../../src/probability/curved-path.js';
-import { testStraightLine } from '../../src/probability/straight-line.js';
-import type { Vector3 } from '../../src/vector.js';
+import { boundStraightLine, testStraightLine } from '../../src/probability/straight-line.js';
+import { norm, scale, type Vector3 } from '../../src/vector.js';
 import { logUniform, seeded } from './seeded.js';
 import { encounterOf, TCA_MS } from './slow-encounters.js';
 
@@ -93,5 +94,62 @@ describe('testStraightLine', () => {
     // 8 km apart along the orbit at 1.1e-3 rad/s: 8.8 m/s, radial, in inertial axes, and none in turning ones.
     const trailing = encounterOf([0, 8000, 0], [-8.8, 0, 0], [4000, 5000, 4000], [4000, 5000, 4000], 20, 600);
     expect(testStraightLine(trailing).isStraight).toBe(false);
+  });
+});
+
+describe('boundStraightLine', () => {
+  it('never lets pass what the test would not, and bounds the deviation closely', () => {
+    const random = seeded(7);
+    let passed = 0;
+    let bounded = 0;
+    let closely = 0;
+    for (let i = 0; i < 2000; i++) {
+      const part = () => random() - 0.5;
+      const speed = logUniform(random, 1, 14_000);
+      const heading: Vector3 = [0.2 * part(), part(), part()];
+      const velocity = scale(heading, speed / norm(heading));
+      const sigmas = (): Vector3 => [
+        logUniform(random, 20, 2000),
+        logUniform(random, 50, 20_000),
+        logUniform(random, 20, 2000),
+      ];
+      const miss = logUniform(random, 10, 5000);
+      const offset: Vector3 = [2 * miss * part(), 2 * miss * part(), 2 * miss * part()];
+      const encounter = encounterOf(offset, velocity, sigmas(), sigmas(), 10, 5);
+      const { object1, object2 } = encounter.statesAt(TCA_MS);
+      const assessed = assessInFull({
+        object1: { ...object1, covarianceRtnM2: encounter.covariance1RtnM2 },
+        object2: { ...object2, covarianceRtnM2: encounter.covariance2RtnM2 },
+        hardBodyRadiusM: encounter.hardBodyRadiusM,
+      });
+      const bound = boundStraightLine(encounter, assessed);
+      const tested = testStraightLine(encounter);
+      expect(bound.deviationSigmas).toBeGreaterThanOrEqual(tested.deviationSigmas);
+      if (bound.deviationSigmas !== Number.POSITIVE_INFINITY) bounded++;
+      if (bound.deviationSigmas < 3 * tested.deviationSigmas) closely++;
+      if (!bound.isStraight) continue;
+      passed++;
+      expect(tested.isStraight).toBe(true);
+    }
+    expect(passed).toBeGreaterThan(100);
+    expect(closely).toBeGreaterThan(0.5 * bounded);
+  });
+
+  it('takes in velocities that are not the rates of the positions', () => {
+    const encounter = encounterOf([20, 0, 30], [0, -7000, 7500], [80, 200, 80], [80, 200, 80], 10, 5);
+    const { object1, object2 } = encounter.statesAt(TCA_MS);
+    const wrong = { ...object2, velocityKmPerS: scale(object2.velocityKmPerS, 1.2) };
+    const statesAt = (timeMs: number) =>
+      timeMs === TCA_MS ? { object1, object2: wrong } : encounter.statesAt(timeMs);
+    const assessed = assessInFull({
+      object1: { ...object1, covarianceRtnM2: encounter.covariance1RtnM2 },
+      object2: { ...wrong, covarianceRtnM2: encounter.covariance2RtnM2 },
+      hardBodyRadiusM: encounter.hardBodyRadiusM,
+    });
+    const tested = testStraightLine({ ...encounter, statesAt });
+    const bound = boundStraightLine({ ...encounter, statesAt }, assessed);
+    expect(tested.isStraight).toBe(false);
+    expect(bound.isStraight).toBe(false);
+    expect(bound.deviationSigmas).toBeGreaterThanOrEqual(tested.deviationSigmas);
   });
 });
