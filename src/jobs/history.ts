@@ -69,6 +69,15 @@ export function readPastRuns(history: string, startMs: number, ports: Pick<JobPo
     });
 }
 
+/** The record of a run in the history, as it was parsed; `undefined` where it cannot be read. */
+export function readRecord(history: string, name: string): unknown {
+  try {
+    return JSON.parse(readFileSync(join(history, name, RUN_RECORD), 'utf8'));
+  } catch {
+    return undefined;
+  }
+}
+
 /**
  * Puts a copy of a published run into the history, in one step, and removes the oldest runs beyond `keepRuns`.
  *

@@ -47,7 +47,14 @@ export type FinishedRun = {
   /** What `run.json` says and each command knows by itself. */
   readonly facts: Pick<
     RunRecord,
-    'command' | 'options' | 'inputs' | 'elementAges' | 'sigmaSource' | 'counts' | 'comparedWith'
+    | 'command'
+    | 'options'
+    | 'inputs'
+    | 'elementAges'
+    | 'sigmaSource'
+    | 'counts'
+    | 'comparedWith'
+    | 'settingsChanged'
   >;
   readonly caution: string;
   readonly startedMs: number;
@@ -85,6 +92,7 @@ export function publishRun(
       counts: facts.counts,
       alert: { highestProbability: Number.isNaN(highest) ? null : highest, reached: alertReached },
       comparedWith: facts.comparedWith,
+      settingsChanged: facts.settingsChanged,
       environment: environmentOf(startedMs, ports.nowMs(), timings.seconds, options.workers),
     };
     return runRecordText(ports.version, record, files, caution);

@@ -1,6 +1,8 @@
 import { CAUTION } from '../caution.js';
 import type { FileCount } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
+import type { ScreeningVolume } from '../encounters/volume.js';
+import type { ChangedSetting } from './changed-settings.js';
 import type { RunFile } from './run-folder.js';
 import type { ScreenOptions } from './screen-options.js';
 
@@ -41,6 +43,8 @@ export type RunRecord = {
   readonly alert: { readonly highestProbability: number | null; readonly reached: boolean };
   /** The run of the history that this one was compared with. */
   readonly comparedWith: string | null;
+  /** In which settings the two differ; `null` where there is no such run, or its settings are not known. */
+  readonly settingsChanged: readonly ChangedSetting[] | null;
   /** Whatever differs from run to run and from machine to machine. */
   readonly environment: RunEnvironment;
 };
@@ -80,9 +84,7 @@ export function recordedOptions(options: ScreenOptions): Readonly<Record<string,
     'within-fleet': options.withinFleet,
     start: formatUtc(options.startMs),
     days: options.days,
-    ...(volume.shape === 'SPHERE'
-      ? { 'miss-km': volume.missKm }
-      : { 'volume-rtn-km': volume.halfSizeRtnKm, 'volume-shape': volume.shape }),
+    ...recordedVolume(volume),
     objects: options.objectsPath ?? null,
     sigma: options.sigmaPath ?? null,
     'max-age-days': options.maxAgeDays,
@@ -93,6 +95,13 @@ export function recordedOptions(options: ScreenOptions): Readonly<Record<string,
     'cdm-from-pc': options.cdmFromPc ?? null,
     top: options.top,
   };
+}
+
+/** The options that make a volume. */
+export function recordedVolume(volume: ScreeningVolume): Readonly<Record<string, unknown>> {
+  return volume.shape === 'SPHERE'
+    ? { 'miss-km': volume.missKm }
+    : { 'volume-rtn-km': volume.halfSizeRtnKm, 'volume-shape': volume.shape };
 }
 
 /** Facts of this process, at the end of a job. */

@@ -12,12 +12,13 @@ import {
   formatElementAges,
   formatFileCounts,
 } from '../tables/terminal-table.js';
+import { changedSettingsLines } from './changed-settings.js';
 import { changeLines } from './changes.js';
 import { companionRow } from './companion-row.js';
-import { compareWithHistory } from './compare-with-history.js';
+import { changedSince, compareWithHistory, openHistory } from './compare-with-history.js';
 import { agesAt, agesOf, warnOfOldElements } from './element-ages.js';
 import { failedLines, warnOfFailures } from './failed-sets.js';
-import { keepInHistory, prepareHistory, readPastRuns } from './history.js';
+import { keepInHistory } from './history.js';
 import { readElementInputs, readKnowledge } from './inputs.js';
 import { alertLines, companionLines, finishedText, resultsLine, screenedLine } from './outcome-lines.js';
 import { type OutputFolder, withOutputFolder } from './output-folder.js';
@@ -56,9 +57,12 @@ async function screenInto(
   const timings = createTimings();
   const { startMs, historyPath } = options;
   const window = { startMs, endMs: startMs + Math.round(options.days * MS_PER_DAY) };
-  if (historyPath !== undefined) await prepareHistory(historyPath, ports);
-  const past = historyPath === undefined ? [] : readPastRuns(historyPath, startMs, ports);
+  const history = await openHistory(historyPath, startMs, ports);
+  const previous = history.past[0]?.name;
   const read = await readScreened(options, ports);
+  const inputs = { elements: read.inputs.files, others: read.otherFiles };
+  const asked = { version: ports.version, options: recordedOptions(options), inputs };
+  const changed = changedSince(history, asked, ports);
   timings.end('reading');
 
   const prepared = prepareSearch(read, options, window, ports);
@@ -77,14 +81,14 @@ async function screenInto(
   const comparison =
     historyPath === undefined
       ? undefined
-      : compareWithHistory(ranked, past, window, { ...prepared, companions });
+      : compareWithHistory(ranked, history.past, window, { ...prepared, companions });
   if (comparison !== undefined) await writeChangesCsv(folder.stream('changes.csv'), comparison.changes);
   timings.end('writing');
 
   const facts = {
     command: 'screen',
-    options: recordedOptions(options),
-    inputs: { elements: read.inputs.files, others: read.otherFiles },
+    options: asked.options,
+    inputs,
     elementAges: {
       fleet: options.allOnAll ? null : agesOf(read.inputs.fleet, startMs),
       catalog: agesOf(read.inputs.catalog, startMs),
@@ -100,7 +104,8 @@ async function screenInto(
       companionPairs: companions.length,
       messages,
     },
-    comparedWith: past[0]?.name ?? null,
+    comparedWith: previous ?? null,
+    settingsChanged: changed ?? null,
   };
   const { files, alertReached } = publishRun(
     folder,
@@ -114,7 +119,13 @@ async function screenInto(
   ports.log.info(finishedText(options.outPath, ranked, alertReached));
   const lines = [
     ...alertLines(ranked, options.alertPc),
-    ...(comparison === undefined ? [] : [...changeLines(comparison.changes, RISEN_SHOWN, past[0]?.name), '']),
+    ...(comparison === undefined
+      ? []
+      : [
+          ...changeLines(comparison.changes, RISEN_SHOWN, previous),
+          ...(previous === undefined ? [] : changedSettingsLines(changed)),
+          '',
+        ]),
     formatConjunctionTable(ranked, options.top),
     '',
     ...companionLines(companions),

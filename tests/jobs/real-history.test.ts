@@ -1,4 +1,5 @@
-import { readdirSync, readFileSync, writeFileSync } from 'node:fs';
+import { createHash } from 'node:crypto';
+import { readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, expect, test } from 'vitest';
 import { CRAFTED } from '../../sample-catalogs/make-sample-catalogs.js';
@@ -175,13 +176,27 @@ test('a pass that rose is the first thing that the terminal shows, the likeliest
   }
 });
 
+test('settings in which the night differs from the one before are told below the changes', () => {
+  expect(nights[1].stdout).toMatch(
+    /\nSince run 2026-11-30T00-00-00Z-0001: .*\nThat run had other settings, so changes may come from these alone:\n {2}--days: 5 then, 3 now\n\n/,
+  );
+  expect(nights[1].stderr).toContain(
+    'WARN: run 2026-11-30T00-00-00Z-0001, which this one is compared with, had other settings: --days: 5 then, 3 now; what changes.csv tells may come from these alone\n',
+  );
+  const changed = (run: string) => runRecordOf(at(`runs/${run}`)).settingsChanged;
+  expect(changed('2026-12-01T00-00-00Z-0002')).toEqual([{ setting: 'days', previous: 5, current: 3 }]);
+  expect(changed('2026-11-30T00-00-00Z-0001')).toBeNull();
+  expect(nights[0].stdout + nights[0].stderr).not.toContain('settings');
+});
+
 test('the history keeps whole runs, and only as many as asked for', async () => {
   const runs = () => readdirSync(at('runs')).sort();
   expect(runs()).toEqual(['2026-11-30T00-00-00Z-0001', '2026-12-01T00-00-00Z-0002']);
   for (const run of runs()) wholeRunIn(at(`runs/${run}`), ['encounters.json']);
   expect(runRecordOf(at('tonight')).comparedWith).toBe('2026-11-30T00-00-00Z-0001');
 
-  await night('2', '2026-12-01T12:00:00Z', 0.5, '--keep-runs', '2');
+  writeFileSync(at('objects.csv'), 'designator,name,hard_body_radius_m,maneuverable\n97061,,5,NO\n');
+  await night('2', '2026-12-01T12:00:00Z', 0.5, '--keep-runs', '2', '--objects', at('objects.csv'));
   expect(runs()).toEqual(['2026-12-01T00-00-00Z-0002', '2026-12-01T12-00-00Z-0003']);
   for (const run of runs()) wholeRunIn(at(`runs/${run}`), ['encounters.json']);
   const record = wholeRunIn(at('tonight'));
@@ -191,4 +206,60 @@ test('the history keeps whole runs, and only as many as asked for', async () => 
   expect(coming.length).toBeGreaterThan(1);
   for (const row of coming)
     expect(row).toMatchObject({ change: 'steady', runs_seen: expect.stringMatching(/[23]/) });
+});
+
+test('another volume, another sigma table, and a table of objects that was changed are named with both values', async () => {
+  const objects = at('objects.csv');
+  const before = rowsOf(at('tonight/conjunctions.csv')).length;
+  writeFileSync(objects, readFileSync(objects, 'utf8').replace(',5,', ',9,'));
+  writeFileSync(
+    at('sigma.csv'),
+    'object_designator,perigee_min_km,perigee_max_km,eccentricity_max,inclination_min_deg,inclination_max_deg,age_d,sigma_r_m,sigma_t_m,sigma_n_m\n98003,,,,,,0,10,100,10\n',
+  );
+  const outcome = await night(
+    ...(['2', '2026-12-01T12:00:00Z', 0.5, '--miss-km', '20'] as const),
+    ...['--objects', objects, '--sigma', at('sigma.csv')],
+  );
+  const told = [
+    '--miss-km: 5 then, 20 now',
+    `--objects: ${objects} then and now, but its contents changed`,
+    `--sigma: the built-in table then, ${at('sigma.csv')} now`,
+  ];
+  expect(outcome.stdout).toContain(
+    `\nThat run had other settings, so changes may come from these alone:\n  ${told.join('\n  ')}\n\n`,
+  );
+  expect(outcome.stderr).toContain(told.join('; '));
+  const record = runRecordOf(at('tonight'));
+  const digestOf = (file: string) => createHash('sha256').update(readFileSync(file)).digest('hex');
+  expect(record.settingsChanged).toEqual([
+    { setting: 'miss-km', previous: 5, current: 20 },
+    {
+      setting: 'objects',
+      previous: { file: objects, sha256: expect.stringMatching(/^[0-9a-f]{64}$/) },
+      current: { file: objects, sha256: digestOf(objects) },
+    },
+    {
+      setting: 'sigma',
+      previous: null,
+      current: { file: at('sigma.csv'), sha256: digestOf(at('sigma.csv')) },
+    },
+  ]);
+  // The reason for telling it: all that is new is new by the larger distance alone.
+  const fresh = rowsOf(at('tonight/changes.csv')).filter(({ change }) => change === 'new');
+  expect(fresh.length).toBeGreaterThan(before);
+  for (const row of fresh) expect(Number(row.miss_distance_m)).toBeGreaterThan(5000);
+});
+
+test('a run whose record cannot be read is compared with, and the doubt is told', async () => {
+  const runs = readdirSync(at('runs')).sort();
+  const last = runs[runs.length - 1];
+  rmSync(at(`runs/${last}/run.json`));
+  const outcome = await night('2', '2026-12-01T12:00:00Z', 0.1);
+  expect(outcome.stderr).toContain(
+    `WARN: the settings of run ${last} of the history cannot be read from its run.json: what changes.csv tells may come from other settings alone\n`,
+  );
+  expect(outcome.stdout).toMatch(
+    /^Since run \S+: .*\nThe settings of that run are not known: changes may come from other settings alone\.\n\n/,
+  );
+  expect(runRecordOf(at('tonight'))).toMatchObject({ comparedWith: last, settingsChanged: null });
 });

@@ -47,6 +47,7 @@ const RECORD: Omit<RunRecord, 'environment'> = {
   counts: { encounters: 0 },
   alert: { highestProbability: null, reached: false },
   comparedWith: null,
+  settingsChanged: null,
 };
 const FILES = [{ name: 'conjunctions.csv', bytes: 5, sha256: 'cd' }];
 

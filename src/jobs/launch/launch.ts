@@ -159,6 +159,7 @@ async function launchInto(
       messages,
     },
     comparedWith: null,
+    settingsChanged: null,
   };
   const { alertPc } = options.limits;
   const { files, alertReached } = publishRun(

@@ -1,4 +1,5 @@
 import { formatUtc } from '../../elements/utc.js';
+import { recordedVolume } from '../run-record.js';
 import type { LaunchOptions } from './launch-options.js';
 
 /** Options for `run.json`, named as on the command line; the number of workers changes no result and stays out. */
@@ -12,9 +13,7 @@ export function recordedLaunchOptions(options: LaunchOptions): Readonly<Record<s
     liftoff: formatUtc(options.liftoffMs),
     ...('ms' in release ? { release: formatUtc(release.ms) } : { 'release-times': release.path }),
     days: options.days,
-    ...(volume.shape === 'SPHERE'
-      ? { 'miss-km': volume.missKm }
-      : { 'volume-rtn-km': volume.halfSizeRtnKm, 'volume-shape': volume.shape }),
+    ...recordedVolume(volume),
     'slip-from': slips?.fromMin ?? null,
     'slip-to': slips?.toMin ?? null,
     'slip-every': slips?.everyMin ?? null,
