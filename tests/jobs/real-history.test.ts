@@ -139,13 +139,15 @@ test('the figures of both nights stand side by side', () => {
   }
 });
 
+/** What became of the pass of an object near a time. */
+const kindOf = (number: number, tca: string) =>
+  changes.find(
+    (row) =>
+      row.object2_designator === String(number) &&
+      Math.abs(Date.parse(row.tca_utc || row.previous_tca_utc) - Date.parse(tca)) < 600_000,
+  )?.change;
+
 test('the passes that were set up to change did', () => {
-  const kindOf = (number: number, tca: string) =>
-    changes.find(
-      (row) =>
-        row.object2_designator === String(number) &&
-        Math.abs(Date.parse(row.tca_utc || row.previous_tca_utc) - Date.parse(tca)) < 600_000,
-    )?.change;
   const kinds = new Map(CRAFTED.map(({ number, tca }) => [number, kindOf(number, tca)]));
   expect(kinds.get(97001)).toBe('rose');
   expect(kinds.get(97004)).toBe('new');
@@ -153,6 +155,25 @@ test('the passes that were set up to change did', () => {
   expect(kinds.get(97006)).toBe('past');
   expect(kinds.get(309003)).toBe('steady');
   expect(kinds.get(309007)).toBe('not-screened');
+});
+
+test('the README of the sample catalogs says of them what changes.csv says', () => {
+  const told = readFileSync(join(SAMPLES, 'README.md'), 'utf8').matchAll(
+    /^\| [AB] \d\d .*?\((\d+)\) *\| (\S+) (\S+) *\| *\S+ *\| *\S+ *\| (\S+) *\|/gm,
+  );
+  const rows = [...told].map(([, number, day, time, kind]) => ({
+    number: Number(number),
+    tca: `${day}T${time}Z`,
+    kind,
+  }));
+  // The slow neighbor is made apart from the others.
+  expect(rows.map(({ number }) => number).sort()).toEqual(
+    [...CRAFTED.map(({ number }) => number), 97009].sort(),
+  );
+  // One is of the satellite that is left out here, one lies after the shorter windows of these nights.
+  for (const { number, tca, kind } of rows.filter((row) => ![309007, 97008].includes(row.number))) {
+    expect([number, kindOf(number, tca)]).toEqual([number, kind]);
+  }
 });
 
 test('a pass that rose is the first thing that the terminal shows, the likeliest first', () => {
