@@ -3,7 +3,6 @@ import { InputError } from '../input-error.js';
 import { createLog, type Log, mayColor } from '../jobs/log.js';
 import { RunLockedError } from '../jobs/run-locked-error.js';
 import type { JobPorts } from '../jobs/screen-options.js';
-import { readConfigFile } from './config-file.js';
 import { EXIT_STATUS } from './exit-status.js';
 import {
   type AllGiven,
@@ -13,7 +12,6 @@ import {
   type Options,
   type Values,
 } from './options.js';
-import { createProgressBar } from './progress-bar.js';
 import { createProgressLog } from './progress-log.js';
 import type { Surroundings } from './surroundings.js';
 
@@ -85,14 +83,17 @@ async function runCommand<S extends Options>(
   const optionsOfFile = { ...definition.options, log: COMMON_OPTIONS.log };
   const commandLine = givenOnCommandLine({ ...optionsOfFile, config: COMMON_OPTIONS.config }, parsed);
   const configPath = commandLine.get('config')?.value as string | undefined;
+  // What not every run needs is loaded by those that do: it takes longer than reading the options.
   const configFile =
-    configPath === undefined ? new Map<string, Given>() : readConfigFile(configPath, optionsOfFile);
+    configPath === undefined
+      ? new Map<string, Given>()
+      : (await import('./config-file.js')).readConfigFile(configPath, optionsOfFile);
   const common = checkedValues({ log: COMMON_OPTIONS.log }, commandLine, configFile);
 
   const { stderr } = surroundings;
   const bar =
     common.log === 'text' && stderr.isTTY === true
-      ? createProgressBar(stderr as unknown as NodeJS.WritableStream)
+      ? (await import('./progress-bar.js')).createProgressBar(stderr as unknown as NodeJS.WritableStream)
       : undefined;
   const log = createLog({
     format: common.log,
