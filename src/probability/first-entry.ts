@@ -86,7 +86,7 @@ function earlierNear(pieces: readonly Piece[], index: number, radius: number): n
 
 /** The mass that enters through the leading half of the ball on its way along a piece. */
 function enteringAlong({ span, from, to, density }: Piece, radius: number): number {
-  const half = leadingHalf(Math.ceil(3 + (2 * radius) / density.smallestSigmaM));
+  const half = leadingHalf(Math.ceil(1.8 + (4 * radius) / density.smallestSigmaM));
   let sum = 0;
   for (let i = 0; i < TIMES.nodes.length; i++) {
     const part = from + 0.5 * (to - from) * (1 + TIMES.nodes[i]);
