@@ -20,8 +20,9 @@ export function scale(a: Vector3, factor: number): Vector3 {
   return [a[0] * factor, a[1] * factor, a[2] * factor];
 }
 
+/** By the square root of the sum, which is several times faster than `Math.hypot`: lengths are nowhere near overflow. */
 export function norm(a: Vector3): number {
-  return Math.hypot(a[0], a[1], a[2]);
+  return Math.sqrt(dot(a, a));
 }
 
 /** `matrix` times `a`. */
