@@ -16,7 +16,7 @@ import { openOutputFolder } from '../../src/jobs/output-folder.js';
 import { nightIn, writeNight } from './nights.js';
 import { silentPorts } from './silent-ports.js';
 
-const SCRIPT = 'tests/jobs/fixtures/nights-process.ts';
+const SCRIPT = 'tests/jobs/fixtures/nights-process.mjs';
 
 let folder = '';
 let out = '';
@@ -32,7 +32,7 @@ afterEach(async () => {
 });
 
 function start(...args: string[]): ChildProcess {
-  const child = spawn(process.execPath, ['--import', 'tsx', SCRIPT, ...args], {
+  const child = spawn(process.execPath, [SCRIPT, ...args], {
     stdio: ['ignore', 'pipe', 'pipe'],
   });
   children.add(child);
@@ -128,7 +128,7 @@ test('the lock of a killed process is taken over and the log names that process'
 test('a file that outgrows the limit of the process leaves the run before', async () => {
   await publishHere('first');
   // The limit counts kilobytes; the signal that comes with it is ignored, so that the write fails instead.
-  const script = `ulimit -f 64; trap '' XFSZ; exec "$0" --import tsx ${SCRIPT} "$1" once second 200000`;
+  const script = `ulimit -f 64; trap '' XFSZ; exec "$0" ${SCRIPT} "$1" once second 200000`;
   const { status, stderr } = spawnSync('bash', ['-c', script, process.execPath, out], { encoding: 'utf8' });
   expect(status).toBe(2);
   expect(stderr).toContain('large.csv: it grows beyond the largest size allowed for a file');

@@ -1,21 +1,17 @@
+import { spawn } from 'node:child_process';
 import { existsSync, readdirSync, readFileSync, statSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, expect, test } from 'vitest';
-import {
-  freshFolder,
-  outcomeOf,
-  runCommand,
-  SAMPLES,
-  setsInText,
-  startCommand,
-  wholeRunIn,
-} from '../cli/real-command.js';
+import type { ScreenOptions } from '../../src/jobs/screen-options.js';
+import { freshFolder, outcomeOf, runCommand, SAMPLES, setsInText, wholeRunIn } from '../cli/real-command.js';
 
 /*
- * The real command, killed: whatever the moment, the output folder holds the run before or the new one,
- * whole; the history holds whole runs; and the next run goes on from there.
+ * Screenings of the compiled build, killed: whatever the moment, the output folder holds the run before or the
+ * new one, whole; the history holds whole runs; and the next run goes on from there. Those that are killed leave
+ * out the command line, which is read before anything of a run exists; the first and the last have it.
  */
 
+const SCRIPT = join(import.meta.dirname, 'fixtures/screen-process.mjs');
 const KILLS = 50;
 /** Runs at once, each with a folder of its own. */
 const LANES = 2;
@@ -37,11 +33,32 @@ beforeAll(() => {
 /** Each run has its own start, by which its results are told from those of the others. */
 const startOf = (round: number) => `2026-12-01T03:15:${String(round).padStart(2, '0')}.000Z`;
 
-const run = (lane: number, round: number) => [
+const command = (lane: number, round: number) => [
   ...['screen', '--fleet', at('fleet.tle'), '--catalog', at('catalog.tle'), '--start', startOf(round)],
   ...['--days', '0.01', '--miss-km', '1000', '--workers', '1', '--cdm-from-pc', '0', '--keep-runs', '2'],
   ...['--out', at(`${lane}/tonight`), '--history', at(`${lane}/runs`)],
 ];
+
+/** The same as the job takes it. */
+const job = (lane: number, round: number): ScreenOptions => ({
+  fleetPaths: [at('fleet.tle')],
+  catalogPaths: [at('catalog.tle')],
+  allOnAll: false,
+  withinFleet: false,
+  startMs: Date.parse(startOf(round)),
+  days: 0.01,
+  volume: { shape: 'SPHERE', missKm: 1000 },
+  objectsPath: undefined,
+  sigmaPath: undefined,
+  maxAgeDays: 30,
+  workers: 1,
+  outPath: at(`${lane}/tonight`),
+  historyPath: at(`${lane}/runs`),
+  keepRuns: 2,
+  alertPc: undefined,
+  cdmFromPc: 0,
+  top: 0,
+});
 
 /** The start of the run that stands in the output folder, after a look at every file of it and of the history. */
 function standing(lane: number): string {
@@ -66,7 +83,7 @@ test(`killed at ${KILLS} random moments of its work`, async () => {
     const lock = at(`${number}/tonight.lock`);
     const signs = [lock, at(`${number}/.tonight.partial/conjunctions.csv`)];
     // How long it takes from the lock, and from the first file of the results, to the end.
-    const firstEnd = runCommand(run(number, 0));
+    const firstEnd = runCommand(command(number, 0));
     const sinceMs: number[] = [];
     for (const sign of signs) {
       while (!existsSync(sign)) await pause(1);
@@ -82,7 +99,7 @@ test(`killed at ${KILLS} random moments of its work`, async () => {
       // Half of the moments are anywhere, half where files are written and put in place.
       const fromSign = round % 2;
       const left = signs.map(stamp)[fromSign];
-      const child = startCommand(run(number, round));
+      const child = spawn(process.execPath, [SCRIPT, JSON.stringify(job(number, round))]);
       const end = outcomeOf(child);
       while (child.exitCode === null && [undefined, left].includes(stamp(signs[fromSign]))) await pause(1);
       await pause(1.1 * tookMs[fromSign] * random());
@@ -98,7 +115,7 @@ test(`killed at ${KILLS} random moments of its work`, async () => {
       tookMs[fromSign] *= now === before ? 1.1 : 0.85;
       before = now;
     }
-    const last = await runCommand(run(number, 59));
+    const last = await runCommand(command(number, 59));
     expect(last.status, last.stderr).toBe(0);
     expect(standing(number)).toBe(startOf(59));
     expect(readdirSync(at(String(number))).sort()).toEqual(['runs', 'tonight']);
