@@ -1,4 +1,4 @@
-import type { Matrix3, Vector3 } from '../vector.js';
+import { type Matrix3, rotate, type Vector3 } from '../vector.js';
 import { requireFinite, shown } from './arguments.js';
 
 /** What rounding may do to symmetry and definiteness, relative to the variances. */
@@ -63,22 +63,16 @@ function isTriple(value: unknown): boolean {
  * @param frame rows are the unit vectors of the frame, as `rtnFrame` gives them
  */
 export function covarianceOutOf(frame: Matrix3, covariance: Matrix3): Matrix3 {
-  const element = (i: number, j: number) => {
-    let sum = 0;
-    for (let k = 0; k < 3; k++) {
-      const row = covariance[k];
-      sum += frame[k][i] * (row[0] * frame[0][j] + row[1] * frame[1][j] + row[2] * frame[2][j]);
-    }
-    return sum;
-  };
-  const [xx, xy, xz, yy, yz, zz] = [
-    element(0, 0),
-    element(0, 1),
-    element(0, 2),
-    element(1, 1),
-    element(1, 2),
-    element(2, 2),
-  ];
+  const [f, g, h] = frame;
+  const toFirst = rotate(covariance, [f[0], g[0], h[0]]);
+  const toSecond = rotate(covariance, [f[1], g[1], h[1]]);
+  const toThird = rotate(covariance, [f[2], g[2], h[2]]);
+  const xx = f[0] * toFirst[0] + g[0] * toFirst[1] + h[0] * toFirst[2];
+  const xy = f[0] * toSecond[0] + g[0] * toSecond[1] + h[0] * toSecond[2];
+  const xz = f[0] * toThird[0] + g[0] * toThird[1] + h[0] * toThird[2];
+  const yy = f[1] * toSecond[0] + g[1] * toSecond[1] + h[1] * toSecond[2];
+  const yz = f[1] * toThird[0] + g[1] * toThird[1] + h[1] * toThird[2];
+  const zz = f[2] * toThird[0] + g[2] * toThird[1] + h[2] * toThird[2];
   return [
     [xx, xy, xz],
     [xy, yy, yz],

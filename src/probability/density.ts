@@ -19,7 +19,7 @@ export function densityOf(covarianceM2: Matrix3): Density | undefined {
 }
 
 /** The trace of the inverse is at most three times its largest eigenvalue, at least that eigenvalue. */
-export function smallestSigmaOf(inverse: Matrix3): number {
+function smallestSigmaOf(inverse: Matrix3): number {
   return 1 / Math.sqrt(inverse[0][0] + inverse[1][1] + inverse[2][2]);
 }
 

@@ -64,22 +64,33 @@ const HALF_STEP_MS = 500;
 export function turningStateAt(encounter: PathEncounter, timeMs: number): TurningState {
   const { object1, object2 } = encounter.statesAt(timeMs);
   const frame1 = rtnFrame(object1.positionKm, object1.velocityKmPerS);
-  const frame2 = rtnFrame(object2.positionKm, object2.velocityKmPerS);
-  const frame2InFrame1: Matrix3 = [
-    rotate(frame1, frame2[0]),
-    rotate(frame1, frame2[1]),
-    rotate(frame1, frame2[2]),
-  ];
   const before = turningPositionAt(encounter.statesAt, timeMs - HALF_STEP_MS);
   const after = turningPositionAt(encounter.statesAt, timeMs + HALF_STEP_MS);
   return {
     positionM: scale(rotate(frame1, subtract(object2.positionKm, object1.positionKm)), 1000),
     velocityMPerS: scale(subtract(after, before), 1000 / (2 * HALF_STEP_MS)),
-    covarianceM2: sumOf(
-      encounter.covariance1RtnM2,
-      covarianceOutOf(frame2InFrame1, encounter.covariance2RtnM2),
-    ),
+    covarianceM2: combinedCovariance(encounter, frame1, object2),
   };
+}
+
+/** The covariance alone of `turningStateAt`. */
+export function turningCovarianceAt(encounter: PathEncounter, timeMs: number): Matrix3 {
+  const { object1, object2 } = encounter.statesAt(timeMs);
+  return combinedCovariance(encounter, rtnFrame(object1.positionKm, object1.velocityKmPerS), object2);
+}
+
+function combinedCovariance(
+  { covariance1RtnM2, covariance2RtnM2 }: PathEncounter,
+  frame1: Matrix3,
+  { positionKm, velocityKmPerS }: OrbitState,
+): Matrix3 {
+  const frame2 = rtnFrame(positionKm, velocityKmPerS);
+  const frame2InFrame1: Matrix3 = [
+    rotate(frame1, frame2[0]),
+    rotate(frame1, frame2[1]),
+    rotate(frame1, frame2[2]),
+  ];
+  return sumOf(covariance1RtnM2, covarianceOutOf(frame2InFrame1, covariance2RtnM2));
 }
 
 /** Object 2 minus object 1 in the axes of object 1's RTN, meters. */

@@ -73,7 +73,9 @@ export function encounterPlane(
 
 /** A unit vector at a right angle to the unit vector `along`, without cancellation. */
 export function perpendicularTo(along: Vector3): Vector3 {
-  const [x, y, z] = along.map(Math.abs);
+  const x = Math.abs(along[0]);
+  const y = Math.abs(along[1]);
+  const z = Math.abs(along[2]);
   const axis: Vector3 = x <= y && x <= z ? [1, 0, 0] : y <= z ? [0, 1, 0] : [0, 0, 1];
   const found = cross(along, axis);
   return scale(found, 1 / norm(found));

@@ -3,7 +3,7 @@ import { massInBall } from './ball-mass.js';
 import { type Density, logDensity, logDensityWithin } from './density.js';
 import type { PathEncounter } from './encounter-path.js';
 import { perpendicularTo } from './encounter-plane.js';
-import { knotsOf, type Piece, piecesOf, positionAt, rateAt } from './path-pieces.js';
+import { densityAt, knotsOf, type Piece, piecesOf, positionAt, rateAt } from './path-pieces.js';
 import { legendreRule } from './quadrature.js';
 import { addNearChords, type Polygon, polygonOf, sweptBy } from './swept-path.js';
 
@@ -40,7 +40,7 @@ export function firstEntryProbability(encounter: PathEncounter): number | undefi
   if (radius === 0) return 0;
   const knots = knotsOf(encounter);
   if (knots === undefined) return undefined;
-  const { pieces, logLeast } = piecesOf(knots, radius);
+  const { pieces, logLeast } = piecesOf(encounter, knots);
   const counting = pieces.map(({ logLargest }) => logLargest >= logLeast);
   const polygons = polygonsOf(pieces, counting, radius);
   const [start] = knots;
@@ -79,7 +79,7 @@ function earlierNear(pieces: readonly Piece[], index: number, radius: number): n
     isCovered &&= turn <= LARGEST_TURN && RADII_OF_CURVATURE * radius * other.curvature <= 1;
     if (isCovered) continue;
     const reach = 2 * radius + 0.5 * (lengthM + other.lengthM);
-    if (distance(centerM, other.centerM) < reach) found.push(i);
+    if (squareBetween(centerM, other.centerM) < reach * reach) found.push(i);
   }
   return found;
 }
@@ -91,12 +91,14 @@ function enteringAlong({ span, from, to, density }: Piece, radius: number): numb
   for (let i = 0; i < TIMES.nodes.length; i++) {
     const part = from + 0.5 * (to - from) * (1 + TIMES.nodes[i]);
     const rate = rateAt(span, part);
+    const momentary = densityAt(span, part);
     const speed = norm(rate);
     const points = placed(half, positionAt(span, part), scale(rate, 1 / speed), radius);
     let entering = 0;
     for (let k = 0; k < half.weights.length; k++) {
       entering +=
-        half.weights[k] * Math.exp(logDensity(density, points[3 * k], points[3 * k + 1], points[3 * k + 2]));
+        half.weights[k] *
+        Math.exp(logDensity(momentary, points[3 * k], points[3 * k + 1], points[3 * k + 2]));
     }
     sum += TIMES.weights[i] * speed * entering;
   }
@@ -213,6 +215,6 @@ function placed({ directions }: LeadingHalf, center: Vector3, along: Vector3, ra
   return POINTS;
 }
 
-function distance(a: Vector3, b: Vector3): number {
-  return Math.hypot(a[0] - b[0], a[1] - b[1], a[2] - b[2]);
+function squareBetween(a: Vector3, b: Vector3): number {
+  return (a[0] - b[0]) ** 2 + (a[1] - b[1]) ** 2 + (a[2] - b[2]) ** 2;
 }

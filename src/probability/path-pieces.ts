@@ -1,6 +1,11 @@
-import { dot, type Matrix3, norm, rotate, type Vector3 } from '../vector.js';
-import { type Density, densityOf, logDensity, logDensityWithin, smallestSigmaOf } from './density.js';
-import { type PathEncounter, type TurningState, turningStateAt } from './encounter-path.js';
+import { dot, norm, rotate, type Vector3 } from '../vector.js';
+import { type Density, densityOf, logDensity, logDensityWithin } from './density.js';
+import {
+  type PathEncounter,
+  type TurningState,
+  turningCovarianceAt,
+  turningStateAt,
+} from './encounter-path.js';
 
 /** Between times this far apart the path is interpolated by cubics: far finer than orbits bend. */
 const LONGEST_KNOT_MS = 20_000;
@@ -17,7 +22,7 @@ const SHORTEST_PART_OF_RADIUS = 0.5;
 export type Knot = TurningState & Density & { readonly timeMs: number };
 
 /** The path between two knots. */
-type Span = { readonly left: Knot; readonly right: Knot };
+type Span = { readonly left: Knot; readonly right: Knot; readonly encounter: PathEncounter };
 
 /** A piece of the path within one span, with bounds that hold for all of it. */
 export type Piece = {
@@ -61,14 +66,15 @@ export function knotsOf(encounter: PathEncounter): Knot[] | undefined {
  * @returns the pieces, and the logarithm of the density below which one does not count
  */
 export function piecesOf(
+  encounter: PathEncounter,
   knots: readonly Knot[],
-  radiusM: number,
 ): { readonly pieces: Piece[]; readonly logLeast: number } {
+  const radiusM = encounter.hardBodyRadiusM;
   // The likeliest part is cut first: the largest density is then known early, and what lies far from it stays whole.
   const byDensity = (a: Piece, b: Piece) => a.logLargest - b.logLargest;
   const waiting = knots
     .slice(1)
-    .map((right, i) => pieceOf({ left: knots[i], right }, 0, 1, radiusM))
+    .map((right, i) => pieceOf({ left: knots[i], right, encounter }, 0, 1))
     .sort(byDensity);
   const pieces: Piece[] = [];
   let logLeast = Number.NEGATIVE_INFINITY;
@@ -80,14 +86,14 @@ export function piecesOf(
     }
     const { span, from, to } = piece;
     const middle = 0.5 * (from + to);
-    const halves = [pieceOf(span, from, middle, radiusM), pieceOf(span, middle, to, radiusM)];
+    const halves = [pieceOf(span, from, middle), pieceOf(span, middle, to)];
     waiting.push(...halves.sort(byDensity));
   }
   pieces.sort((a, b) => a.span.left.timeMs - b.span.left.timeMs || a.from - b.from);
   return { pieces, logLeast };
 }
 
-function pieceOf(span: Span, from: number, to: number, radiusM: number): Piece {
+function pieceOf(span: Span, from: number, to: number): Piece {
   const part = 0.5 * (from + to);
   const half = 0.5 * (to - from);
   const centerM = positionAt(span, part);
@@ -107,7 +113,7 @@ function pieceOf(span: Span, from: number, to: number, radiusM: number): Piece {
     curvature: slowest === 0 ? Number.POSITIVE_INFINITY : bend / (slowest * slowest),
     density,
     logAtCenter: logDensity(density, centerM[0], centerM[1], centerM[2]),
-    logLargest: logDensityWithin(density, centerM, radiusM + 0.5 * lengthM),
+    logLargest: logDensityWithin(density, centerM, span.encounter.hardBodyRadiusM + 0.5 * lengthM),
   };
 }
 
@@ -153,18 +159,8 @@ function combined({ left, right }: Span, a: number, b: number, c: number, d: num
   return [component(0), component(1), component(2)];
 }
 
-/** Between two knots the covariance changes little, and nearly evenly. */
-function densityAt({ left, right }: Span, part: number): Density {
-  const between = (a: number, b: number) => a + part * (b - a);
-  const row = (i: 0 | 1 | 2): Vector3 => {
-    const [x, y, z] = left.inverse[i];
-    const to = right.inverse[i];
-    return [between(x, to[0]), between(y, to[1]), between(z, to[2])];
-  };
-  const inverse: Matrix3 = [row(0), row(1), row(2)];
-  return {
-    inverse,
-    logNorm: between(left.logNorm, right.logNorm),
-    smallestSigmaM: smallestSigmaOf(inverse),
-  };
+/** The density at a time between the knots. One that is flat for that moment only is taken from the knot before. */
+export function densityAt({ left, right, encounter }: Span, part: number): Density {
+  const timeMs = left.timeMs + part * (right.timeMs - left.timeMs);
+  return densityOf(turningCovarianceAt(encounter, timeMs)) ?? left;
 }

@@ -106,6 +106,11 @@ describe('firstEntryProbability', () => {
       encounterOf([60, 100, 120], [0, -0.11, 0.01], [12, 60, 20], [12, 60, 20], 20, 90),
       500,
     ],
+    [
+      'head on, the covariance turning while it is passed through',
+      encounterOf([2000, 0, 500], [0, -14_900, 900], [700, 90_000, 700], [900, 120_000, 900], 10, 3),
+      1800,
+    ],
   ])('agrees with a plain evaluation: %s', (_, encounter, chords) => {
     const found = firstEntryProbability(encounter) ?? Number.NaN;
     expect(Math.abs(found / plainEvaluation(encounter, chords) - 1)).toBeLessThan(1e-3);
