@@ -8,6 +8,7 @@ import { ommRecord } from '../elements/formats.js';
 import { toTwoLine } from '../synthetic/two-line.js';
 import {
   freshFolder,
+  ONE_WORKER,
   type Outcome,
   type Row,
   rowsOf,
@@ -35,7 +36,7 @@ afterAll(folder.remove);
 const at = (...names: string[]) => join(folder.path, ...names);
 
 async function launch(out: string, ...args: string[]): Promise<Outcome> {
-  return runCommand(['launch', '--out', out, '--workers', '2', ...args], { cwd: folder.path });
+  return runCommand(['launch', '--out', out, ...ONE_WORKER, ...args], { cwd: folder.path });
 }
 
 const table = (out: string, name: string): Row[] => rowsOf(at(out, `${name}.csv`));

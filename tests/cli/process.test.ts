@@ -2,8 +2,9 @@ import { spawn } from 'node:child_process';
 import { once } from 'node:events';
 import { readFileSync } from 'node:fs';
 import { expect, test } from 'vitest';
+import { COMMAND } from './real-command.js';
 
-const PROGRAM = `"${process.execPath}" --import tsx src/cli/main.ts`;
+const PROGRAM = `"${process.execPath}" "${COMMAND}"`;
 const { version } = JSON.parse(readFileSync('package.json', 'utf8'));
 
 /** Runs a line of bash, so that pipes are those of a shell. */

@@ -13,6 +13,9 @@ export const COMMAND = join(import.meta.dirname, '../../bin/wideberth.js');
 /** The folder of the sample catalogs. */
 export const SAMPLES = join(import.meta.dirname, '../../sample-catalogs');
 
+/** For runs that have nothing to do with threads: each has to be started, and the tests fill all cores anyway. */
+export const ONE_WORKER = ['--workers', '1'] as const;
+
 export type Outcome = {
   /** `null` when a signal ended the process. */
   readonly status: number | null;

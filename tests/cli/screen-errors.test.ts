@@ -1,9 +1,10 @@
-import { mkdirSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
+import { existsSync, mkdirSync, readdirSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { gzipSync } from 'node:zlib';
 import { afterAll, beforeAll, describe, expect, test } from 'vitest';
 import { CAUTION } from '../../src/caution.js';
-import { freshFolder, runCommand, SAMPLES, withClock } from './real-command.js';
+import { freshFolder, type Outcome, runCommand, SAMPLES, withClock } from './real-command.js';
+import { runInMemory } from './run-in-memory.js';
 
 /*
  * Mistakes of the user through the real command: status 2, one line that says what is wrong and what to do,
@@ -35,7 +36,8 @@ type Mistake = readonly [what: string, args: readonly string[], message: string 
 const own = ['--fleet', FLEET];
 const withCatalog = (catalog: string) => [...own, '--catalog', catalog, ...NIGHT];
 
-const MISTAKES: readonly Mistake[] = [
+/** In what the files hold, found by the job: it has begun to write then. */
+const MISTAKES_IN_FILES: readonly Mistake[] = [
   ['a file that is not there', withCatalog('gone.tle'), 'gone.tle does not exist: check the path'],
   ['a folder', withCatalog('archive'), 'archive is a directory: name the element-set files in it'],
   ['binary data', withCatalog('binary.tle'), /^binary.tle holds binary data/],
@@ -51,12 +53,16 @@ const MISTAKES: readonly Mistake[] = [
     [...own, '--catalog', FLEET, FLEET, ...NIGHT],
     /fleet.tle is named twice: name each file once$/,
   ],
-  ['a word of no option', [...withCatalog(FLEET), 'more.tle'], /^more.tle belongs to no option: /],
   [
     'a value that is none in the file of objects',
     [...withCatalog(FLEET), '--objects', 'objects.csv'],
     /^objects.csv:3: hard_body_radius_m is "two", expected a number of meters greater than 0$/,
   ],
+];
+
+/** In the options, found before anything is opened. */
+const MISTAKES_IN_OPTIONS: readonly Mistake[] = [
+  ['a word of no option', [...withCatalog(FLEET), 'more.tle'], /^more.tle belongs to no option: /],
   [
     'a number out of range',
     [...own, '--catalog', FLEET, '--days', '-3'],
@@ -94,17 +100,28 @@ async function eachOf<T>(items: readonly T[], work: (item: T) => Promise<void>):
   await Promise.all([next(), next()]);
 }
 
-test.concurrent('each mistake is told in one line with what to do, ends with 2 and leaves nothing behind', async () => {
+function expectOneLine(outcome: Outcome, [what, , message]: Mistake): void {
+  expect(outcome, what).toMatchObject({ status: 2, stdout: '' });
+  const line = /^\[\d{4}-\d\d-\d\dT\d\d:\d\d:\d\dZ\] ERROR: (.*)\n$/.exec(outcome.stderr);
+  expect(line?.[1], `${what}: ${outcome.stderr}`).toMatch(message);
+}
+
+test.concurrent('each mistake in files is told in one line with what to do, ends with 2 and leaves nothing behind', async () => {
   const before = readdirSync(folder.path);
-  await eachOf(MISTAKES, async ([what, args, message]) => {
+  await eachOf(MISTAKES_IN_FILES, async (mistake) => {
+    const [what, args] = mistake;
     const outcome = await runCommand(['screen', ...args, '--out', `new/${what}`], { cwd: folder.path });
-    expect(outcome, what).toMatchObject({ status: 2, stdout: '' });
-    const line = /^\[\d{4}-\d\d-\d\dT\d\d:\d\d:\d\dZ\] ERROR: (.*)\n$/.exec(outcome.stderr);
-    expect(line?.[1], `${what}: ${outcome.stderr}`).toMatch(message);
+    expectOneLine(outcome, mistake);
   });
   // The folder above the output may have come into being, but nothing stands in it.
   expect(readdirSync(folder.path).filter((name) => name !== 'new')).toEqual(before);
   expect(readdirSync(folder.path).includes('new') ? readdirSync(at('new')) : []).toEqual([]);
+});
+
+test.each(MISTAKES_IN_OPTIONS)('so is %s', async (...mistake) => {
+  const [what, args] = mistake;
+  expectOneLine(await runInMemory('screen', ...args, '--out', `new/${what}`), mistake);
+  expect(existsSync('new')).toBe(false);
 });
 
 test.concurrent('without a start, elements of months ago are refused with the start that would fit', async () => {

@@ -6,7 +6,7 @@ import type { ElementSet } from '../../src/elements/element-set.js';
 import { csvFile, jsonFile, kvnFile, ommRecord, threeLineFile, xmlFile } from '../elements/formats.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { roundToTwoLine } from '../synthetic/two-line.js';
-import { freshFolder, rowsOf, runCommand, runRecordOf } from './real-command.js';
+import { freshFolder, ONE_WORKER, rowsOf, runCommand, runRecordOf } from './real-command.js';
 
 /*
  * The forms in which element sets and what is known of objects can be given, through the real command.
@@ -35,7 +35,7 @@ const sets: ElementSet[] = syntheticCatalog({ seed: 31, count: 130, epochMs: STA
 const fleet = sets.slice(0, 10);
 const catalog = sets.slice(10);
 
-const WINDOW = ['--start', '2026-12-01T00:00:00Z', '--days', '0.25', '--miss-km', '120'];
+const WINDOW = ['--start', '2026-12-01T00:00:00Z', '--days', '0.25', '--miss-km', '120', ...ONE_WORKER];
 
 async function screened(out: string, args: readonly string[], input?: string | Uint8Array): Promise<string> {
   const { status, stderr } = await runCommand(['screen', ...args, ...WINDOW, '--out', at(out)], {

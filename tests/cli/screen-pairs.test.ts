@@ -6,7 +6,7 @@ import { readElementFiles } from '../../src/elements/read.js';
 import { threeLineFile } from '../elements/formats.js';
 import { type BruteForceEncounter, bruteForceEncounters } from '../encounters/brute-force.js';
 import { syntheticCatalog, walkerShell } from '../synthetic/catalog.js';
-import { freshFolder, type Row, rowsOf, runCommand, runRecordOf } from './real-command.js';
+import { freshFolder, ONE_WORKER, type Row, rowsOf, runCommand, runRecordOf } from './real-command.js';
 
 /*
  * What is screened against what: fleet against catalog, fleet against itself, all on all; and objects that
@@ -63,7 +63,7 @@ type Screened = {
 async function screened(out: string, ...what: string[]): Promise<Screened> {
   const { status, stdout, stderr } = await runCommand([
     ...['screen', ...what, '--start', '2026-12-01T00:00:00Z', '--days', String(DAYS)],
-    ...['--miss-km', String(MISS_KM), '--out', at(out)],
+    ...['--miss-km', String(MISS_KM), '--out', at(out), ...ONE_WORKER],
   ]);
   expect(status, stderr).toBe(0);
   const rows = rowsOf(at(`${out}/conjunctions.csv`));

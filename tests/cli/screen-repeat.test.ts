@@ -4,6 +4,7 @@ import { afterAll, beforeAll, expect, test } from 'vitest';
 import {
   contentsOf,
   freshFolder,
+  ONE_WORKER,
   type Outcome,
   rowsOf,
   runCommand,
@@ -32,11 +33,11 @@ beforeAll(async () => {
     ...['screen', '--fleet', join(SAMPLES, 'night-1/fleet.tle')],
     ...['--catalog', at('evening.tle')],
     ...['--start', '2026-11-30T20:00:00Z', '--days', '0.3', '--miss-km', '40'],
-    ...['--out', at('evening'), '--history', BEFORE],
+    ...['--out', at('evening'), '--history', BEFORE, ...ONE_WORKER],
   ]);
   expect(status, stderr).toBe(0);
 
-  first = await night('threads-1', ['--workers', '1']);
+  first = await night('threads-1', ONE_WORKER);
   const messages = Object.keys(first.contents).filter((name) => name.startsWith('cdm/'));
   expect(messages.length).toBeGreaterThan(3);
   expect(Object.keys(first.contents)).toEqual([
@@ -153,19 +154,14 @@ test.concurrent('the order in which files are named changes the lists of inputs,
   expect(own.length).toBe(36);
   writeFileSync(at('fleet/a.tle'), own.slice(0, 20).join(''));
   writeFileSync(at('fleet/b.tle'), own.slice(20).reverse().join(''));
-  const together = await night(
-    'together',
-    [],
-    [...['--fleet', at('fleet/a.tle'), at('fleet/b.tle')], ...['--catalog', a, b, '--catalog', c]],
-  );
-  const shuffled = await night(
-    'shuffled',
-    [],
-    [
-      ...['--catalog', c, '--fleet', at('fleet/b.tle'), '--catalog', a],
-      ...['--fleet', at('fleet/a.tle'), '--catalog', b],
-    ],
-  );
+  const together = await night('together', ONE_WORKER, [
+    ...['--fleet', at('fleet/a.tle'), at('fleet/b.tle')],
+    ...['--catalog', a, b, '--catalog', c],
+  ]);
+  const shuffled = await night('shuffled', ONE_WORKER, [
+    ...['--catalog', c, '--fleet', at('fleet/b.tle'), '--catalog', a],
+    ...['--fleet', at('fleet/a.tle'), '--catalog', b],
+  ]);
   for (const name of ['conjunctions.csv', 'sensitivity.csv', 'companions.csv', 'changes.csv']) {
     expect(together.contents[name], name).toBe(first.contents[name]);
     expect(shuffled.contents[name], name).toBe(first.contents[name]);

@@ -9,7 +9,7 @@ import {
   bruteForcePassages,
 } from '../encounters/brute-force.js';
 import { syntheticCatalog, USUAL_MIX } from '../synthetic/catalog.js';
-import { freshFolder, type Row, rowsOf, runCommand } from './real-command.js';
+import { freshFolder, ONE_WORKER, type Row, rowsOf, runCommand } from './real-command.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const DAYS = 0.3;
@@ -55,7 +55,7 @@ test.concurrent.each([
         '--out',
         at(shape),
       ],
-      ...['--start', '2026-12-01T00:00:00Z', '--days', String(DAYS)],
+      ...['--start', '2026-12-01T00:00:00Z', '--days', String(DAYS), ...ONE_WORKER],
       ...['--volume-rtn-km', halfSizesKm.join(','), '--volume-shape', shape],
     ]);
     expect(outcome.status, outcome.stderr).toBe(0);

@@ -13,6 +13,7 @@ import { join } from 'node:path';
 import { afterEach, beforeEach, describe, expect, test } from 'vitest';
 import { InputError } from '../../src/input-error.js';
 import type { KnownEncounter } from '../../src/jobs/changes.js';
+import { changedSince, openHistory } from '../../src/jobs/compare-with-history.js';
 import { keepInHistory, prepareHistory, readPastRuns } from '../../src/jobs/history.js';
 import { openOutputFolder } from '../../src/jobs/output-folder.js';
 import { nightIn, writeNight } from './nights.js';
@@ -209,4 +210,45 @@ test('a history that cannot be written is refused before any work', async () => 
   await prepareHistory(history, silentPorts());
   expect(existsSync(history)).toBe(true);
   expect(readFileSync(join(folder, 'file'), 'utf8')).toBe('');
+});
+
+describe('the settings of the run before', () => {
+  const tonight = { version: '0.0.0', options: {}, inputs: { elements: [], others: [] } };
+  const since = async (ports: ReturnType<typeof silentPorts>) =>
+    changedSince(await openHistory(history, FIRST_MS + DAY_MS, ports), tonight, ports);
+  const writeRecord = (text: string) =>
+    writeFileSync(join(history, '2026-12-01T02-30-00Z-0001', 'run.json'), text);
+
+  test('are those of its record', async () => {
+    await keep(FIRST_MS);
+    writeRecord(JSON.stringify({ ...tonight, options: { days: 7 } }));
+    const ports = silentPorts();
+    expect(await since(ports)).toEqual([{ setting: 'days', previous: 7, current: null }]);
+    expect(ports.messages).toEqual([
+      'run 2026-12-01T02-30-00Z-0001, which this one is compared with, had other settings: --days: 7 then, none now; what changes.csv tells may come from these alone',
+    ]);
+    writeRecord(JSON.stringify(tonight));
+    const quiet = silentPorts();
+    expect(await since(quiet)).toEqual([]);
+    expect(quiet.messages).toEqual([]);
+  });
+
+  test.each(['', '{', '[]', '{"program":"wideberth","files":[]}'])(
+    'are not known where its record is %j, and the doubt is told',
+    async (text) => {
+      await keep(FIRST_MS);
+      writeRecord(text);
+      const ports = silentPorts();
+      expect(await since(ports)).toBeUndefined();
+      expect(ports.messages).toEqual([
+        'the settings of run 2026-12-01T02-30-00Z-0001 of the history cannot be read from its run.json: what changes.csv tells may come from other settings alone',
+      ]);
+    },
+  );
+
+  test('are of no concern where there is none', async () => {
+    const ports = silentPorts();
+    expect(await since(ports)).toBeUndefined();
+    expect(ports.messages).toEqual([]);
+  });
 });

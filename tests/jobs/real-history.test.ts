@@ -1,10 +1,11 @@
 import { createHash } from 'node:crypto';
-import { readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import { readdirSync, readFileSync, writeFileSync } from 'node:fs';
 import { join } from 'node:path';
 import { afterAll, beforeAll, expect, test } from 'vitest';
 import { CRAFTED } from '../../sample-catalogs/make-sample-catalogs.js';
 import {
   freshFolder,
+  ONE_WORKER,
   type Outcome,
   type Row,
   rowsOf,
@@ -38,7 +39,7 @@ async function night(name: string, start: string, days: number, ...more: string[
   const outcome = await runCommand([
     ...['screen', '--fleet', at(`${name}-fleet.tle`), '--catalog', at(`${name}-catalog.tle`)],
     ...['--start', start, '--days', String(days), '--out', at('tonight'), '--history', at('runs')],
-    ...more,
+    ...[...ONE_WORKER, ...more],
   ]);
   expect(outcome.status, outcome.stderr).toBe(0);
   return outcome;
@@ -269,18 +270,4 @@ test('another volume, another sigma table, and a table of objects that was chang
   const fresh = rowsOf(at('tonight/changes.csv')).filter(({ change }) => change === 'new');
   expect(fresh.length).toBeGreaterThan(before);
   for (const row of fresh) expect(Number(row.miss_distance_m)).toBeGreaterThan(5000);
-});
-
-test('a run whose record cannot be read is compared with, and the doubt is told', async () => {
-  const runs = readdirSync(at('runs')).sort();
-  const last = runs[runs.length - 1];
-  rmSync(at(`runs/${last}/run.json`));
-  const outcome = await night('2', '2026-12-01T12:00:00Z', 0.1);
-  expect(outcome.stderr).toContain(
-    `WARN: the settings of run ${last} of the history cannot be read from its run.json: what changes.csv tells may come from other settings alone\n`,
-  );
-  expect(outcome.stdout).toMatch(
-    /^Since run \S+: .*\nThe settings of that run are not known: changes may come from other settings alone\.\n\n/,
-  );
-  expect(runRecordOf(at('tonight'))).toMatchObject({ comparedWith: last, settingsChanged: null });
 });
