@@ -6,7 +6,6 @@ import { decodeText, inputLabel, readTextBytes } from './file-bytes.js';
 import { isOmmCsvHeader, ommCsvDecoder } from './omm-csv.js';
 import { ommJsonDecoder } from './omm-json.js';
 import { ommKvnDecoder } from './omm-kvn.js';
-import { ommXmlDecoder } from './omm-xml.js';
 import { twoLineDecoder } from './two-line.js';
 
 /** What one file held: `read` records, `rejected` of them faulty. */
@@ -27,13 +26,15 @@ export type ReadResult = {
 
 type Format = 'two-line' | 'json' | 'csv' | 'xml' | 'kvn';
 
-const DECODERS: Readonly<Record<Format, (file: string, options: ReadOptions) => Decoder>> = {
-  'two-line': twoLineDecoder,
-  json: ommJsonDecoder,
-  csv: ommCsvDecoder,
-  xml: ommXmlDecoder,
-  kvn: ommKvnDecoder,
-};
+const DECODERS: Readonly<Record<Format, (file: string, options: ReadOptions) => Decoder | Promise<Decoder>>> =
+  {
+    'two-line': twoLineDecoder,
+    json: ommJsonDecoder,
+    csv: ommCsvDecoder,
+    // Its parser takes longer to load than all the others together, and hardly any file needs it.
+    xml: async (file, options) => (await import('./omm-xml.js')).ommXmlDecoder(file, options),
+    kvn: ommKvnDecoder,
+  };
 
 /** The format shows in the first line that says something; this much is looked through for it. */
 const LONGEST_HEAD_BYTES = 1 << 20;
@@ -112,7 +113,7 @@ async function* records(path: string, options: ReadOptions, hash?: Hash): AsyncG
       const line = firstLine(head, false);
       if (line === undefined && head.length < LONGEST_HEAD_BYTES) continue;
       format = formatOf(line ?? '', path);
-      decoder = DECODERS[format](path, options);
+      decoder = await DECODERS[format](path, options);
       bytes = head;
     }
     for (const record of decoder.push(bytes)) {
@@ -127,7 +128,7 @@ async function* records(path: string, options: ReadOptions, hash?: Hash): AsyncG
       throw new InputError(`${inputLabel(path)} ${what}: give ${FORMATS}`);
     }
     format = formatOf(line, path);
-    decoder = DECODERS[format](path, options);
+    decoder = await DECODERS[format](path, options);
     for (const record of decoder.push(head)) {
       count(record);
       yield record;
