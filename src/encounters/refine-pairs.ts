@@ -2,43 +2,26 @@ import { stateOnTrack, type TrackCursor } from '../ephemeris/track-cursor.js';
 import { farthestInStepKm, isConvex, type StepBounds, tidePerS2 } from './bounds.js';
 import type { ClosestApproach } from './closest-approach.js';
 import type { NearPairs } from './near-pairs.js';
-import {
-  createRecentStates,
-  type RecentStates,
-  type RefinedObject,
-  refineFastTca,
-  relativeStateAt,
-  slowTcas,
-} from './refine.js';
-import { pairKey, type SearchObjects, type SearchRules } from './search-problem.js';
+import { type ObjectPair, refineFastPair, refineSlowPair, type Sgp4Refiner } from './refine-on-sgp4.js';
+import { pairKey } from './search-problem.js';
 import { shellFloorKm } from './shell.js';
 import { RECORD_LOW, RECORD_SIZE } from './step-kernel.js';
 
-/** Grid of the sign changes of a slow pair. */
-const SLOW_GRID_MS = 40_000;
-/** A refined TCA is taken by the step that holds it; this much over its edges covers rounding. */
-const EDGE_MS = 0.01;
 /** Distance on the tracks of a slow pair is looked at in parts of this. */
 const SLOW_TRACK_STEP_S = 20;
 
 /** What refining works on during one slab. Objects of the tracks are numbered in another order, by `order`. */
-export type Refiner = {
-  readonly objects: SearchObjects;
-  readonly rules: SearchRules;
+export type TrackRefiner = Sgp4Refiner & {
   /** Index in `objects` of each object on the tracks. */
   readonly order: Int32Array;
   readonly cursor: TrackCursor;
   /** eps of `bounds.ts` of each object on the tracks. */
   readonly toleranceKm: Float64Array;
   readonly bounds: StepBounds;
-  /** Latest states of the objects in slow pairs, by their index in `objects`. */
-  readonly recent: Map<number, RecentStates>;
 };
 
-type Step = { readonly middleS: number; readonly fromMs: number; readonly toMs: number };
-
-/** Two objects as they are numbered on the tracks, and in `objects`, there the lower one first. */
-type Pair = { readonly a: number; readonly b: number; readonly first: number; readonly second: number };
+/** Two objects as they are numbered on the tracks, and in `objects`. */
+type Pair = ObjectPair & { readonly a: number; readonly b: number };
 
 const track = new Float64Array(6);
 const relative = new Float64Array(6);
@@ -53,19 +36,13 @@ const relative = new Float64Array(6);
  * @returns number of pairs that went to SGP4
  */
 export function refinePairs(
-  refiner: Refiner,
+  refiner: TrackRefiner,
   pairs: NearPairs,
   records: Float32Array,
   middleS: number,
   approaches: ClosestApproach[],
 ): number {
-  const { objects, rules, order, cursor, bounds } = refiner;
-  const middleMs = cursor.tracks.startMs + middleS * 1000;
-  const step = {
-    middleS,
-    fromMs: middleMs - bounds.halfStepS * 1000,
-    toMs: middleMs + bounds.halfStepS * 1000,
-  };
+  const { objects, rules, order } = refiner;
   let refined = 0;
   for (let k = 0; k < pairs.size; k++) {
     const a = pairs.first[k];
@@ -74,21 +51,21 @@ export function refinePairs(
     const second = Math.max(order[a], order[b]);
     if (rules.skippedPairs.size > 0 && rules.skippedPairs.has(pairKey(first, second, objects.count)))
       continue;
-    if (refinePair(refiner, { a, b, first, second }, records, step, approaches)) refined++;
+    if (refinePair(refiner, { a, b, first, second }, records, middleS, approaches)) refined++;
   }
   return refined;
 }
 
 /** @returns whether the pair went to SGP4 */
 function refinePair(
-  refiner: Refiner,
+  refiner: TrackRefiner,
   pair: Pair,
   records: Float32Array,
-  step: Step,
+  middleS: number,
   approaches: ClosestApproach[],
 ): boolean {
-  const { cursor, toleranceKm, bounds, rules } = refiner;
-  const { a, b, first, second } = pair;
+  const { cursor, toleranceKm, bounds } = refiner;
+  const { a, b } = pair;
   const { halfStepS, baseReachKm } = bounds;
   const i = RECORD_SIZE * a;
   const j = RECORD_SIZE * b;
@@ -103,38 +80,21 @@ function refinePair(
   const farthestKm = farthestInStepKm(halfStepS, reachKm, tide, speed);
   // What eps holds beyond the positions is the error of the tracks' velocities over half a step.
   const speedErrorKmPerS = (toleranceKm[a] + toleranceKm[b] - tracksErrKm) / halfStepS;
+  const { startMs } = cursor.tracks;
+  const stretch = {
+    fromMs: startMs + (middleS - halfStepS) * 1000,
+    toMs: startMs + (middleS + halfStepS) * 1000,
+  };
   if (isConvex(halfStepS, farthestKm, tide, speed - speedErrorKmPerS)) {
-    const guessS = nearestOnTracks(refiner, pair, step.middleS, tracksErrKm);
+    const guessS = nearestOnTracks(refiner, pair, middleS, tracksErrKm);
     if (Number.isNaN(guessS)) return false;
-    const object1 = refinedObject(refiner, first);
-    const object2 = refinedObject(refiner, second);
-    const guessMs = cursor.tracks.startMs + guessS * 1000;
-    const tcaMs = refineFastTca(object1, object2, guessMs, 2000 * halfStepS, rules.missKm);
-    accept(refiner, pair, object1, object2, tcaMs, step, approaches);
+    refineFastPair(refiner, pair, stretch, startMs + guessS * 1000, approaches);
     return true;
   }
   const fastestKmPerS = speed + tide * farthestKm * halfStepS;
-  if (!comesNearOnTracks(refiner, pair, step.middleS, tracksErrKm, fastestKmPerS)) return false;
-  const object1 = objectWithRecentStates(refiner, first);
-  const object2 = objectWithRecentStates(refiner, second);
-  for (const tcaMs of slowTcas(object1, object2, step.fromMs, step.toMs, SLOW_GRID_MS)) {
-    accept(refiner, pair, object1, object2, tcaMs, step, approaches);
-  }
+  if (!comesNearOnTracks(refiner, pair, middleS, tracksErrKm, fastestKmPerS)) return false;
+  refineSlowPair(refiner, pair, stretch, approaches);
   return true;
-}
-
-function refinedObject({ objects: { records, epochMs } }: Refiner, object: number): RefinedObject {
-  return { record: records[object], epochMs: epochMs[object] };
-}
-
-/** Slow pairs are asked for at the same times, and one object is part of many in a train. */
-function objectWithRecentStates(refiner: Refiner, object: number): RefinedObject {
-  let recent = refiner.recent.get(object);
-  if (recent === undefined) {
-    recent = createRecentStates();
-    refiner.recent.set(object, recent);
-  }
-  return { ...refinedObject(refiner, object), recent };
 }
 
 /** Relative state of two tracks, b minus a. */
@@ -151,7 +111,7 @@ function relativeOnTracks(cursor: TrackCursor, a: number, b: number, timeS: numb
  * @param errorKm what both tracks together may be off SGP4
  */
 function nearestOnTracks(
-  { cursor, rules, bounds }: Refiner,
+  { cursor, rules, bounds }: TrackRefiner,
   { a, b }: Pair,
   middleS: number,
   errorKm: number,
@@ -185,7 +145,7 @@ function nearestOnTracks(
 
 /** Whether two tracks that are slow against each other come near enough, anywhere in the step, for SGP4. */
 function comesNearOnTracks(
-  { cursor, rules, bounds: { halfStepS } }: Refiner,
+  { cursor, rules, bounds: { halfStepS } }: TrackRefiner,
   { a, b }: Pair,
   middleS: number,
   errorKm: number,
@@ -199,23 +159,4 @@ function comesNearOnTracks(
     if (relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2 <= limitKm * limitKm) return true;
   }
   return false;
-}
-
-/** Takes a closest approach that lies in the step, in the window and in the time of both objects. */
-function accept(
-  { objects, rules }: Refiner,
-  { first, second }: Pair,
-  object1: RefinedObject,
-  object2: RefinedObject,
-  tcaMs: number,
-  { fromMs, toMs }: Step,
-  approaches: ClosestApproach[],
-): void {
-  if (!(tcaMs >= fromMs - EDGE_MS && tcaMs < toMs + EDGE_MS)) return;
-  if (tcaMs < rules.startMs || tcaMs >= rules.endMs) return;
-  if (tcaMs < objects.validFromMs[first] || tcaMs >= objects.validToMs[first]) return;
-  if (tcaMs < objects.validFromMs[second] || tcaMs >= objects.validToMs[second]) return;
-  if (!relativeStateAt(object1, object2, tcaMs, relative)) return;
-  const missKm = Math.sqrt(relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2);
-  if (missKm <= rules.missKm) approaches.push({ first, second, tcaMs, missKm });
 }

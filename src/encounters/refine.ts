@@ -55,7 +55,7 @@ const relative = new Float64Array(6);
  * By how much SGP4's velocities of a pair may be off the derivatives of its positions, km/s: 0.02 m/s in low
  * near-circular orbits, up to some m/s in eccentric deep-space ones.
  */
-function velocityDefectKmPerS(object1: RefinedObject, object2: RefinedObject): number {
+export function velocityDefectKmPerS(object1: RefinedObject, object2: RefinedObject): number {
   return object1.record.ecco < 0.01 && object2.record.ecco < 0.01 ? 1e-4 : 0.02;
 }
 

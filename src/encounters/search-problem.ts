@@ -1,6 +1,7 @@
 import type { SatRec } from 'satellite.js';
 import { EARTH_RADIUS_KM, orbitOf } from '../elements/orbit.js';
 import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
+import { SLAB_S } from '../ephemeris/node-spacing.js';
 
 /**
  * What is screened against what. The first `primaryCount` objects are the primaries (the fleet, a launch
@@ -30,9 +31,25 @@ export type SearchRules = {
   readonly withinPrimaries: boolean;
   /** Pairs that are not searched, as `pairKey`. */
   readonly skippedPairs: ReadonlySet<number>;
-  /** In place of the step that costs least: the result is the same for any, which tests hold it to. */
+  /** In place of the step of the grid that costs least: the result is the same for any, which tests hold it to. */
   readonly stepS?: number;
+  /** Whether pairs may be looked at one by one, by the same right: default where the primaries are few. */
+  readonly byPairs?: boolean;
 };
+
+/** Number of slabs of a window. */
+export function slabCount({ startMs, endMs }: Pick<SearchRules, 'startMs' | 'endMs'>): number {
+  return Math.ceil((endMs - startMs) / (SLAB_S * 1000));
+}
+
+/** Where a slab of the window starts and how long it is: the last one may be short. */
+export function slabOf(
+  { startMs, endMs }: Pick<SearchRules, 'startMs' | 'endMs'>,
+  slabIndex: number,
+): { startMs: number; lengthS: number } {
+  const slabStartMs = startMs + slabIndex * SLAB_S * 1000;
+  return { startMs: slabStartMs, lengthS: Math.min(SLAB_S, (endMs - slabStartMs) / 1000) };
+}
 
 /** One number for an unordered pair of object indices. */
 export function pairKey(a: number, b: number, count: number): number {

@@ -41,6 +41,29 @@ export function radiusBand(
   return { lowKm: lowKm - padKm, highKm: highKm + padKm };
 }
 
+/** The band of an object that is nowhere. */
+const NOWHERE: RadiusBand = { lowKm: Number.POSITIVE_INFINITY, highKm: Number.NEGATIVE_INFINITY };
+
+/**
+ * The band that others are sieved by: as `radiusBand`, but an object that SGP4 gives up on from the start of
+ * the window is nowhere, since it counts as gone from then on, and one that its drag brings down in the window
+ * only sinks.
+ *
+ * @returns `undefined` where the object may be anywhere
+ */
+export function primaryBand(
+  record: SatRec,
+  epochMs: number,
+  startMs: number,
+  endMs: number,
+): RadiusBand | undefined {
+  const whole = radiusBand(record, epochMs, startMs, endMs);
+  if (whole !== undefined) return whole;
+  const atStart = radiusBand(record, epochMs, startMs, startMs);
+  if (atStart === undefined) return NOWHERE;
+  return record.method === 'n' && record.bstar > 0 ? { lowKm: 0, highKm: atStart.highKm } : undefined;
+}
+
 /**
  * Which objects can come within reach of any primary at all: those whose band comes within `reachKm` of the
  * band of a primary. A two-dimensional range query (low end, high end) for each stretch of radius that the
@@ -72,7 +95,8 @@ export function sieve(
 /** Overlapping bands as one. */
 function joined(bands: readonly RadiusBand[]): RadiusBand[] {
   const stretches: { lowKm: number; highKm: number }[] = [];
-  for (const { lowKm, highKm } of [...bands].sort((a, b) => a.lowKm - b.lowKm)) {
+  const somewhere = bands.filter(({ lowKm, highKm }) => lowKm <= highKm);
+  for (const { lowKm, highKm } of somewhere.sort((a, b) => a.lowKm - b.lowKm)) {
     const last = stretches.at(-1);
     if (last !== undefined && lowKm <= last.highKm) last.highKm = Math.max(last.highKm, highKm);
     else stretches.push({ lowKm, highKm });

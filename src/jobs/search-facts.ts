@@ -8,7 +8,7 @@ import type { SearchOutcome } from './search-in-workers.js';
 export function searchFacts(
   outcome: SearchOutcome,
   volume: ScreeningVolume,
-): Readonly<Record<string, number | string>> {
+): Readonly<Record<string, number | string | null>> {
   const radiusKm = enclosingRadiusKm(volume);
   return {
     propagator: 'SGP4 with WGS-72 constants (satellite.js)',
@@ -16,8 +16,8 @@ export function searchFacts(
     enclosingRadiusKm: radiusKm,
     slabS: SLAB_S,
     slabs: outcome.slabs,
-    shortestStepS: outcome.shortestStepS,
-    longestStepS: outcome.longestStepS,
+    shortestStepS: outcome.shortestStepS ?? null,
+    longestStepS: outcome.longestStepS ?? null,
     worstInterpolationKm: outcome.worstDefectKm,
     companionLimitKm: Math.max(COMPANION_LIMIT_KM, 2 * radiusKm),
     defaultHardBodyRadiusM: DEFAULT_HARD_BODY_RADIUS_M,

@@ -1,6 +1,6 @@
 import { Worker } from 'node:worker_threads';
 import pLimit from 'p-limit';
-import { slabCount } from '../encounters/search-slab.js';
+import { slabCount } from '../encounters/search-problem.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
 import {
   createEncounterRecords,
@@ -20,8 +20,9 @@ export type SearchOutcome = {
   readonly lastMsOf: ReadonlyMap<number, number>;
   /** What the search did, for the record of the run. */
   readonly slabs: number;
-  readonly shortestStepS: number;
-  readonly longestStepS: number;
+  /** Steps of the grid; `undefined` where nothing was stepped. */
+  readonly shortestStepS: number | undefined;
+  readonly longestStepS: number | undefined;
   readonly worstDefectKm: number;
   readonly pairsRefined: number;
 };
@@ -140,12 +141,13 @@ function joined(answers: readonly SlabAnswer[], objectCount: number, startMs: nu
     edge.clear();
     for (const [key, tcaMs] of latest) edge.set(key, tcaMs);
   }
+  const steps = answers.flatMap(({ stepS }) => (stepS === undefined ? [] : [stepS]));
   return {
     records,
     lastMsOf,
     slabs: answers.length,
-    shortestStepS: Math.min(...answers.map((answer) => answer.stepS)),
-    longestStepS: Math.max(...answers.map((answer) => answer.stepS)),
+    shortestStepS: steps.length === 0 ? undefined : Math.min(...steps),
+    longestStepS: steps.length === 0 ? undefined : Math.max(...steps),
     worstDefectKm: Math.max(...answers.map((answer) => answer.worstDefectKm)),
     pairsRefined: answers.reduce((sum, answer) => sum + answer.pairsRefined, 0),
   };

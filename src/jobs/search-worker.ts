@@ -11,9 +11,8 @@ export type SlabAnswer = {
   /** `FIELDS` doubles for each encounter, by TCA. */
   readonly records: Float64Array<ArrayBuffer>;
   readonly failures: readonly { readonly object: number; readonly lastMs: number }[];
-  readonly stepS: number;
+  readonly stepS: number | undefined;
   readonly worstDefectKm: number;
-  readonly watchedCount: number;
   readonly pairsRefined: number;
 };
 

@@ -1,4 +1,4 @@
-import { radiusBand, sieve } from '../encounters/sieve.js';
+import { primaryBand, radiusBand, sieve } from '../encounters/sieve.js';
 import type { ScreenedObject } from './screened-object.js';
 
 /**
@@ -15,8 +15,10 @@ export function withinReach(
   endMs: number,
 ): ScreenedObject[] {
   if (others.length === 0) return [];
-  const band = ({ record, set, validFromMs, validToMs }: ScreenedObject) =>
-    radiusBand(record, set.epochMs, Math.max(startMs, validFromMs), Math.min(endMs, validToMs));
-  const passes = sieve(others.map(band), primaries.map(band), missKm);
+  const bandsOf = (objects: readonly ScreenedObject[], bandOf: typeof primaryBand) =>
+    objects.map(({ record, set, validFromMs, validToMs }) =>
+      bandOf(record, set.epochMs, Math.max(startMs, validFromMs), Math.min(endMs, validToMs)),
+    );
+  const passes = sieve(bandsOf(others, radiusBand), bandsOf(primaries, primaryBand), missKm);
   return others.filter((_, i) => passes[i] === 1);
 }

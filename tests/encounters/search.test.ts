@@ -1,8 +1,8 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
 import { type ClosestApproach, distinctApproaches } from '../../src/encounters/closest-approach.js';
-import { searchObjectsOf } from '../../src/encounters/search-problem.js';
-import { createSlabSearcher, searchSlab, slabCount } from '../../src/encounters/search-slab.js';
+import { searchObjectsOf, slabCount } from '../../src/encounters/search-problem.js';
+import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
 import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { setPassing } from '../synthetic/passing-orbit.js';
@@ -19,9 +19,10 @@ type Screening = {
   readonly hours: number;
   readonly missKm: number;
   readonly stepS?: number;
+  readonly byPairs?: boolean;
 };
 
-function search({ fleet, catalog, within, hours, missKm, stepS }: Screening): ClosestApproach[] {
+function search({ fleet, catalog, within, hours, missKm, ...forced }: Screening): ClosestApproach[] {
   const objects = searchObjectsOf([...fleet, ...catalog], fleet.length);
   const rules = {
     startMs: START_MS,
@@ -29,7 +30,7 @@ function search({ fleet, catalog, within, hours, missKm, stepS }: Screening): Cl
     missKm,
     withinPrimaries: within,
     skippedPairs: new Set<number>(),
-    ...(stepS === undefined ? {} : { stepS }),
+    ...forced,
   };
   const searcher = createSlabSearcher(objects, rules);
   const found: ClosestApproach[] = [];
@@ -101,7 +102,6 @@ describe('the search finds what brute force finds, and nothing else', () => {
     },
   ])('all on all: $what', ({ seed, mix, count, missKm, hours }) => {
     const sets = syntheticCatalog({ seed, count, epochMs: START_MS, ...(mix === undefined ? {} : { mix }) });
-    const found = search({ fleet: sets, catalog: [], within: true, hours, missKm });
     const expected = bruteForceEncounters({
       first: sets,
       startMs: START_MS,
@@ -109,14 +109,16 @@ describe('the search finds what brute force finds, and nothing else', () => {
       missKm,
     });
     expect(expected.length).toBeGreaterThan(20);
-    expectSameEncounters(found, expected, 0);
+    for (const byPairs of [false, true]) {
+      const found = search({ fleet: sets, catalog: [], within: true, hours, missKm, byPairs });
+      expectSameEncounters(found, expected, 0);
+    }
   });
 
   it('a fleet against a catalog', () => {
     const sets = syntheticCatalog({ seed: 16, count: 320, epochMs: START_MS });
     const fleet = sets.slice(0, 20);
     const catalog = sets.slice(20);
-    const found = search({ fleet, catalog, within: false, hours: 12, missKm: 60 });
     const expected = bruteForceEncounters({
       first: fleet,
       second: catalog,
@@ -125,10 +127,13 @@ describe('the search finds what brute force finds, and nothing else', () => {
       missKm: 60,
     });
     expect(expected.length).toBeGreaterThan(20);
-    expectSameEncounters(found, expected, fleet.length);
+    for (const byPairs of [false, true]) {
+      const found = search({ fleet, catalog, within: false, hours: 12, missKm: 60, byPairs });
+      expectSameEncounters(found, expected, fleet.length);
+    }
   });
 
-  describe('at any step, within a few kilometers', () => {
+  describe('in any way, within a few kilometers', () => {
     // Pairs that pass close on purpose: each leader, and one that comes by at a time and a distance of its own.
     const random = seededRandom(17);
     const leaders = syntheticCatalog({ seed: 17, count: 60, epochMs: START_MS });
@@ -159,13 +164,16 @@ describe('the search finds what brute force finds, and nothing else', () => {
       missKm: 5,
     });
 
-    it.each([20, 36, 60, 120, 300])('%i s', (stepS) => {
-      expect(expected.length).toBeGreaterThan(30);
-      expectSameEncounters(
-        search({ fleet: sets, catalog: [], within: true, hours: 4, missKm: 5, stepS }),
-        expected,
-        0,
-      );
-    });
+    it.each([{ stepS: 20 }, { stepS: 36 }, { stepS: 60 }, { stepS: 120 }, { stepS: 300 }, { byPairs: true }])(
+      '%j',
+      (forced) => {
+        expect(expected.length).toBeGreaterThan(30);
+        expectSameEncounters(
+          search({ fleet: sets, catalog: [], within: true, hours: 4, missKm: 5, ...forced }),
+          expected,
+          0,
+        );
+      },
+    );
   });
 });

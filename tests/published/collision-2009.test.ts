@@ -4,8 +4,8 @@ import { join } from 'node:path';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { readElementFiles } from '../../src/elements/read.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
-import { searchObjectsOf } from '../../src/encounters/search-problem.js';
-import { createSlabSearcher, searchSlab, slabCount } from '../../src/encounters/search-slab.js';
+import { searchObjectsOf, slabCount } from '../../src/encounters/search-problem.js';
+import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
 import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
 

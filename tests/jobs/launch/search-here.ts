@@ -1,5 +1,6 @@
 import { distinctApproaches } from '../../../src/encounters/closest-approach.js';
-import { createSlabSearcher, searchSlab, slabCount } from '../../../src/encounters/search-slab.js';
+import { slabCount } from '../../../src/encounters/search-problem.js';
+import { createSlabSearcher, searchSlab } from '../../../src/encounters/search-slab.js';
 import { loadBulkPropagator } from '../../../src/ephemeris/bulk-nodes.js';
 import { assessApproaches } from '../../../src/jobs/assess-approach.js';
 import { createEncounterRecords, type EncounterRecords } from '../../../src/jobs/encounter-records.js';
