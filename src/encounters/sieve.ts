@@ -1,6 +1,16 @@
 import KDBush from 'kdbush';
 import { type SatRec, sgp4 } from 'satellite.js';
 import { EARTH_RADIUS_KM } from '../elements/orbit.js';
+import {
+  AXIS,
+  E_ACROSS_NODE,
+  E_ALONG_NODE,
+  isNearEarth,
+  laySecularTerms,
+  SECULAR_SIZE,
+  secularElementsAt,
+  TERMS_SIZE,
+} from '../ephemeris/secular-elements.js';
 
 /** Distances from the Earth's center between which an object stays during a window, km. */
 export type RadiusBand = { readonly lowKm: number; readonly highKm: number };
@@ -14,6 +24,11 @@ const LONGEST_GAP_MS = 2 * 86_400_000;
  */
 const NEAR_EARTH_PAD_KM = 30;
 const DEEP_SPACE_PAD_KM = 200;
+/** Above this SGP4 does not fail on a near-earth orbit. */
+const LOWEST_SURE_KM = EARTH_RADIUS_KM + 50;
+
+const terms = new Float64Array(TERMS_SIZE);
+const secular = new Float64Array(SECULAR_SIZE);
 
 /**
  * The band of one object: from the mean semi-major axis and eccentricity that SGP4 gives along the window.
@@ -26,19 +41,52 @@ export function radiusBand(
   startMs: number,
   endMs: number,
 ): RadiusBand | undefined {
-  let lowKm = Number.POSITIVE_INFINITY;
-  let highKm = 0;
-  const gaps = Math.max(1, Math.ceil((endMs - startMs) / LONGEST_GAP_MS));
-  for (let k = 0; k <= gaps; k++) {
-    const timeMs = startMs + ((endMs - startMs) * k) / gaps;
+  return nearEarthBand(record, epochMs, startMs, endMs) ?? bandOfStates(record, epochMs, startMs, endMs);
+}
+
+/** By the secular elements alone, a tenth of the work: for orbits that stay well above the ground. */
+function nearEarthBand(
+  record: SatRec,
+  epochMs: number,
+  startMs: number,
+  endMs: number,
+): RadiusBand | undefined {
+  if (!isNearEarth(record)) return undefined;
+  laySecularTerms(record, terms, 0);
+  const band = { lowKm: Number.POSITIVE_INFINITY, highKm: 0 };
+  for (const timeMs of timesBetween(startMs, endMs)) {
+    if (!secularElementsAt(terms, 0, (timeMs - epochMs) / MS_PER_MINUTE, secular)) return undefined;
+    widen(band, secular[AXIS], Math.hypot(secular[E_ALONG_NODE], secular[E_ACROSS_NODE]));
+  }
+  const padded = { lowKm: band.lowKm - NEAR_EARTH_PAD_KM, highKm: band.highKm + NEAR_EARTH_PAD_KM };
+  return padded.lowKm > LOWEST_SURE_KM ? padded : undefined;
+}
+
+function bandOfStates(
+  record: SatRec,
+  epochMs: number,
+  startMs: number,
+  endMs: number,
+): RadiusBand | undefined {
+  const band = { lowKm: Number.POSITIVE_INFINITY, highKm: 0 };
+  for (const timeMs of timesBetween(startMs, endMs)) {
     const state = sgp4(record, (timeMs - epochMs) / MS_PER_MINUTE);
     if (state === null || !(record.tempa > 0)) return undefined;
-    const { am, em } = state.meanElements;
-    lowKm = Math.min(lowKm, am * (1 - em) * EARTH_RADIUS_KM);
-    highKm = Math.max(highKm, am * (1 + em) * EARTH_RADIUS_KM);
+    widen(band, state.meanElements.am, state.meanElements.em);
   }
   const padKm = record.method === 'd' ? DEEP_SPACE_PAD_KM : NEAR_EARTH_PAD_KM;
-  return { lowKm: lowKm - padKm, highKm: highKm + padKm };
+  return { lowKm: band.lowKm - padKm, highKm: band.highKm + padKm };
+}
+
+function timesBetween(startMs: number, endMs: number): number[] {
+  const gaps = Math.max(1, Math.ceil((endMs - startMs) / LONGEST_GAP_MS));
+  return Array.from({ length: gaps + 1 }, (_, k) => startMs + ((endMs - startMs) * k) / gaps);
+}
+
+/** @param axis semi-major axis, Earth radii */
+function widen(band: { lowKm: number; highKm: number }, axis: number, eccentricity: number): void {
+  band.lowKm = Math.min(band.lowKm, axis * (1 - eccentricity) * EARTH_RADIUS_KM);
+  band.highKm = Math.max(band.highKm, axis * (1 + eccentricity) * EARTH_RADIUS_KM);
 }
 
 /** The band of an object that is nowhere. */

@@ -14,43 +14,47 @@ export const NODE = 4;
 const LEAST_TEMPA = 0.5;
 const MOST_ECCENTRICITY = 0.5;
 
-/** Constants of SGP4 that the secular elements hang on, in the order of `TERMS`: one line of memory after the other. */
-const TERMS = [
-  'mo',
-  'mdot',
-  'argpo',
-  'argpdot',
-  'nodeo',
-  'nodedot',
-  'nodecf',
-  'cc1',
-  't2cof',
-  'no',
-  'ecco',
-  'a',
-  'aycof',
-  'xlcof',
-  'bstar',
-  'cc4',
-  'omgcof',
-  'xmcof',
-  'eta',
-  'delmo',
-  'd2',
-  'd3',
-  'd4',
-  'cc5',
-  'sinmao',
-  't3cof',
-  't4cof',
-  't5cof',
-  'isimp',
-  'inclo',
-] as const satisfies readonly (keyof SatRec)[];
+/**
+ * Constants of SGP4 that the secular elements hang on, each at its place, so that
+ * those of one orbit lie together in memory.
+ */
+const AT = {
+  mo: 0,
+  mdot: 1,
+  argpo: 2,
+  argpdot: 3,
+  nodeo: 4,
+  nodedot: 5,
+  nodecf: 6,
+  cc1: 7,
+  t2cof: 8,
+  no: 9,
+  ecco: 10,
+  a: 11,
+  aycof: 12,
+  xlcof: 13,
+  bstar: 14,
+  cc4: 15,
+  omgcof: 16,
+  xmcof: 17,
+  eta: 18,
+  delmo: 19,
+  d2: 20,
+  d3: 21,
+  d4: 22,
+  cc5: 23,
+  sinmao: 24,
+  t3cof: 25,
+  t4cof: 26,
+  t5cof: 27,
+  isimp: 28,
+  inclo: 29,
+} as const satisfies Partial<Record<keyof SatRec, number>>;
 
+const TERMS = Object.entries(AT) as readonly (readonly [keyof typeof AT, number])[];
 export const TERMS_SIZE = TERMS.length;
 /** Place of the inclination among the terms. */
-export const INCLINATION = TERMS.indexOf('inclo');
+export const INCLINATION = AT.inclo;
 
 /** Whether SGP4 treats the orbit as near-earth: without the lunar-solar terms that are not in these formulas. */
 export function isNearEarth(record: SatRec): boolean {
@@ -59,7 +63,7 @@ export function isNearEarth(record: SatRec): boolean {
 
 /** Copies what the secular elements of a near-earth orbit hang on. */
 export function laySecularTerms(record: SatRec, terms: Float64Array, at: number): void {
-  for (let k = 0; k < TERMS_SIZE; k++) terms[at + k] = record[TERMS[k]];
+  for (const [name, place] of TERMS) terms[at + place] = record[name];
 }
 
 /**
@@ -81,46 +85,47 @@ export function secularElementsAt(
 ): boolean {
   const t = minutes;
   const t2 = t * t;
-  const anomaly = terms[at] + terms[at + 1] * t;
-  let perigee = terms[at + 2] + terms[at + 3] * t;
+  const anomaly = terms[at + AT.mo] + terms[at + AT.mdot] * t;
+  let perigee = terms[at + AT.argpo] + terms[at + AT.argpdot] * t;
   let latitude = anomaly + perigee;
-  const bstar = terms[at + 14];
-  let tempa = 1 - terms[at + 7] * t;
-  let tempe = bstar * terms[at + 15] * t;
-  let templ = terms[at + 8] * t2;
-  const isSimple = terms[at + 28] === 1;
+  const bstar = terms[at + AT.bstar];
+  let tempa = 1 - terms[at + AT.cc1] * t;
+  let tempe = bstar * terms[at + AT.cc4] * t;
+  let templ = terms[at + AT.t2cof] * t2;
+  const isSimple = terms[at + AT.isimp] === 1;
   if (!isSimple) {
     const t3 = t2 * t;
     const t4 = t3 * t;
-    const swing = 1 + terms[at + 18] * Math.cos(anomaly);
+    const swing = 1 + terms[at + AT.eta] * Math.cos(anomaly);
     // Drag moves the anomaly and the perigee against each other: their sum stays.
-    const shift = terms[at + 16] * t + terms[at + 17] * (swing * swing * swing - terms[at + 19]);
+    const shift =
+      terms[at + AT.omgcof] * t + terms[at + AT.xmcof] * (swing * swing * swing - terms[at + AT.delmo]);
     perigee -= shift;
-    tempa -= terms[at + 20] * t2 + terms[at + 21] * t3 + terms[at + 22] * t4;
-    tempe += bstar * terms[at + 23] * (Math.sin(anomaly + shift) - terms[at + 24]);
-    templ += terms[at + 25] * t3 + t4 * (terms[at + 26] + t * terms[at + 27]);
+    tempa -= terms[at + AT.d2] * t2 + terms[at + AT.d3] * t3 + terms[at + AT.d4] * t4;
+    tempe += bstar * terms[at + AT.cc5] * (Math.sin(anomaly + shift) - terms[at + AT.sinmao]);
+    templ += terms[at + AT.t3cof] * t3 + t4 * (terms[at + AT.t4cof] + t * terms[at + AT.t5cof]);
   }
-  const unbound = terms[at + 10] - tempe;
+  const unbound = terms[at + AT.ecco] - tempe;
   const eccentricity = Math.max(1e-6, unbound);
   if (!(tempa > LEAST_TEMPA && eccentricity < MOST_ECCENTRICITY && unbound > -1e-3)) return false;
-  latitude += terms[at + 9] * templ;
-  const axis = terms[at + 11] * tempa * tempa;
+  latitude += terms[at + AT.no] * templ;
+  const axis = terms[at + AT.a] * tempa * tempa;
   const perParameter = 1 / (axis * (1 - eccentricity * eccentricity));
   const along = eccentricity * Math.cos(perigee);
   out[AXIS] = axis;
   out[E_ALONG_NODE] = along;
-  out[E_ACROSS_NODE] = eccentricity * Math.sin(perigee) + perParameter * terms[at + 12];
-  out[LATITUDE] = latitude + perParameter * terms[at + 13] * along;
-  out[NODE] = terms[at + 4] + terms[at + 5] * t + terms[at + 6] * t2;
+  out[E_ACROSS_NODE] = eccentricity * Math.sin(perigee) + perParameter * terms[at + AT.aycof];
+  out[LATITUDE] = latitude + perParameter * terms[at + AT.xlcof] * along;
+  out[NODE] = terms[at + AT.nodeo] + terms[at + AT.nodedot] * t + terms[at + AT.nodecf] * t2;
   return true;
 }
 
 /** Largest swings within a revolution of what drag does to the eccentricity vector: not seen in single times. */
 export function dragSwing(terms: Float64Array, at: number): number {
-  if (terms[at + 28] === 1) return 0;
-  const eta = terms[at + 18];
-  const shift = Math.abs(terms[at + 17]) * ((1 + eta) ** 3 - (1 - eta) ** 3);
-  return terms[at + 10] * shift + 2 * Math.abs(terms[at + 14] * terms[at + 23]);
+  if (terms[at + AT.isimp] === 1) return 0;
+  const eta = terms[at + AT.eta];
+  const shift = Math.abs(terms[at + AT.xmcof]) * ((1 + eta) ** 3 - (1 - eta) ** 3);
+  return terms[at + AT.ecco] * shift + 2 * Math.abs(terms[at + AT.bstar] * terms[at + AT.cc5]);
 }
 
 /** What SGP4's short periods (J2 alone) move a position by at most, and the constant part of them. */
