@@ -11,11 +11,12 @@ import { addNearChords, type Polygon, polygonOf, sweptBy } from './swept-path.js
 const LARGEST_TURN = Math.PI / 3;
 /** ... if its radius of curvature is this many hard-body radii everywhere. */
 const RADII_OF_CURVATURE = 4;
-/** Points in time of a piece: those pieces are up to a sigma long, which leaves an error of 1e-5. */
+/** Points in time of a piece, which is up to a sigma long: that leaves an error of 1e-5. */
 const TIMES = legendreRule(3);
 /** A path near itself is stepped by this part of the hard-body radius or the smallest sigma, whichever is smaller. */
 const STEP_PART = 0.5;
-const MOST_STEPS = 20_000;
+/** What is swept twice between two middles of longer steps is less than a thousandth of the whole. */
+const MOST_STEPS = 5000;
 /** Of the sum so far: all together what is left out stays below a thousandth of it. */
 const NEGLIGIBLE_PART = 1e-10;
 
@@ -31,7 +32,8 @@ const NEGLIGIBLE_PART = 1e-10;
  *
  * Where no earlier part of the path can have swept the leading half (see `earlierNear`), what enters changes
  * over the time in which the path goes a sigma, and is integrated with three points in each. Elsewhere the path
- * is cut into chords of half of R, and the points of the leading half are held against the chords before.
+ * is cut into chords of half of R, and the points of the leading half are held against the chords before. The
+ * points resolve an R of up to some thirty sigmas.
  *
  * @returns `undefined` where the combined covariance is singular
  */
@@ -171,7 +173,7 @@ type LeadingHalf = {
   readonly weights: Float64Array;
 };
 
-const MOST_RINGS = 32;
+const MOST_RINGS = 64;
 const HALVES: LeadingHalf[] = [];
 
 function leadingHalf(wantedRings: number): LeadingHalf {

@@ -17,6 +17,8 @@ const LONGEST_IN_SIGMAS = 1;
 /** ... and turns by no more than this, radians, unless it is shorter than this part of the hard-body radius. */
 const LARGEST_TURN = 0.5;
 const SHORTEST_PART_OF_RADIUS = 0.5;
+/** Only a radius of thousands of sigmas could ask for more; the likeliest part has been cut by then. */
+const MOST_PIECES = 5000;
 
 /** The path at one time, and the density of the position error then. */
 export type Knot = TurningState & Density & { readonly timeMs: number };
@@ -24,7 +26,7 @@ export type Knot = TurningState & Density & { readonly timeMs: number };
 /** The path between two knots. */
 type Span = { readonly left: Knot; readonly right: Knot; readonly encounter: PathEncounter };
 
-/** A piece of the path within one span, with bounds that hold for all of it. */
+/** A piece of the path within one span, with bounds that hold for all of it (those of the density by its middle's). */
 export type Piece = {
   readonly span: Span;
   /** Parts of the span, 0 to 1. */
@@ -80,7 +82,8 @@ export function piecesOf(
   let logLeast = Number.NEGATIVE_INFINITY;
   for (let piece = waiting.pop(); piece !== undefined; piece = waiting.pop()) {
     logLeast = Math.max(logLeast, piece.logAtCenter - NEGLIGIBLE_LOG);
-    if (piece.logLargest < logLeast || isShort(piece, radiusM)) {
+    const counts = piece.logLargest >= logLeast;
+    if (!counts || isShort(piece, radiusM) || pieces.length + waiting.length >= MOST_PIECES) {
       pieces.push(piece);
       continue;
     }

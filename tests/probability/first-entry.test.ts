@@ -115,4 +115,9 @@ describe('firstEntryProbability', () => {
     const found = firstEntryProbability(encounter) ?? Number.NaN;
     expect(Math.abs(found / plainEvaluation(encounter, chords) - 1)).toBeLessThan(1e-3);
   });
+
+  it('is certain where a radius of thirty sigmas goes over the error', () => {
+    const encounter = encounterOf([5, 0, 0], [0, -0.02, 0.01], [0.7, 0.7, 0.7], [0.7, 0.7, 0.7], 30, 90);
+    expect(firstEntryProbability(encounter)).toBeCloseTo(1, 3);
+  });
 });
