@@ -21,7 +21,7 @@ const SHORTEST_PART_OF_RADIUS = 0.5;
 const MOST_PIECES = 5000;
 
 /** The path at one time, and the density of the position error then. */
-export type Knot = TurningState & Density & { readonly timeMs: number };
+type Knot = TurningState & Density & { readonly timeMs: number };
 
 /** The path between two knots. */
 type Span = { readonly left: Knot; readonly right: Knot; readonly encounter: PathEncounter };
