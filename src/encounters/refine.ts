@@ -167,9 +167,8 @@ function newtonError(distanceKm: number, speed2: number, defectKmPerS: number): 
 
 /**
  * All local minima of the distance of a slow pair in [fromMs, toMs): sign changes of the closing rate from
- * negative to positive on a grid of `gridMs`, then bisection. Two minima that a maximum less than a grid
+ * negative to positive on a grid of `gridMs`, then a root in between. Two minima that a maximum less than a grid
  * step long divides count as one.
- *
  */
 export function slowTcas(
   object1: RefinedObject,
@@ -185,20 +184,52 @@ export function slowTcas(
   for (let k = 1; k <= steps; k++) {
     const afterMs = fromMs + ((toMs - fromMs) * k) / steps;
     const after = closingSignAt(object1, object2, afterMs);
-    if (before < 0 && after >= 0) {
-      let low = beforeMs;
-      let high = afterMs;
-      while (high - low > SETTLED_MS) {
-        const middle = (low + high) / 2;
-        const rate = closingRateAt(object1, object2, middle);
-        if (Number.isNaN(rate)) break;
-        if (rate < 0) low = middle;
-        else high = middle;
-      }
-      found.push(roundTca((low + high) / 2));
-    }
+    if (before < 0 && after >= 0) found.push(roundTca(closestBetween(object1, object2, beforeMs, afterMs)));
     beforeMs = afterMs;
     before = after;
   }
   return found;
+}
+
+const MOST_ROOT_STEPS = 60;
+
+/**
+ * Where the closing rate changes its sign, by false position with the Illinois rule (M. Dowell and P. Jarratt, BIT
+ * 11, 1971): the rate is nearly straight between two points of the grid, and the root stays between its brackets
+ * where it is not.
+ */
+function closestBetween(
+  object1: RefinedObject,
+  object2: RefinedObject,
+  fromMs: number,
+  toMs: number,
+): number {
+  let low = fromMs;
+  let high = toMs;
+  let lowRate = closingRateAt(object1, object2, low);
+  let highRate = closingRateAt(object1, object2, high);
+  let latest = (low + high) / 2;
+  let side = 0;
+  for (let step = 0; step < MOST_ROOT_STEPS && high - low > SETTLED_MS; step++) {
+    const straight = low - (lowRate * (high - low)) / (highRate - lowRate);
+    // Signs are told by velocities where those are good enough: the rates of both ends can then agree.
+    const next = straight > low && straight < high ? straight : (low + high) / 2;
+    const moved = Math.abs(next - latest);
+    latest = next;
+    if (step > 0 && moved < SETTLED_MS) break;
+    const rate = closingRateAt(object1, object2, next);
+    if (Number.isNaN(rate)) break;
+    if (rate < 0) {
+      low = next;
+      lowRate = rate;
+      if (side < 0) highRate /= 2;
+      side = -1;
+    } else {
+      high = next;
+      highRate = rate;
+      if (side > 0) lowRate /= 2;
+      side = 1;
+    }
+  }
+  return latest;
 }
