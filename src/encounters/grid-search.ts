@@ -9,6 +9,7 @@ import { radialAcceleration, type StepBounds, stepBounds, stepToleranceKm } from
 import { cheapestStepS, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
 import type { ClosestApproach } from './closest-approach.js';
 import { type CellLists, type DirectionCells, directionCells } from './direction-cells.js';
+import { goneFromMs } from './gone-objects.js';
 import { createNearPairs, listsOf, type NearPairs, sweepStep, takeNearPairs } from './near-pairs.js';
 import { refinePairs } from './refine-pairs.js';
 import { type SearchObjects, type SearchRules, slabOf } from './search-problem.js';
@@ -36,9 +37,12 @@ export type GridSearcher = {
   readonly rules: SearchRules;
   /**
    * Index in `objects` of each object of the search, which numbers them by size of orbit, primaries first:
-   * what meets in space then lies close together in memory.
+   * what meets in space then lies close together in memory. Those that are gone at the start are left out.
    */
   readonly order: Int32Array;
+  readonly primaryCount: number;
+  /** Objects that SGP4 gives no state for at the start of the window. */
+  readonly gone: readonly number[];
   readonly makeTracks: TrackMaker;
   /** No track goes farther out, km. */
   readonly farthestKm: Float64Array;
@@ -62,11 +66,15 @@ type StepPlan = {
 
 /** `loadBulkPropagator` must have been awaited in this thread. */
 export function createGridSearcher(objects: SearchObjects, rules: SearchRules): GridSearcher {
-  const { count, primaryCount, records, epochMs, eccentricity, perigeeRadiusKm } = objects;
+  const { records, epochMs, eccentricity, perigeeRadiusKm } = objects;
   const axisKm = perigeeRadiusKm.map((radiusKm, i) => radiusKm / (1 - eccentricity[i]));
-  const order = Int32Array.from({ length: count }, (_, i) => i);
-  order.subarray(0, primaryCount).sort((a, b) => axisKm[a] - axisKm[b] || a - b);
-  order.subarray(primaryCount).sort((a, b) => axisKm[a] - axisKm[b] || a - b);
+  const goneMs = epochMs.map((epoch, i) => goneFromMs(records[i], epoch, rules.startMs, rules.endMs));
+  const indices = Int32Array.from(goneMs.keys());
+  const order = indices.filter((i) => goneMs[i] > rules.startMs);
+  const count = order.length;
+  const primaryCount = order.filter((i) => i < objects.primaryCount).length;
+  for (const side of [order.subarray(0, primaryCount), order.subarray(primaryCount)])
+    side.sort((a, b) => axisKm[a] - axisKm[b] || a - b);
   const pairs = createNearPairs();
   const kernel = createStepKernel(count, primaryCount, roomOf(rules), (handed) =>
     takeNearPairs(pairs, handed, kernel.records, searcher.plan.bounds, searcher.plan.toleranceKm),
@@ -78,6 +86,8 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
     objects,
     rules,
     order,
+    primaryCount,
+    gone: [...indices.filter((i) => goneMs[i] <= rules.startMs)],
     farthestKm: Float64Array.from(order, (i) => 1.02 * axisKm[i] * (1 + eccentricity[i]) + 100),
     kernel,
     cursorRoom: {
@@ -94,6 +104,7 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
         epochMs: epochMs[i],
         eccentricity: eccentricity[i],
         perigeeRadiusKm: perigeeRadiusKm[i],
+        goneFromMs: goneMs[i],
       })),
     ),
   };
@@ -133,11 +144,11 @@ export function searchGrid(searcher: GridSearcher, slabIndex: number): GridResul
 }
 
 function failuresOf(
-  { objects, order }: GridSearcher,
+  { objects, rules, order, gone }: GridSearcher,
   { startMs, endS }: SlabTracks,
   lengthS: number,
 ): GridResult['failures'] {
-  const failures: { object: number; lastMs: number }[] = [];
+  const failures = gone.map((object) => ({ object, lastMs: rules.startMs }));
   order.forEach((object, k) => {
     const lastMs = startMs + endS[k] * 1000;
     // A failure outside of the object's own time or past the window's end is none.
@@ -155,7 +166,7 @@ type SlabWork = {
 };
 
 function readySlab(searcher: GridSearcher, tracks: SlabTracks, lengthS: number): SlabWork {
-  const { objects, order, kernel, cursorRoom } = searcher;
+  const { objects, order, primaryCount, kernel, cursorRoom } = searcher;
   const { fromS, toS, candidates } = kernel;
   kernel.segmentS.set(tracks.segmentS);
   order.forEach((i, k) => {
@@ -165,7 +176,7 @@ function readySlab(searcher: GridSearcher, tracks: SlabTracks, lengthS: number):
   const there = Int32Array.from(order.keys()).filter(
     (k) => fromS[k] < lengthS && toS[k] > 0 && fromS[k] < toS[k],
   );
-  const primaries = there.filter((k) => k < objects.primaryCount);
+  const primaries = there.filter((k) => k < primaryCount);
   const others = withinHeights(searcher, tracks, primaries, there.subarray(primaries.length));
   candidates.set(primaries);
   candidates.set(others, primaries.length);

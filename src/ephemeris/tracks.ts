@@ -47,6 +47,8 @@ export type TrackedObject = {
   readonly epochMs: number;
   readonly eccentricity: number;
   readonly perigeeRadiusKm: number;
+  /** Object counts as gone from then on. Default: never. */
+  readonly goneFromMs?: number;
 };
 
 /** The objects' paths through one slab, as chains of segments between SGP4 nodes. */
@@ -136,7 +138,15 @@ function makeTracks(
   for (const { members, segments, bulk } of groups) {
     const stride = segments > MOST_SEGMENTS_SAMPLED ? 2 : segments;
     const group = { members, segments, bulk };
-    const { dying, wide } = layTracks(tracks, group, slabStartMs, nextNode, slabIndex % stride, stride);
+    const { dying, wide } = layTracks(
+      tracks,
+      objects,
+      group,
+      slabStartMs,
+      nextNode,
+      slabIndex % stride,
+      stride,
+    );
     nextNode += members.length * (segments + 1);
     watched.push(...dying);
     if (wide.length > 0) retried.set(segments * FINER, wide);
@@ -156,7 +166,7 @@ function makeTracks(
   );
   tracks.nodes = withRoom(tracks.nodes, nodeCount + finerCount, nodeCount);
   for (const group of finerGroups) {
-    const { dying, wide } = layTracks(tracks, group, slabStartMs, node, 0, 1);
+    const { dying, wide } = layTracks(tracks, objects, group, slabStartMs, node, 0, 1);
     node += group.members.length * (group.segments + 1);
     watched.push(...dying, ...wide);
     group.bulk.dispose();
@@ -176,6 +186,7 @@ type Laid = {
 /** Lays the tracks of one group from the bulk propagator's states and measures them between nodes. */
 function layTracks(
   tracks: MutableTracks,
+  objects: readonly TrackedObject[],
   { members, segments, bulk }: Group,
   slabStartMs: number,
   groupNode: number,
@@ -201,7 +212,8 @@ function layTracks(
     tracks.firstNode[object] = firstNode;
     tracks.segmentCount[object] = segments;
     tracks.segmentS[object] = lengthS;
-    if (error[base] !== 0 || Number.isNaN(position[3 * base])) {
+    const isGone = (objects[object].goneFromMs ?? Number.POSITIVE_INFINITY) <= slabStartMs;
+    if (isGone || error[base] !== 0 || Number.isNaN(position[3 * base])) {
       // Dead before the slab begins: no path, and no more work.
       tracks.segmentCount[object] = 0;
       tracks.endS[object] = 0;
