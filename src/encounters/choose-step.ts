@@ -6,6 +6,7 @@ export const TRIAL_STEP_S = 120;
 const OBJECT_COST = 20;
 
 export const SHORTEST_STEP_S = STEPS_S[0];
+export const LONGEST_STEP_S = STEPS_S[STEPS_S.length - 1];
 
 /**
  * The step that costs least: looking at pairs grows with the square of the step (the area that a cell

@@ -6,7 +6,7 @@ import {
 } from '../ephemeris/track-cursor.js';
 import { createTrackMaker, type SlabTracks, type TrackMaker } from '../ephemeris/tracks.js';
 import { radialAcceleration, type StepBounds, stepBounds, stepToleranceKm } from './bounds.js';
-import { cheapestStepS, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
+import { cheapestStepS, LONGEST_STEP_S, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
 import type { ClosestApproach } from './closest-approach.js';
 import { type CellLists, type DirectionCells, directionCells } from './direction-cells.js';
 import { goneFromMs } from './gone-objects.js';
@@ -31,6 +31,8 @@ const RECORD_ROUNDING = 2e-7;
 /** Cells that the lists of one cell name, all lists together: some 85 are needed. */
 const LISTED_PER_CELL = 128;
 const LEAST_LISTED = 65_536;
+/** The longest step is the cheapest for so few: a trial would cost more than it can save. */
+const FEW_CANDIDATES = 3000;
 
 export type GridSearcher = {
   readonly objects: SearchObjects;
@@ -256,6 +258,7 @@ function cellsFor({ cellsOf }: GridSearcher, bounds: StepBounds): StepCells {
 }
 
 function chooseStep(searcher: GridSearcher, work: SlabWork, lengthS: number): number {
+  if (work.candidateCount <= FEW_CANDIDATES) return LONGEST_STEP_S;
   planStep(searcher, work, TRIAL_STEP_S);
   searcher.kernel.takeVisits();
   findNearPairs(searcher, work, lengthS / 2);
