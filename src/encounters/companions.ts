@@ -54,7 +54,7 @@ function closePairsAt(
   const alive: number[] = [];
   for (let i = 0; i < objects.count; i++) {
     if (objects.validFromMs[i] > timeMs || objects.validToMs[i] < rules.endMs) continue;
-    if (sgp4StateAt(objects.records[i], objects.epochMs[i], timeMs, states, 6 * i)) alive.push(i);
+    if (sgp4StateAt(objects.recordOf(i), objects.epochMs[i], timeMs, states, 6 * i)) alive.push(i);
   }
   alive.sort((a, b) => states[6 * a] - states[6 * b] || a - b);
   const pairs: [number, number][] = [];
@@ -89,7 +89,7 @@ function followPair(
   objects: SearchObjects,
   { startMs, endMs }: SearchRules,
 ): Companions | undefined {
-  const side = (index: number) => ({ record: objects.records[index], epochMs: objects.epochMs[index] });
+  const side = (index: number) => ({ record: objects.recordOf(index), epochMs: objects.epochMs[index] });
   const followedToMs = startMs + Math.max(endMs - startMs, LEAST_FOLLOWED_MS);
   const together = flightTogether(
     side(first),

@@ -68,9 +68,9 @@ type StepPlan = {
 
 /** `loadBulkPropagator` must have been awaited in this thread. */
 export function createGridSearcher(objects: SearchObjects, rules: SearchRules): GridSearcher {
-  const { records, epochMs, eccentricity, perigeeRadiusKm } = objects;
+  const { recordOf, epochMs, eccentricity, perigeeRadiusKm } = objects;
   const axisKm = perigeeRadiusKm.map((radiusKm, i) => radiusKm / (1 - eccentricity[i]));
-  const goneMs = epochMs.map((epoch, i) => goneFromMs(records[i], epoch, rules.startMs, rules.endMs));
+  const goneMs = epochMs.map((epoch, i) => goneFromMs(recordOf(i), epoch, rules.startMs, rules.endMs));
   const indices = Int32Array.from(goneMs.keys());
   const order = indices.filter((i) => goneMs[i] > rules.startMs);
   const count = order.length;
@@ -102,7 +102,7 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
     plan: { bounds: stepBounds(rules.missKm, SHORTEST_STEP_S / 2, 0), toleranceKm: new Float64Array(0) },
     makeTracks: createTrackMaker(
       Array.from(order, (i) => ({
-        record: records[i],
+        record: recordOf(i),
         epochMs: epochMs[i],
         eccentricity: eccentricity[i],
         perigeeRadiusKm: perigeeRadiusKm[i],

@@ -164,7 +164,7 @@ export function meetingWindows(search: MeetingSearch, a: number, b: number, wind
     // The line of the planes, w1 x w2, along m1 and along k1.
     const lineAlongM = -dot(3, 6);
     const lineAlongK = dot(0, 6);
-    const leastSine = Math.hypot(lineAlongM, lineAlongK) - turn;
+    const leastSine = Math.sqrt(lineAlongM ** 2 + lineAlongK ** 2) - turn;
     const sineSeen = reachKm / lowestKm;
     if (!(sineSeen < LARGEST_SINE * leastSine)) {
       cutIntoPieces(search, a, b, fromS, toS, windows);

@@ -1,7 +1,7 @@
 import { EARTH_RADIUS_KM } from '../ephemeris/gravity.js';
 import { createMeanOrbits, layMeanOrbit, type MeanOrbits } from '../ephemeris/mean-orbits.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
-import { isNearEarth, laySecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
+import { hasSecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
 import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 import { farthestInStepKm, isConvex, tidePerS2 } from './bounds.js';
 import type { ClosestApproach } from './closest-approach.js';
@@ -32,7 +32,6 @@ import { pairKey, type SearchObjects, type SearchRules, slabCount, slabOf } from
 export type PairSearcher = {
   readonly objects: SearchObjects;
   readonly rules: SearchRules;
-  readonly terms: Float64Array;
   readonly orbits: MeanOrbits;
   readonly frames: OrbitFrames;
   readonly primaries: Int32Array;
@@ -59,14 +58,14 @@ const LOWEST_RADIUS_KM = EARTH_RADIUS_KM + 145;
 
 /** For each object 1 where a mean orbit stands for it all window long. */
 export function hasMeanOrbit(objects: SearchObjects, rules: SearchRules): Uint8Array {
-  const terms = secularTermsOf(objects);
-  const has = Uint8Array.from(objects.records, (record) => (isNearEarth(record) ? 1 : 0));
+  const { secularTerms: terms, count } = objects;
+  const has = Uint8Array.from({ length: count }, (_, i) => (hasSecularTerms(terms, TERMS_SIZE * i) ? 1 : 0));
   const trial = createMeanOrbits(1);
   const last = slabCount(rules) - 1;
   const checked = Array.from({ length: Math.ceil(last / CHECKED_SLABS) }, (_, k) => k * CHECKED_SLABS);
   for (const slab of [...checked, last]) {
     const { middleMs } = spanOf(rules, slab);
-    for (let i = 0; i < objects.count; i++) {
+    for (let i = 0; i < count; i++) {
       if (has[i] === 0) continue;
       const isLaid = layMeanOrbit(trial, 0, terms, i, objects.epochMs[i], middleMs, SLAB_S / 2);
       if (!(isLaid && isFit(trial))) has[i] = 0;
@@ -79,14 +78,6 @@ function isFit({ eccentricity, toleranceKm, lowKm }: MeanOrbits): boolean {
   return (
     eccentricity[0] < MOST_ECCENTRICITY && toleranceKm[0] < WIDEST_TOLERANCE_KM && lowKm[0] > LOWEST_RADIUS_KM
   );
-}
-
-function secularTermsOf({ records, count }: SearchObjects): Float64Array {
-  const terms = new Float64Array(TERMS_SIZE * count);
-  records.forEach((record, i) => {
-    if (isNearEarth(record)) laySecularTerms(record, terms, TERMS_SIZE * i);
-  });
-  return terms;
 }
 
 function spanOf(rules: SearchRules, slab: number): { middleMs: number; halfSpanS: number } {
@@ -104,7 +95,6 @@ export function createPairSearcher(
   return {
     objects,
     rules,
-    terms: secularTermsOf(objects),
     orbits: createMeanOrbits(objects.count),
     frames: createOrbitFrames(objects.count),
     primaries: included.filter((object) => object < objects.primaryCount),
@@ -114,11 +104,12 @@ export function createPairSearcher(
 
 /** Finds every closest approach of the pairs in one slab of the window. */
 export function searchPairs(searcher: PairSearcher, slab: number): PairSearchResult {
-  const { objects, rules, terms, orbits, frames, primaries, others } = searcher;
+  const { objects, rules, orbits, frames, primaries, others } = searcher;
+  const { secularTerms, epochMs } = objects;
   const { middleMs, halfSpanS } = spanOf(rules, slab);
   for (const list of [primaries, others]) {
     for (const object of list) {
-      if (!layMeanOrbit(orbits, object, terms, object, objects.epochMs[object], middleMs, halfSpanS))
+      if (!layMeanOrbit(orbits, object, secularTerms, object, epochMs[object], middleMs, halfSpanS))
         throw new Error(`object ${object} lost its mean orbit in slab ${slab}`);
       layOrbitFrame(frames, orbits, object);
     }

@@ -64,8 +64,8 @@ export function refineSlowPair(
   }
 }
 
-export function refinedObject({ records, epochMs }: SearchObjects, object: number): RefinedObject {
-  return { record: records[object], epochMs: epochMs[object] };
+export function refinedObject({ recordOf, epochMs }: SearchObjects, object: number): RefinedObject {
+  return { record: recordOf(object), epochMs: epochMs[object] };
 }
 
 /** Slow pairs are asked for at the same times, and one object is part of many in a train. */

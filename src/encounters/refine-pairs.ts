@@ -69,10 +69,10 @@ function refinePair(
   const { halfStepS, baseReachKm } = bounds;
   const i = RECORD_SIZE * a;
   const j = RECORD_SIZE * b;
-  const speed = Math.hypot(
-    records[j + 3] - records[i + 3],
-    records[j + 4] - records[i + 4],
-    records[j + 5] - records[i + 5],
+  const speed = Math.sqrt(
+    (records[j + 3] - records[i + 3]) ** 2 +
+      (records[j + 4] - records[i + 4]) ** 2 +
+      (records[j + 5] - records[i + 5]) ** 2,
   );
   const reachKm = baseReachKm + toleranceKm[a] + toleranceKm[b];
   const tracksErrKm = cursor.tracks.toleranceKm[a] + cursor.tracks.toleranceKm[b];

@@ -2,6 +2,7 @@ import type { SatRec } from 'satellite.js';
 import { EARTH_RADIUS_KM, orbitOf } from '../elements/orbit.js';
 import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
+import { laySecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
 
 /**
  * What is screened against what. The first `primaryCount` objects are the primaries (the fleet, a launch
@@ -10,7 +11,10 @@ import { SLAB_S } from '../ephemeris/node-spacing.js';
 export type SearchObjects = {
   readonly count: number;
   readonly primaryCount: number;
-  readonly records: readonly SatRec[];
+  /** SGP4's record, which may be made when it is first asked for. */
+  readonly recordOf: (object: number) => SatRec;
+  /** `TERMS_SIZE` numbers an object, as `laySecularTerms` lays them. */
+  readonly secularTerms: Float64Array;
   readonly epochMs: Float64Array;
   /** Mean eccentricity at epoch. */
   readonly eccentricity: Float64Array;
@@ -71,10 +75,13 @@ export function searchObjectsOf(
   records: readonly SatRec[] = sets.map(sgp4RecordOf),
 ): SearchObjects {
   const orbits = sets.map((set, i) => orbitOf(set, records[i]));
+  const secularTerms = new Float64Array(TERMS_SIZE * sets.length);
+  for (const [i, record] of records.entries()) laySecularTerms(record, secularTerms, TERMS_SIZE * i);
   return {
     count: sets.length,
     primaryCount,
-    records,
+    recordOf: (object) => records[object],
+    secularTerms,
     epochMs: Float64Array.from(sets, (set) => set.epochMs),
     eccentricity: Float64Array.from(sets, (set) => set.eccentricity),
     perigeeRadiusKm: Float64Array.from(orbits, (orbit) => orbit.perigeeHeightKm + EARTH_RADIUS_KM),

@@ -5,7 +5,7 @@ import {
   AXIS,
   E_ACROSS_NODE,
   E_ALONG_NODE,
-  isNearEarth,
+  hasSecularTerms,
   laySecularTerms,
   SECULAR_SIZE,
   secularElementsAt,
@@ -17,7 +17,7 @@ export type RadiusBand = { readonly lowKm: number; readonly highKm: number };
 
 const MS_PER_MINUTE = 60_000;
 /** Mean elements are looked at this often; in between they drift by less than the pads. */
-const LONGEST_GAP_MS = 2 * 86_400_000;
+const LONGEST_GAP_MS = 4 * 86_400_000;
 /**
  * What J2 and J3 swing the radius about the mean ellipse: short periods up to 6 km, the long-period term of
  * J3 up to 9 km. Twice that, and for deep-space orbits room for the lunar-solar terms.
@@ -27,7 +27,7 @@ const DEEP_SPACE_PAD_KM = 200;
 /** Above this SGP4 does not fail on a near-earth orbit. */
 const LOWEST_SURE_KM = EARTH_RADIUS_KM + 50;
 
-const terms = new Float64Array(TERMS_SIZE);
+const ownTerms = new Float64Array(TERMS_SIZE);
 const secular = new Float64Array(SECULAR_SIZE);
 
 /**
@@ -41,22 +41,30 @@ export function radiusBand(
   startMs: number,
   endMs: number,
 ): RadiusBand | undefined {
-  return nearEarthBand(record, epochMs, startMs, endMs) ?? bandOfStates(record, epochMs, startMs, endMs);
+  laySecularTerms(record, ownTerms, 0);
+  return nearEarthBand(ownTerms, 0, epochMs, startMs, endMs) ?? bandOfStates(record, epochMs, startMs, endMs);
 }
 
-/** By the secular elements alone, a tenth of the work: for orbits that stay well above the ground. */
-function nearEarthBand(
-  record: SatRec,
+/**
+ * The same by the secular elements alone, a tenth of the work: for orbits that stay well above the ground.
+ *
+ * @param terms as `laySecularTerms` lays them, from `at` on
+ * @returns `undefined` for other orbits
+ */
+export function nearEarthBand(
+  terms: Float64Array,
+  at: number,
   epochMs: number,
   startMs: number,
   endMs: number,
 ): RadiusBand | undefined {
-  if (!isNearEarth(record)) return undefined;
-  laySecularTerms(record, terms, 0);
+  if (!hasSecularTerms(terms, at)) return undefined;
   const band = { lowKm: Number.POSITIVE_INFINITY, highKm: 0 };
   for (const timeMs of timesBetween(startMs, endMs)) {
-    if (!secularElementsAt(terms, 0, (timeMs - epochMs) / MS_PER_MINUTE, secular)) return undefined;
-    widen(band, secular[AXIS], Math.hypot(secular[E_ALONG_NODE], secular[E_ACROSS_NODE]));
+    if (!secularElementsAt(terms, at, (timeMs - epochMs) / MS_PER_MINUTE, secular)) return undefined;
+    const along = secular[E_ALONG_NODE];
+    const across = secular[E_ACROSS_NODE];
+    widen(band, secular[AXIS], Math.sqrt(along * along + across * across));
   }
   const padded = { lowKm: band.lowKm - NEAR_EARTH_PAD_KM, highKm: band.highKm + NEAR_EARTH_PAD_KM };
   return padded.lowKm > LOWEST_SURE_KM ? padded : undefined;

@@ -1,6 +1,7 @@
+import { TERMS_SIZE } from '../ephemeris/secular-elements.js';
 import { hasMeanOrbit } from './pair-search.js';
 import { pairKey, type SearchObjects, type SearchRules } from './search-problem.js';
-import { primaryBand, radiusBand, sieve } from './sieve.js';
+import { nearEarthBand, primaryBand, sieve } from './sieve.js';
 
 /**
  * More primaries than this are stepped on a grid with all others: looking at pairs one by one costs more then.
@@ -52,20 +53,24 @@ export function splitSearch(objects: SearchObjects, rules: SearchRules): SplitSe
   };
 }
 
-/** Those of the others whose heights over the window come near those of any primary. */
+/** Those of the others, all with mean orbits, whose heights over the window come near those of any primary. */
 function withinReach(
-  { records, epochMs, validFromMs, validToMs }: SearchObjects,
+  { recordOf, secularTerms, epochMs, validFromMs, validToMs }: SearchObjects,
   { startMs, endMs, missKm }: SearchRules,
   primaries: Int32Array,
   others: Int32Array,
 ): Int32Array {
   if (primaries.length === 0) return others.subarray(0, 0);
-  const bandsOf = (list: Int32Array, bandOf: typeof primaryBand) =>
-    Array.from(list, (object) => {
-      const fromMs = Math.max(startMs, validFromMs[object]);
-      return bandOf(records[object], epochMs[object], fromMs, Math.min(endMs, validToMs[object]));
-    });
-  const passes = sieve(bandsOf(others, radiusBand), bandsOf(primaries, primaryBand), missKm);
+  const fromMs = (object: number) => Math.max(startMs, validFromMs[object]);
+  const toMs = (object: number) => Math.min(endMs, validToMs[object]);
+  const primaryBands = Array.from(primaries, (object) =>
+    primaryBand(recordOf(object), epochMs[object], fromMs(object), toMs(object)),
+  );
+  // From their secular terms: no record of SGP4 need be made of them.
+  const bands = Array.from(others, (object) =>
+    nearEarthBand(secularTerms, TERMS_SIZE * object, epochMs[object], fromMs(object), toMs(object)),
+  );
+  const passes = sieve(bands, primaryBands, missKm);
   return others.filter((_, k) => passes[k] === 1);
 }
 
@@ -94,7 +99,8 @@ function partOf(
     objects: {
       count: indices.length,
       primaryCount: primaries.length,
-      records: Array.from(indices, (object) => objects.records[object]),
+      recordOf: (place) => objects.recordOf(indices[place]),
+      secularTerms: termsOf(objects, indices),
       epochMs: pick(objects.epochMs),
       eccentricity: pick(objects.eccentricity),
       perigeeRadiusKm: pick(objects.perigeeRadiusKm),
@@ -102,4 +108,13 @@ function partOf(
       validToMs: pick(objects.validToMs),
     },
   };
+}
+
+function termsOf({ secularTerms }: SearchObjects, indices: Int32Array): Float64Array {
+  const terms = new Float64Array(TERMS_SIZE * indices.length);
+  indices.forEach((object, place) => {
+    const from = TERMS_SIZE * object;
+    terms.set(secularTerms.subarray(from, from + TERMS_SIZE), TERMS_SIZE * place);
+  });
+  return terms;
 }

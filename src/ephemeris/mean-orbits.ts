@@ -141,7 +141,7 @@ function rate(place: number, halfSpanS: number): number {
 }
 
 function sizeOf(elements: Float64Array): number {
-  return Math.hypot(elements[E_ALONG_NODE], elements[E_ACROSS_NODE]);
+  return Math.sqrt(elements[E_ALONG_NODE] ** 2 + elements[E_ACROSS_NODE] ** 2);
 }
 
 /** What an element leaves the straight line through its middle by, at the ends. */

@@ -60,8 +60,17 @@ export function isNearEarth(record: SatRec): boolean {
   return record.method === 'n' && record.error === SatRecError.None;
 }
 
-/** Copies what the secular elements of a near-earth orbit hang on. */
+/** Whether there are terms of an orbit: there are none of deep-space ones. */
+export function hasSecularTerms(terms: Float64Array, at: number): boolean {
+  return !Number.isNaN(terms[at]);
+}
+
+/** Copies what the secular elements of an orbit hang on; `NaN` where it is deep-space. */
 export function laySecularTerms(record: SatRec, terms: Float64Array, at: number): void {
+  if (!isNearEarth(record)) {
+    terms[at] = Number.NaN;
+    return;
+  }
   // Written out: a loop over names is ten times slower.
   terms[at + AT.mo] = record.mo;
   terms[at + AT.mdot] = record.mdot;

@@ -39,8 +39,8 @@ function assessApproach(
   plan: SearchPlan,
   records: EncounterRecords,
 ): void {
-  const object1 = { record: objects.records[first], epochMs: objects.epochMs[first] };
-  const object2 = { record: objects.records[second], epochMs: objects.epochMs[second] };
+  const object1 = { record: objects.recordOf(first), epochMs: objects.epochMs[first] };
+  const object2 = { record: objects.recordOf(second), epochMs: objects.epochMs[second] };
   sgp4StateAt(object1.record, object1.epochMs, tcaMs, states, 0);
   sgp4StateAt(object2.record, object2.epochMs, tcaMs, states, 6);
   const speedKmPerS = Math.hypot(states[9] - states[3], states[10] - states[4], states[11] - states[5]);

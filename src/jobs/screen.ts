@@ -3,7 +3,7 @@ import { expectCurrentFleet } from '../elements/age.js';
 import type { ElementSet } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
 import { findCompanions } from '../encounters/companions.js';
-import { pairKey, searchObjectsOf } from '../encounters/search-problem.js';
+import { pairKey, searchObjectsOf, slabCount } from '../encounters/search-problem.js';
 import { enclosingRadiusKm } from '../encounters/volume.js';
 import { writeChangesCsv } from '../tables/changes-csv.js';
 import {
@@ -28,6 +28,7 @@ import { recordedOptions } from './run-record.js';
 import type { JobPorts, ScreenOptions, ScreenOutcome } from './screen-options.js';
 import { screenedObject } from './screened-object.js';
 import { searchAndRank, type Window } from './search-and-rank.js';
+import { withSearchWorkers } from './search-in-workers.js';
 import { searchPlanOf } from './search-plan.js';
 import { createTimings } from './timings.js';
 import { warnOfUnlisted } from './unlisted-objects.js';
@@ -65,13 +66,18 @@ async function screenInto(
   const changed = changedSince(history, asked, ports);
   timings.end('reading');
 
-  const prepared = prepareSearch(read, options, window, ports);
-  const { primaries, others, objects, plan } = prepared;
-  timings.end('preparing');
-  ports.log.info(
-    `searching ${formatUtc(startMs)} to ${formatUtc(window.endMs)}: ${primaries.length} ${options.allOnAll ? 'objects on each other' : 'of the fleet'}, ${objects.length - primaries.length} of ${others.length} others within reach`,
-  );
-  const search = await searchAndRank(plan, objects, window, options.workers, ports, timings);
+  const threads = Math.min(options.workers, slabCount(window));
+  const { prepared, search } = await withSearchWorkers(threads, ports, async (workers) => {
+    const ready = prepareSearch(read, options, window, ports);
+    timings.end('preparing');
+    const primaryCount = ready.primaries.length;
+    ports.log.info(
+      `searching ${formatUtc(startMs)} to ${formatUtc(window.endMs)}: ${primaryCount} ${options.allOnAll ? 'objects on each other' : 'of the fleet'}, ${ready.objects.length - primaryCount} of ${ready.others.length} others within reach`,
+    );
+    const found = await searchAndRank(ready.plan, ready.objects, window, workers, timings);
+    return { prepared: ready, search: found };
+  });
+  const { primaries, others, objects } = prepared;
   const { outcome, ranked, failed } = search;
   warnOfFailures(failed, read.inputs.fleet, ports);
 

@@ -2,9 +2,8 @@ import type { UnusedElements } from '../elements/element-set.js';
 import { failedSets } from './failed-sets.js';
 import { fillPairProbabilities } from './pair-probabilities.js';
 import { type RankedRecords, rankedRecords } from './ranked-records.js';
-import type { JobPorts } from './screen-options.js';
 import type { ScreenedObject } from './screened-object.js';
-import { type SearchOutcome, searchInWorkers } from './search-in-workers.js';
+import type { SearchOutcome, SearchWorkers } from './search-in-workers.js';
 import type { SearchPlan } from './search-plan.js';
 import type { Timings } from './timings.js';
 
@@ -28,12 +27,11 @@ export async function searchAndRank(
   plan: SearchPlan,
   objects: readonly ScreenedObject[],
   { startMs, endMs }: Window,
-  workers: number,
-  ports: JobPorts,
+  workers: SearchWorkers,
   timings: Timings,
   identities?: ArrayLike<number>,
 ): Promise<RankedSearch> {
-  const outcome = await searchInWorkers(plan, workers, ports);
+  const outcome = await workers.search(plan);
   timings.end('searching');
   fillPairProbabilities(outcome.records, objects.length, identities);
   return {

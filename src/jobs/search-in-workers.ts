@@ -1,5 +1,5 @@
 import { Worker } from 'node:worker_threads';
-import pLimit from 'p-limit';
+import pLimit, { type LimitFunction } from 'p-limit';
 import { slabCount } from '../encounters/search-problem.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
 import {
@@ -11,7 +11,7 @@ import {
 } from './encounter-records.js';
 import type { JobPorts } from './screen-options.js';
 import type { SearchPlan } from './search-plan.js';
-import type { SlabAnswer } from './search-worker.js';
+import type { SlabAnswer, SlabQuestion } from './search-worker.js';
 
 export type SearchOutcome = {
   /** Every encounter once, in the order of the slabs and of TCA within them. */
@@ -31,64 +31,98 @@ const MS_PER_DAY = 86_400_000;
 /** Minima of one pair closer than this in time are one that two slabs found. */
 const SAME_MS = 1;
 
+/** Threads that search; they are there, and load what they need, before there is anything to search. */
+export type SearchWorkers = {
+  /**
+   * Searches the window of a plan slab by slab. Slabs do not depend on the number of workers and are put
+   * together in their order, so that the outcome is the same for any number; each worker has one slab in hand at
+   * a time, which bounds memory. One search at a time.
+   */
+  readonly search: (plan: SearchPlan) => Promise<SearchOutcome>;
+};
+
+/** A worker and what it died of, if it has: known before or while it is asked. */
+type HeldWorker = { readonly thread: Worker; fault: Error | undefined };
+
 /**
- * Searches the window slab by slab in worker threads. Slabs do not depend on the number of workers and are
- * put together in their order, so that the outcome is the same for any number; each worker has one slab in
- * hand at a time, which bounds memory.
+ * Starts worker threads for as long as `use` takes.
+ *
+ * @param workers how many: more than there are slabs to search are of no use
  */
-export async function searchInWorkers(
-  plan: SearchPlan,
+export async function withSearchWorkers<Result>(
   workers: number,
   ports: Pick<JobPorts, 'onStop' | 'progress'>,
-): Promise<SearchOutcome> {
-  const slabs = slabCount(plan);
-  const answers: (SlabAnswer | undefined)[] = new Array(slabs).fill(undefined);
-  const limit = pLimit(Math.max(1, Math.min(workers, slabs)));
-  const idle: Worker[] = [];
-  const all: Worker[] = [];
+  use: (workers: SearchWorkers) => Promise<Result>,
+): Promise<Result> {
+  const all = Array.from({ length: Math.max(1, workers) }, startWorker);
+  const limit = pLimit(all.length);
   const stop = () => {
     limit.clearQueue();
-    for (const worker of all) worker.terminate();
+    for (const { thread } of all) thread.terminate();
   };
   const forget = ports.onStop(stop);
-  let done = 0;
-  let encounters = 0;
   try {
-    await Promise.all(
-      answers.map((_, slab) =>
-        limit(async () => {
-          let worker = idle.pop();
-          if (worker === undefined) {
-            worker = new Worker(new URL('./search-worker.js', import.meta.url), { workerData: plan });
-            all.push(worker);
-          }
-          const answer = await ask(worker, slab);
-          idle.push(worker);
-          answers[slab] = answer;
-          done++;
-          encounters += answer.records.length / FIELDS;
-          const days = Math.min(done * SLAB_S * 1000, plan.endMs - plan.startMs) / MS_PER_DAY;
-          ports.progress({
-            stage: 'search',
-            fraction: done / slabs,
-            detail: `${plan.hardBodyRadiusM.length} objects, ${days.toFixed(1)} of ${((plan.endMs - plan.startMs) / MS_PER_DAY).toFixed(1)} d, ${encounters} encounters`,
-          });
-        }),
-      ),
-    );
+    return await use({ search: (plan) => searchSlabs(plan, all, limit, ports) });
   } finally {
     forget();
     stop();
   }
+}
+
+function startWorker(): HeldWorker {
+  const thread = new Worker(new URL('./search-worker.js', import.meta.url));
+  const held: HeldWorker = { thread, fault: undefined };
+  thread.once('error', (error) => {
+    held.fault = error;
+  });
+  return held;
+}
+
+async function searchSlabs(
+  plan: SearchPlan,
+  workers: readonly HeldWorker[],
+  limit: LimitFunction,
+  ports: Pick<JobPorts, 'progress'>,
+): Promise<SearchOutcome> {
+  const slabs = slabCount(plan);
+  const answers: (SlabAnswer | undefined)[] = new Array(slabs).fill(undefined);
+  const idle = [...workers];
+  const briefed = new Set<HeldWorker>();
+  const days = (plan.endMs - plan.startMs) / MS_PER_DAY;
+  let done = 0;
+  let encounters = 0;
+  await Promise.all(
+    answers.map((_, slab) =>
+      limit(async () => {
+        const worker = idle.pop() as HeldWorker;
+        const answer = await ask(worker, briefed.has(worker) ? { slab } : { slab, plan });
+        briefed.add(worker);
+        idle.push(worker);
+        answers[slab] = answer;
+        done++;
+        encounters += answer.records.length / FIELDS;
+        const doneDays = Math.min((done * SLAB_S * 1000) / MS_PER_DAY, days);
+        ports.progress({
+          stage: 'search',
+          fraction: done / slabs,
+          detail: `${plan.hardBodyRadiusM.length} objects, ${doneDays.toFixed(1)} of ${days.toFixed(1)} d, ${encounters} encounters`,
+        });
+      }),
+    ),
+  );
   return joined(answers as SlabAnswer[], plan.hardBodyRadiusM.length, plan.startMs);
 }
 
-function ask(worker: Worker, slab: number): Promise<SlabAnswer> {
+function ask({ thread, fault }: HeldWorker, question: SlabQuestion): Promise<SlabAnswer> {
   return new Promise((resolve, reject) => {
+    if (fault !== undefined) {
+      reject(fault);
+      return;
+    }
     const settle = () => {
-      worker.off('message', onMessage);
-      worker.off('error', onError);
-      worker.off('exit', onExit);
+      thread.off('message', onMessage);
+      thread.off('error', onError);
+      thread.off('exit', onExit);
     };
     const onMessage = (answer: SlabAnswer) => {
       settle();
@@ -102,10 +136,10 @@ function ask(worker: Worker, slab: number): Promise<SlabAnswer> {
       settle();
       reject(new Error(`a search worker ended with status ${status}`));
     };
-    worker.on('message', onMessage);
-    worker.on('error', onError);
-    worker.on('exit', onExit);
-    worker.postMessage(slab);
+    thread.on('message', onMessage);
+    thread.on('error', onError);
+    thread.on('exit', onExit);
+    thread.postMessage(question);
   });
 }
 

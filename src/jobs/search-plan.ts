@@ -1,6 +1,9 @@
-import type { MeanElements } from '../elements/sgp4-record.js';
-import { type SearchObjects, type SearchRules, searchObjectsOf } from '../encounters/search-problem.js';
+import type { SatRec } from 'satellite.js';
+import { EARTH_RADIUS_KM, orbitOf } from '../elements/orbit.js';
+import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
+import type { SearchObjects, SearchRules } from '../encounters/search-problem.js';
 import { enclosingRadiusKm, type ScreeningVolume } from '../encounters/volume.js';
+import { laySecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
 import type { SigmaCurve } from '../uncertainty/sigma-table.js';
 import type { ScreenedObject } from './screened-object.js';
 
@@ -8,6 +11,8 @@ import type { ScreenedObject } from './screened-object.js';
 export type SearchPlan = {
   /** `PLAN_FIELDS` doubles for each object, primaries first. */
   readonly elements: Float64Array;
+  /** As in `SearchObjects`. */
+  readonly secularTerms: Float64Array;
   /** When the age of each object's elements counts from. */
   readonly agesFromMs: Float64Array;
   readonly hardBodyRadiusM: Float64Array;
@@ -28,24 +33,26 @@ export type SearchPlan = {
   readonly onlyProbability?: boolean;
 };
 
-const PLAN_FIELDS = 10;
+const PLAN_FIELDS = 11;
 
 /** @param objects primaries first */
 export function searchPlanOf(
   objects: readonly ScreenedObject[],
   settings: Omit<
     SearchPlan,
-    'elements' | 'agesFromMs' | 'hardBodyRadiusM' | 'hasDefaultRadius' | 'curves' | 'curveOf'
+    'elements' | 'secularTerms' | 'agesFromMs' | 'hardBodyRadiusM' | 'hasDefaultRadius' | 'curves' | 'curveOf'
   >,
 ): SearchPlan {
   const elements = sharedFloat64(PLAN_FIELDS * objects.length);
+  const secularTerms = sharedFloat64(TERMS_SIZE * objects.length);
   const agesFromMs = sharedFloat64(objects.length);
   const hardBodyRadiusM = sharedFloat64(objects.length);
   const hasDefaultRadius = new Uint8Array(new SharedArrayBuffer(objects.length));
   const curveOf = new Int32Array(new SharedArrayBuffer(4 * objects.length));
   const curves: SigmaCurve[] = [];
   const numberOf = new Map<SigmaCurve, number>();
-  objects.forEach(({ set, curve, ...object }, i) => {
+  objects.forEach(({ set, record, curve, ...object }, i) => {
+    laySecularTerms(record, secularTerms, TERMS_SIZE * i);
     elements.set(
       [
         set.epochMs,
@@ -58,6 +65,7 @@ export function searchPlanOf(
         set.bstar,
         object.validFromMs,
         object.validToMs,
+        orbitOf(set, record).perigeeHeightKm + EARTH_RADIUS_KM,
       ],
       PLAN_FIELDS * i,
     );
@@ -71,27 +79,56 @@ export function searchPlanOf(
     }
     curveOf[i] = number;
   });
-  return { ...settings, elements, agesFromMs, hardBodyRadiusM, hasDefaultRadius, curves, curveOf };
+  return {
+    ...settings,
+    elements,
+    secularTerms,
+    agesFromMs,
+    hardBodyRadiusM,
+    hasDefaultRadius,
+    curves,
+    curveOf,
+  };
 }
 
-/** SGP4 records and all from the bare numbers, on the side of the worker. */
-export function objectsOfPlan({ elements, primaryCount }: SearchPlan): SearchObjects {
-  const sets: (MeanElements & { validFromMs: number; validToMs: number })[] = [];
-  for (let at = 0; at < elements.length; at += PLAN_FIELDS) {
-    sets.push({
-      epochMs: elements[at],
-      meanMotionRevPerDay: elements[at + 1],
-      eccentricity: elements[at + 2],
-      inclinationDeg: elements[at + 3],
-      rightAscensionDeg: elements[at + 4],
-      argumentOfPerigeeDeg: elements[at + 5],
-      meanAnomalyDeg: elements[at + 6],
-      bstar: elements[at + 7],
-      validFromMs: elements[at + 8],
-      validToMs: elements[at + 9],
-    });
-  }
-  return searchObjectsOf(sets, primaryCount);
+/** What is searched, from the bare numbers, on the side of the worker: SGP4 records are made as they are asked for. */
+export function objectsOfPlan({ elements, secularTerms, primaryCount }: SearchPlan): SearchObjects {
+  const count = elements.length / PLAN_FIELDS;
+  const field = (place: number) =>
+    Float64Array.from({ length: count }, (_, object) => elements[PLAN_FIELDS * object + place]);
+  const records: (SatRec | undefined)[] = new Array(count).fill(undefined);
+  const recordOf = (object: number): SatRec => {
+    let record = records[object];
+    if (record === undefined) {
+      record = sgp4RecordOf(meanElementsAt(elements, PLAN_FIELDS * object));
+      records[object] = record;
+    }
+    return record;
+  };
+  return {
+    count,
+    primaryCount,
+    recordOf,
+    secularTerms,
+    epochMs: field(0),
+    eccentricity: field(2),
+    validFromMs: field(8),
+    validToMs: field(9),
+    perigeeRadiusKm: field(10),
+  };
+}
+
+function meanElementsAt(elements: Float64Array, at: number): MeanElements {
+  return {
+    epochMs: elements[at],
+    meanMotionRevPerDay: elements[at + 1],
+    eccentricity: elements[at + 2],
+    inclinationDeg: elements[at + 3],
+    rightAscensionDeg: elements[at + 4],
+    argumentOfPerigeeDeg: elements[at + 5],
+    meanAnomalyDeg: elements[at + 6],
+    bstar: elements[at + 7],
+  };
 }
 
 export function rulesOfPlan(plan: SearchPlan): SearchRules {

@@ -1,9 +1,12 @@
-import { parentPort, workerData } from 'node:worker_threads';
+import { parentPort } from 'node:worker_threads';
 import { createSlabSearcher, searchSlab } from '../encounters/search-slab.js';
 import { loadBulkPropagator } from '../ephemeris/bulk-nodes.js';
 import { assessApproaches } from './assess-approach.js';
 import { createEncounterRecords, FIELDS } from './encounter-records.js';
 import { objectsOfPlan, rulesOfPlan, type SearchPlan } from './search-plan.js';
+
+/** A slab to search: of the plan that comes along, or of the one that came last. */
+export type SlabQuestion = { readonly slab: number; readonly plan?: SearchPlan };
 
 /** What a worker answers for one slab. */
 export type SlabAnswer = {
@@ -16,21 +19,29 @@ export type SlabAnswer = {
   readonly pairsRefined: number;
 };
 
-/** Runs in a worker thread: takes slab numbers, one at a time, and answers each with its encounters. */
-async function serve(plan: SearchPlan): Promise<void> {
+/** Runs in a worker thread: takes one slab at a time and answers it with its encounters. */
+async function serve(): Promise<void> {
   if (parentPort === null) throw new Error('search-worker runs in a worker thread only');
   const port = parentPort;
   await loadBulkPropagator();
-  const objects = objectsOfPlan(plan);
-  const searcher = createSlabSearcher(objects, rulesOfPlan(plan));
-  port.on('message', (slab: number) => {
-    const { approaches, ...facts } = searchSlab(searcher, slab);
-    const records = createEncounterRecords(approaches.length + 1);
-    assessApproaches(approaches, objects, plan, records);
-    const used = records.data.slice(0, FIELDS * records.size);
-    const answer: SlabAnswer = { slab, records: used, ...facts };
-    port.postMessage(answer, [used.buffer]);
+  let search: ((slab: number) => SlabAnswer) | undefined;
+  port.on('message', ({ slab, plan }: SlabQuestion) => {
+    if (plan !== undefined) search = searchOf(plan);
+    if (search === undefined) throw new Error(`slab ${slab} was asked for before any plan came`);
+    const answer = search(slab);
+    port.postMessage(answer, [answer.records.buffer]);
   });
 }
 
-await serve(workerData as SearchPlan);
+function searchOf(plan: SearchPlan): (slab: number) => SlabAnswer {
+  const objects = objectsOfPlan(plan);
+  const searcher = createSlabSearcher(objects, rulesOfPlan(plan));
+  return (slab) => {
+    const { approaches, ...facts } = searchSlab(searcher, slab);
+    const records = createEncounterRecords(approaches.length + 1);
+    assessApproaches(approaches, objects, plan, records);
+    return { slab, records: records.data.slice(0, FIELDS * records.size), ...facts };
+  };
+}
+
+await serve();

@@ -1,6 +1,7 @@
 import { LAUNCH_CAUTION } from '../../caution.js';
 import { isBatchDesignator } from '../../elements/batch-designator.js';
 import { formatUtc } from '../../elements/utc.js';
+import { slabCount } from '../../encounters/search-problem.js';
 import { enclosingRadiusKm } from '../../encounters/volume.js';
 import { type BatchObjectRow, writeBatchObjectsCsv } from '../../tables/batch-objects-csv.js';
 import { writeBatchPairsCsv } from '../../tables/batch-pairs-csv.js';
@@ -19,6 +20,7 @@ import type { RankedRecords } from '../ranked-records.js';
 import type { JobPorts } from '../screen-options.js';
 import { type ObjectKnowledge, type ScreenedObject, screenedObject } from '../screened-object.js';
 import { searchAndRank } from '../search-and-rank.js';
+import { withSearchWorkers } from '../search-in-workers.js';
 import { createTimings } from '../timings.js';
 import { warnOfUnlisted } from '../unlisted-objects.js';
 import { batchObjects } from './batch-objects.js';
@@ -77,53 +79,57 @@ async function launchInto(
   if (tooSmall !== undefined) ports.log.warn(tooSmall.warning);
   const searchOf = (slipsMs: readonly number[], onlyProbability: boolean) =>
     liftoffSearch(slipsMs, nominal, others, window, { ...options, onlyProbability });
-  // On its own, so that its figures are to the last digit those of a run without slips.
-  const planned = searchOf([0], false);
-  const { objects, flying } = planned;
   const batchCount = new Set(nominal.map(({ designator }) => designator)).size;
-  timings.end('preparing');
-
-  ports.log.info(
-    `searching ${formatUtc(startMs)} to ${formatUtc(endMs)}: ${batchCount} of the batch, ${objects.length - nominal.length} of ${others.length} others within reach`,
-  );
-  const search = await searchAndRank(
-    planned.plan,
-    objects,
-    window,
-    options.workers,
-    ports,
-    timings,
-    identitiesOf(objects),
-  );
-  const { outcome, ranked, failed } = search;
-  for (const { designator, detail } of failed) {
-    if (isBatchDesignator(designator)) ports.log.warn(`batch, ${designator}: ${detail}`);
-  }
-  warnOfFailures(failed, inputs.fleet, ports);
-  const same = probablySame(flying, objects);
   const missKm = enclosingRadiusKm(options.volume);
-  const pairs = pairRows(
-    nominal,
-    [...new Set(flying.map(({ second }) => objects[second]))],
-    { startMs, endMs, limitKm: missKm },
-    (designator, other) =>
-      same.some((pair) => objects[pair.first].designator === designator && objects[pair.second] === other),
-  );
-  timings.end('pairs');
+  const threads = Math.min(options.workers, slabCount(window));
+  const searched = await withSearchWorkers(threads, ports, async (workers) => {
+    // On its own, so that its figures are to the last digit those of a run without slips.
+    const planned = searchOf([0], false);
+    const { objects, flying } = planned;
+    timings.end('preparing');
+    ports.log.info(
+      `searching ${formatUtc(startMs)} to ${formatUtc(endMs)}: ${batchCount} of the batch, ${objects.length - nominal.length} of ${others.length} others within reach`,
+    );
+    const search = await searchAndRank(
+      planned.plan,
+      objects,
+      window,
+      workers,
+      timings,
+      identitiesOf(objects),
+    );
+    for (const { designator, detail } of search.failed) {
+      if (isBatchDesignator(designator)) ports.log.warn(`batch, ${designator}: ${detail}`);
+    }
+    warnOfFailures(search.failed, inputs.fleet, ports);
+    const same = probablySame(flying, objects);
+    const pairs = pairRows(
+      nominal,
+      [...new Set(flying.map(({ second }) => objects[second]))],
+      { startMs, endMs, limitKm: missKm },
+      (designator, other) =>
+        same.some((pair) => objects[pair.first].designator === designator && objects[pair.second] === other),
+    );
+    timings.end('pairs');
 
-  const unranked = liftoffRows(planned, outcome.records, options.liftoffMs, options.limits);
-  unranked.push(
-    ...(await slippedRows(
-      slips.filter((slipMs) => slipMs !== 0),
-      (slipsMs) => searchOf(slipsMs, true),
-      nominal.length,
-      new Set([...outcome.lastMsOf.keys()].map((index) => objects[index].set.source)),
-      options,
-      ports,
-    )),
-  );
-  const liftoffs = withBestRank(unranked.sort((a, b) => a.slipMs - b.slipMs));
-  timings.end('slips');
+    const unranked = liftoffRows(planned, search.outcome.records, options.liftoffMs, options.limits);
+    unranked.push(
+      ...(await slippedRows(
+        slips.filter((slipMs) => slipMs !== 0),
+        (slipsMs) => searchOf(slipsMs, true),
+        nominal.length,
+        new Set([...search.outcome.lastMsOf.keys()].map((index) => objects[index].set.source)),
+        workers,
+        options,
+        ports,
+      )),
+    );
+    timings.end('slips');
+    const liftoffs = withBestRank(unranked.sort((one, other) => one.slipMs - other.slipMs));
+    return { objects, flying, search, same, pairs, liftoffs };
+  });
+  const { objects, flying, search, same, pairs, liftoffs } = searched;
+  const { outcome, ranked, failed } = search;
 
   await writeBatchPairsCsv(folder.stream('batch-pairs.csv'), pairs);
   await writeSlipsCsv(folder.stream('slips.csv'), liftoffs);

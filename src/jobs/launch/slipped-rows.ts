@@ -1,7 +1,7 @@
 import { formatUtc } from '../../elements/utc.js';
 import type { JobPorts } from '../screen-options.js';
 import type { ScreenedObject } from '../screened-object.js';
-import { type SearchOutcome, searchInWorkers } from '../search-in-workers.js';
+import type { SearchOutcome, SearchWorkers } from '../search-in-workers.js';
 import type { LaunchOptions } from './launch-options.js';
 import { liftoffRows, type UnrankedLiftoff } from './liftoff-rows.js';
 import { type LiftoffSearch, slipGroups } from './liftoff-search.js';
@@ -17,6 +17,7 @@ export async function slippedRows(
   searchOf: (slipsMs: readonly number[]) => LiftoffSearch,
   phaseCount: number,
   knownFailures: ReadonlySet<unknown>,
+  workers: SearchWorkers,
   options: LaunchOptions,
   ports: JobPorts,
 ): Promise<UnrankedLiftoff[]> {
@@ -27,7 +28,7 @@ export async function slippedRows(
     ports.log.info(
       `searching ${group.length} more liftoffs, ${formatUtc(options.liftoffMs + group[0])} to ${formatUtc(options.liftoffMs + group[group.length - 1])}`,
     );
-    const outcome = await searchInWorkers(search.plan, options.workers, ports);
+    const outcome = await workers.search(search.plan);
     warnOfNewFailures(outcome, search.objects, knownFailures, ports);
     rows.push(...liftoffRows(search, outcome.records, options.liftoffMs, options.limits));
   }
