@@ -1,4 +1,5 @@
 import { BulkPropagator, createSingleThreadRuntime, EciBaseCalculator, type SatRec } from 'satellite.js';
+import { setRecords } from './bulk-records.js';
 
 /**
  * SGP4 states of many objects at common times by the WebAssembly propagator of satellite.js. It takes
@@ -41,7 +42,7 @@ export function createBulkNodes(records: readonly SatRec[], mostTimes: number): 
     satRecsCount: records.length,
     datesCount: mostTimes,
   });
-  propagator.setSatRecs([...records]);
+  setRecords(propagator, runtime.module, records);
   return {
     objectCount: records.length,
     dispose: () => propagator.dispose(),

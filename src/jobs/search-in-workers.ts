@@ -28,6 +28,8 @@ export type SearchOutcome = {
 };
 
 const MS_PER_DAY = 86_400_000;
+/** The records of a large catalog outlive many collections of a small young generation, which copies them each time. */
+const YOUNG_MB = 128;
 /** Minima of one pair closer than this in time are one that two slabs found. */
 const SAME_MS = 1;
 
@@ -70,7 +72,9 @@ export async function withSearchWorkers<Result>(
 }
 
 function startWorker(): HeldWorker {
-  const thread = new Worker(new URL('./search-worker.js', import.meta.url));
+  const thread = new Worker(new URL('./search-worker.js', import.meta.url), {
+    resourceLimits: { maxYoungGenerationSizeMb: YOUNG_MB },
+  });
   const held: HeldWorker = { thread, fault: undefined };
   thread.once('error', (error) => {
     held.fault = error;
