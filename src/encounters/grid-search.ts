@@ -51,8 +51,8 @@ export type GridSearcher = {
   readonly kernel: StepKernel;
   readonly cursorRoom: CursorRoom;
   readonly pairs: NearPairs;
-  /** By the angle that they are laid out for. */
-  readonly cellsOf: Map<number, StepCells>;
+  /** By the angles that they are laid out for. */
+  readonly cellsOf: Map<string, StepCells>;
   /** What the pairs that the kernel hands over are held against. */
   plan: StepPlan;
 };
@@ -247,12 +247,13 @@ function planStep(searcher: GridSearcher, { cursor, candidateCount }: SlabWork, 
 
 /** Slabs take the same few steps over and over. */
 function cellsFor({ cellsOf }: GridSearcher, bounds: StepBounds): StepCells {
-  const { ordinaryAngle } = bounds;
-  let found = cellsOf.get(ordinaryAngle);
+  const { ordinaryAngle, fastestAngle } = bounds;
+  const key = `${ordinaryAngle} ${fastestAngle}`;
+  let found = cellsOf.get(key);
   if (found === undefined) {
     const cells = directionCells(ordinaryAngle);
     found = { cells, lists: listsOf(cells, bounds) };
-    cellsOf.set(ordinaryAngle, found);
+    cellsOf.set(key, found);
   }
   return found;
 }

@@ -40,6 +40,8 @@ const FRAME_SIZE = 9;
 const LEAST_ONE_PLUS_COSINE = 0.02;
 /** Above this part of sin gamma, alpha leaves the place along the line of the planes open. */
 const LARGEST_SINE = 0.45;
+/** Wider windows about passages of the line, half a turn apart but for equations of the center, could overlap. */
+const LARGEST_HALF_TURN = 1.3;
 /** Windows are cut into pieces no longer than twice this, so that paths in them are nearly straight. */
 const LONGEST_HALF_S = 100;
 /** By so much an orbit with e up to 0.1 can be lower elsewhere in a piece than where it meets another. */
@@ -142,8 +144,9 @@ function phaseRate(orbits: MeanOrbits, a: number, b: number, onePlus: number): n
 }
 
 /**
- * Tests 2 and 3: the windows in which two objects can meet. They may overlap; together they hold every time
- * of the span at which SGP4 has the two within D.
+ * Tests 2 and 3: the windows in which two objects can meet. They don't overlap (passages of the line are half a
+ * turn apart, and phases that differ by turns are met at different times); together they hold every time of the
+ * span at which SGP4 has the two within D.
  *
  * @param windows takes the windows, in no certain order
  */
@@ -166,17 +169,18 @@ export function meetingWindows(search: MeetingSearch, a: number, b: number, wind
     const lineAlongK = dot(0, 6);
     const leastSine = Math.sqrt(lineAlongM ** 2 + lineAlongK ** 2) - turn;
     const sineSeen = reachKm / lowestKm;
-    if (!(sineSeen < LARGEST_SINE * leastSine)) {
+    const e = orbits.eccentricity[a];
+    const rate = orbits.latitudeRate[a];
+    const off = 1.06 * (sineSeen / leastSine) + turn / leastSine + 1.6 * e * e + 0.05 * e;
+    const halfTurn = off / (1 - 2.2 * e);
+    if (!(leastSine > 0 && sineSeen < LARGEST_SINE * leastSine && halfTurn < LARGEST_HALF_TURN)) {
       cutIntoPieces(search, a, b, fromS, toS, windows);
       continue;
     }
-    const e = orbits.eccentricity[a];
-    const rate = orbits.latitudeRate[a];
     const toLine = Math.atan2(lineAlongK, lineAlongM);
     const atLine = orbits.latitude[a] + toLine;
     const center = 2 * (orbits.eAlong[a] * Math.sin(atLine) - orbits.eAcross[a] * Math.cos(atLine));
-    const off = 1.06 * (sineSeen / leastSine) + turn / leastSine + 1.6 * e * e + 0.05 * e;
-    const halfS = off / (rate * (1 - 2.2 * e));
+    const halfS = halfTurn / rate;
     const first = Math.ceil(((fromS - halfS) * rate - toLine - Math.abs(center)) / Math.PI);
     const last = Math.floor(((toS + halfS) * rate - toLine + Math.abs(center)) / Math.PI);
     for (let k = first; k <= last; k++) {

@@ -44,8 +44,6 @@ export type PairSearchResult = {
   readonly pairsRefined: number;
 };
 
-/** Spans are laid a little longer than their slab, so that rounding at its edges costs nothing. */
-const EDGE_S = 1;
 /** As `ACCELERATION_SLACK_KM` of `bounds.ts`: what SGP4 differs from gravity in a window. */
 const SLACK_KM = 0.1;
 
@@ -80,9 +78,12 @@ function isFit({ eccentricity, toleranceKm, lowKm }: MeanOrbits): boolean {
   );
 }
 
+/**
+ * A slab exactly: where two meet, both ask for the sign of the same closing rate, so that a minimum is found by one.
+ */
 function spanOf(rules: SearchRules, slab: number): { middleMs: number; halfSpanS: number } {
   const { startMs, lengthS } = slabOf(rules, slab);
-  return { middleMs: startMs + lengthS * 500, halfSpanS: lengthS / 2 + EDGE_S };
+  return { middleMs: startMs + lengthS * 500, halfSpanS: lengthS / 2 };
 }
 
 /** @param isIncluded objects with a mean orbit, all primaries among them */
