@@ -6,7 +6,7 @@ import { sigmaAt } from '../uncertainty/sigma-table.js';
 import { norm, rotate, scale, subtract } from '../vector.js';
 import { type EncounterRecords, FIELD, FIELDS, PROBABILITY_METHODS } from './encounter-records.js';
 import { remarksOfBits } from './remark-bits.js';
-import type { ScreenedObject } from './screened-object.js';
+import type { ShownObject } from './screened-object.js';
 
 const MS_PER_DAY = 86_400_000;
 
@@ -14,7 +14,7 @@ const MS_PER_DAY = 86_400_000;
 export function conjunctionOf(
   records: EncounterRecords,
   number: number,
-  objects: readonly ScreenedObject[],
+  objects: readonly ShownObject[],
 ): Conjunction {
   const { data } = records;
   const at = FIELDS * number;
@@ -56,7 +56,7 @@ export function sensitivityOf(
   records: EncounterRecords,
   number: number,
   rank: number,
-  objects: readonly ScreenedObject[],
+  objects: readonly ShownObject[],
 ): ConjunctionSensitivity {
   const { data } = records;
   const at = FIELDS * number;
@@ -77,7 +77,7 @@ export function sensitivityOf(
   };
 }
 
-function conjunctionObject(object: ScreenedObject, state: OrbitState, tcaMs: number): ConjunctionObject {
+function conjunctionObject(object: ShownObject, state: OrbitState, tcaMs: number): ConjunctionObject {
   const elementAgeDays = (tcaMs - object.agesFromMs) / MS_PER_DAY;
   return {
     designator: object.designator,

@@ -39,8 +39,12 @@ export type ProbabilityMethod = (typeof PROBABILITY_METHODS)[number];
 /** Grows as encounters come in; `size` counts encounters. */
 export type EncounterRecords = { data: Float64Array; size: number };
 
-export function createEncounterRecords(capacity = 256): EncounterRecords {
-  return { data: new Float64Array(FIELDS * capacity), size: 0 };
+/** @param memory `SharedArrayBuffer` where threads are to read what fits into the capacity without a copy */
+export function createEncounterRecords(
+  capacity = 256,
+  memory: typeof ArrayBuffer | typeof SharedArrayBuffer = ArrayBuffer,
+): EncounterRecords {
+  return { data: new Float64Array(new memory(8 * FIELDS * capacity)), size: 0 };
 }
 
 /** Makes room for `more` encounters; returns the offset of the first. */

@@ -4,7 +4,7 @@ import { type CompanionPair, writeCompanionsCsv } from '../tables/companions-csv
 import { writeUnusedElementsCsv } from '../tables/unused-elements-csv.js';
 import { FIELD, FIELDS } from './encounter-records.js';
 import type { OutputFolder } from './output-folder.js';
-import { type RankedRecords, writeRankedTables } from './ranked-records.js';
+import type { RankedRecords } from './ranked-records.js';
 import { RUN_RECORD } from './run-folder.js';
 import { environmentOf, type RunRecord, runRecordText } from './run-record.js';
 import type { JobPorts, SharedOptions } from './screen-options.js';
@@ -12,6 +12,7 @@ import type { RankedSearch, Window } from './search-and-rank.js';
 import { searchFacts } from './search-facts.js';
 import type { Timings } from './timings.js';
 import { writeMessages } from './write-messages.js';
+import { writeRankedTables } from './write-ranked-tables.js';
 
 /** What every run leaves of its encounters. */
 export type RunResults = {
@@ -29,10 +30,10 @@ export async function writeResults(
   folder: OutputFolder,
   { ranked, companions, unused }: RunResults,
   { startMs, endMs }: Window,
-  { volume, cdmFromPc }: SharedOptions,
+  { volume, cdmFromPc, workers }: SharedOptions,
   ports: JobPorts,
 ): Promise<number> {
-  await writeRankedTables(folder, ranked);
+  await writeRankedTables(folder, ranked, workers, ports);
   await writeCompanionsCsv(folder.stream('companions.csv'), companions);
   await writeUnusedElementsCsv(folder.stream('unused-elements.csv'), unused);
   return writeMessages(folder, ranked, cdmFromPc, { startMs, endMs, volume }, ports);

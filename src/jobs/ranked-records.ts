@@ -1,10 +1,7 @@
 import type { Conjunction } from '../tables/conjunction.js';
-import { writeConjunctionsCsv } from '../tables/conjunctions-csv.js';
-import { writeSensitivityCsv } from '../tables/sensitivity-csv.js';
 import type { RankedConjunctions } from '../tables/terminal-table.js';
-import { conjunctionOf, sensitivityOf } from './conjunctions.js';
+import { conjunctionOf } from './conjunctions.js';
 import type { EncounterRecords } from './encounter-records.js';
-import type { OutputFolder } from './output-folder.js';
 import { rankRecords } from './rank-records.js';
 import type { ScreenedObject } from './screened-object.js';
 
@@ -25,18 +22,4 @@ export function rankedRecords(records: EncounterRecords, objects: readonly Scree
     count: order.length,
     at: (index): Conjunction => conjunctionOf(records, order[index], objects),
   };
-}
-
-/** Writes `conjunctions.csv` and `sensitivity.csv`. */
-export async function writeRankedTables(folder: OutputFolder, ranked: RankedRecords): Promise<void> {
-  const { records, objects, order, count, at } = ranked;
-  await writeConjunctionsCsv(folder.stream('conjunctions.csv'), sequence(count, at));
-  await writeSensitivityCsv(
-    folder.stream('sensitivity.csv'),
-    sequence(count, (index) => sensitivityOf(records, order[index], index + 1, objects)),
-  );
-}
-
-function* sequence<T>(count: number, at: (index: number) => T): Generator<T> {
-  for (let index = 0; index < count; index++) yield at(index);
 }

@@ -1,5 +1,3 @@
-import { Worker } from 'node:worker_threads';
-import pLimit, { type LimitFunction } from 'p-limit';
 import { slabCount } from '../encounters/search-problem.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
 import {
@@ -11,7 +9,8 @@ import {
 } from './encounter-records.js';
 import type { JobPorts } from './screen-options.js';
 import type { SearchPlan } from './search-plan.js';
-import type { SlabAnswer, SlabQuestion } from './search-worker.js';
+import type { SlabAnswer } from './search-worker.js';
+import { withWorkerThreads } from './worker-threads.js';
 
 export type SearchOutcome = {
   /** Every encounter once, in the order of the slabs and of TCA within them. */
@@ -28,123 +27,58 @@ export type SearchOutcome = {
 };
 
 const MS_PER_DAY = 86_400_000;
-/** The records of a large catalog outlive many collections of a small young generation, which copies them each time. */
-const YOUNG_MB = 128;
 /** Minima of one pair closer than this in time are one that two slabs found. */
 const SAME_MS = 1;
 
-/** Threads that search; they are there, and load what they need, before there is anything to search. */
 export type SearchWorkers = {
   /**
    * Searches the window of a plan slab by slab. Slabs do not depend on the number of workers and are put
    * together in their order, so that the outcome is the same for any number; each worker has one slab in hand at
-   * a time, which bounds memory. One search at a time.
+   * a time, which bounds memory.
    */
   readonly search: (plan: SearchPlan) => Promise<SearchOutcome>;
 };
 
-/** A worker and what it died of, if it has: known before or while it is asked. */
-type HeldWorker = { readonly thread: Worker; fault: Error | undefined };
-
 /**
- * Starts worker threads for as long as `use` takes.
+ * Starts threads that search for as long as `use` takes.
  *
  * @param workers how many: more than there are slabs to search are of no use
  */
-export async function withSearchWorkers<Result>(
+export function withSearchWorkers<Result>(
   workers: number,
   ports: Pick<JobPorts, 'onStop' | 'progress'>,
   use: (workers: SearchWorkers) => Promise<Result>,
 ): Promise<Result> {
-  const all = Array.from({ length: Math.max(1, workers) }, startWorker);
-  const limit = pLimit(all.length);
-  const stop = () => {
-    limit.clearQueue();
-    for (const { thread } of all) thread.terminate();
-  };
-  const forget = ports.onStop(stop);
-  try {
-    return await use({ search: (plan) => searchSlabs(plan, all, limit, ports) });
-  } finally {
-    forget();
-    stop();
-  }
-}
-
-function startWorker(): HeldWorker {
-  const thread = new Worker(new URL('./search-worker.js', import.meta.url), {
-    resourceLimits: { maxYoungGenerationSizeMb: YOUNG_MB },
-  });
-  const held: HeldWorker = { thread, fault: undefined };
-  thread.once('error', (error) => {
-    held.fault = error;
-  });
-  return held;
+  const script = new URL('./search-worker.js', import.meta.url);
+  return withWorkerThreads<SearchPlan, number, SlabAnswer, Result>(script, workers, ports, ({ ask }) =>
+    use({ search: (plan) => searchSlabs(plan, (slab) => ask(plan, slab), ports) }),
+  );
 }
 
 async function searchSlabs(
   plan: SearchPlan,
-  workers: readonly HeldWorker[],
-  limit: LimitFunction,
+  answerTo: (slab: number) => Promise<SlabAnswer>,
   ports: Pick<JobPorts, 'progress'>,
 ): Promise<SearchOutcome> {
   const slabs = slabCount(plan);
-  const answers: (SlabAnswer | undefined)[] = new Array(slabs).fill(undefined);
-  const idle = [...workers];
-  const briefed = new Set<HeldWorker>();
   const days = (plan.endMs - plan.startMs) / MS_PER_DAY;
   let done = 0;
   let encounters = 0;
-  await Promise.all(
-    answers.map((_, slab) =>
-      limit(async () => {
-        const worker = idle.pop() as HeldWorker;
-        const answer = await ask(worker, briefed.has(worker) ? { slab } : { slab, plan });
-        briefed.add(worker);
-        idle.push(worker);
-        answers[slab] = answer;
-        done++;
-        encounters += answer.records.length / FIELDS;
-        const doneDays = Math.min((done * SLAB_S * 1000) / MS_PER_DAY, days);
-        ports.progress({
-          stage: 'search',
-          fraction: done / slabs,
-          detail: `${plan.hardBodyRadiusM.length} objects, ${doneDays.toFixed(1)} of ${days.toFixed(1)} d, ${encounters} encounters`,
-        });
-      }),
-    ),
+  const answers = await Promise.all(
+    Array.from({ length: slabs }, async (_, slab) => {
+      const answer = await answerTo(slab);
+      done++;
+      encounters += answer.records.length / FIELDS;
+      const doneDays = Math.min((done * SLAB_S * 1000) / MS_PER_DAY, days);
+      ports.progress({
+        stage: 'search',
+        fraction: done / slabs,
+        detail: `${plan.hardBodyRadiusM.length} objects, ${doneDays.toFixed(1)} of ${days.toFixed(1)} d, ${encounters} encounters`,
+      });
+      return answer;
+    }),
   );
-  return joined(answers as SlabAnswer[], plan.hardBodyRadiusM.length, plan.startMs);
-}
-
-function ask({ thread, fault }: HeldWorker, question: SlabQuestion): Promise<SlabAnswer> {
-  return new Promise((resolve, reject) => {
-    if (fault !== undefined) {
-      reject(fault);
-      return;
-    }
-    const settle = () => {
-      thread.off('message', onMessage);
-      thread.off('error', onError);
-      thread.off('exit', onExit);
-    };
-    const onMessage = (answer: SlabAnswer) => {
-      settle();
-      resolve(answer);
-    };
-    const onError = (error: Error) => {
-      settle();
-      reject(error);
-    };
-    const onExit = (status: number) => {
-      settle();
-      reject(new Error(`a search worker ended with status ${status}`));
-    };
-    thread.on('message', onMessage);
-    thread.on('error', onError);
-    thread.on('exit', onExit);
-    thread.postMessage(question);
-  });
+  return joined(answers, plan.hardBodyRadiusM.length, plan.startMs);
 }
 
 function joined(answers: readonly SlabAnswer[], objectCount: number, startMs: number): SearchOutcome {
@@ -156,6 +90,7 @@ function joined(answers: readonly SlabAnswer[], objectCount: number, startMs: nu
   }
   const records = createEncounterRecords(
     answers.reduce((sum, each) => sum + each.records.length / FIELDS, 1),
+    SharedArrayBuffer,
   );
   const edge = new Map<number, number>();
   for (const { records: data, slab } of answers) {

@@ -4,9 +4,7 @@ import { loadBulkPropagator } from '../ephemeris/bulk-nodes.js';
 import { assessApproaches } from './assess-approach.js';
 import { createEncounterRecords, FIELDS } from './encounter-records.js';
 import { objectsOfPlan, rulesOfPlan, type SearchPlan } from './search-plan.js';
-
-/** A slab to search: of the plan that comes along, or of the one that came last. */
-export type SlabQuestion = { readonly slab: number; readonly plan?: SearchPlan };
+import type { ThreadMessage } from './worker-threads.js';
 
 /** What a worker answers for one slab. */
 export type SlabAnswer = {
@@ -25,7 +23,7 @@ async function serve(): Promise<void> {
   const port = parentPort;
   await loadBulkPropagator();
   let search: ((slab: number) => SlabAnswer) | undefined;
-  port.on('message', ({ slab, plan }: SlabQuestion) => {
+  port.on('message', ({ brief: plan, question: slab }: ThreadMessage<SearchPlan, number>) => {
     if (plan !== undefined) search = searchOf(plan);
     if (search === undefined) throw new Error(`slab ${slab} was asked for before any plan came`);
     const answer = search(slab);

@@ -1,6 +1,5 @@
-import type { Writable } from 'node:stream';
 import type { Conjunction } from './conjunction.js';
-import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell, writeCsv } from './csv-text.js';
+import { type CsvColumn, exponentCell, fixedCell, textCell, utcCell } from './csv-text.js';
 import { CAUTION_COLUMN, DOUBTS_COLUMN, OBJECT_COLUMNS, TCA_COLUMN } from './shared-columns.js';
 
 /**
@@ -182,17 +181,3 @@ export const CONJUNCTION_COLUMNS: readonly CsvColumn<Conjunction>[] = [
     cell: (row) => utcCell(row.screenExitMs),
   },
 ];
-
-/**
- * Writes `conjunctions.csv` to `output` and ends it; the ranks count the conjunctions as they come, so
- * they come in their ranked order.
- *
- * @returns the number of conjunctions written
- * @throws what `output` throws, for instance when the disk is full
- */
-export async function writeConjunctionsCsv(
-  output: Writable,
-  conjunctions: Iterable<Conjunction> | AsyncIterable<Conjunction>,
-): Promise<number> {
-  return writeCsv(output, CONJUNCTION_COLUMNS, conjunctions);
-}

@@ -1,5 +1,4 @@
-import type { Writable } from 'node:stream';
-import { type CsvColumn, exponentCell, fixedCell, textCell, writeCsv } from './csv-text.js';
+import { type CsvColumn, exponentCell, fixedCell, textCell } from './csv-text.js';
 import { CAUTION_COLUMN, DESIGNATOR_COLUMNS, TCA_COLUMN } from './shared-columns.js';
 
 /** How the probability of one conjunction changes when all its sigmas are scaled by one factor. */
@@ -37,7 +36,7 @@ export function describeSensitivity(peakScale: number | undefined): string {
 }
 
 /** The columns of `sensitivity.csv`. */
-const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] = [
+export const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] = [
   {
     name: 'rank',
     unit: '',
@@ -84,16 +83,3 @@ const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] = [
   },
   CAUTION_COLUMN,
 ];
-
-/**
- * Writes `sensitivity.csv` to `output` and ends it, the rows in the order given.
- *
- * @returns the number of rows written
- * @throws what `output` throws
- */
-export async function writeSensitivityCsv(
-  output: Writable,
-  rows: Iterable<ConjunctionSensitivity> | AsyncIterable<ConjunctionSensitivity>,
-): Promise<number> {
-  return writeCsv(output, SENSITIVITY_COLUMNS, rows);
-}

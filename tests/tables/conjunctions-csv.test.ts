@@ -1,7 +1,8 @@
 import { describe, expect, test } from 'vitest';
 import { CAUTION } from '../../src/caution.js';
 import type { Conjunction } from '../../src/tables/conjunction.js';
-import { CONJUNCTION_COLUMNS, writeConjunctionsCsv } from '../../src/tables/conjunctions-csv.js';
+import { CONJUNCTION_COLUMNS } from '../../src/tables/conjunctions-csv.js';
+import { writeCsv } from '../../src/tables/csv-text.js';
 import { exampleConjunction, exampleObject } from './example-conjunction.js';
 import { collect, strictCsv } from './strict-csv.js';
 
@@ -16,12 +17,14 @@ const HEADER =
   'collision_probability_foster,pair_probability,screen_entry_utc,screen_exit_utc';
 
 async function records(conjunctions: readonly Conjunction[]): Promise<Record<string, string>[]> {
-  const [header, ...rows] = strictCsv(await collect((output) => writeConjunctionsCsv(output, conjunctions)));
+  const [header, ...rows] = strictCsv(
+    await collect((output) => writeCsv(output, CONJUNCTION_COLUMNS, conjunctions)),
+  );
   return rows.map((row) => Object.fromEntries(header.map((name, i) => [name, row[i]])));
 }
 
 test('the header has the columns in their fixed order', async () => {
-  expect(await collect((output) => writeConjunctionsCsv(output, []))).toBe(`${HEADER}\r\n`);
+  expect(await collect((output) => writeCsv(output, CONJUNCTION_COLUMNS, []))).toBe(`${HEADER}\r\n`);
 });
 
 test('every column says what it means', () => {

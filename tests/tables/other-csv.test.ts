@@ -2,10 +2,11 @@ import { describe, expect, test } from 'vitest';
 import { CAUTION } from '../../src/caution.js';
 import type { UnusedElements } from '../../src/elements/element-set.js';
 import { type CompanionPair, writeCompanionsCsv } from '../../src/tables/companions-csv.js';
+import { writeCsv } from '../../src/tables/csv-text.js';
 import {
   type ConjunctionSensitivity,
   describeSensitivity,
-  writeSensitivityCsv,
+  SENSITIVITY_COLUMNS,
 } from '../../src/tables/sensitivity-csv.js';
 import { writeUnusedElementsCsv } from '../../src/tables/unused-elements-csv.js';
 import { collect, strictCsv } from './strict-csv.js';
@@ -107,47 +108,49 @@ describe('sensitivity.csv', () => {
 
   test('has the figures at three scales, the peak and the direction', async () => {
     const empty = { ...row, probabilityAtHalf: undefined, peakScale: undefined, peakProbability: undefined };
-    expect(strictCsv(await collect((output) => writeSensitivityCsv(output, [row, empty])))).toEqual([
+    expect(strictCsv(await collect((output) => writeCsv(output, SENSITIVITY_COLUMNS, [row, empty])))).toEqual(
       [
-        'rank',
-        'tca_utc',
-        'object1_designator',
-        'object2_designator',
-        'collision_probability_half_sigma',
-        'collision_probability_once_sigma',
-        'collision_probability_twice_sigma',
-        'peak_sigma_scale',
-        'collision_probability_peak',
-        'direction',
-        'caution',
+        [
+          'rank',
+          'tca_utc',
+          'object1_designator',
+          'object2_designator',
+          'collision_probability_half_sigma',
+          'collision_probability_once_sigma',
+          'collision_probability_twice_sigma',
+          'peak_sigma_scale',
+          'collision_probability_peak',
+          'direction',
+          'caution',
+        ],
+        [
+          '3',
+          '2026-12-01T00:00:00.000Z',
+          '79001',
+          '79002',
+          '2.50000E-06',
+          '1.00000E-06',
+          '2.60000E-07',
+          '0.4000',
+          '2.75000E-06',
+          'diluted: better orbits may raise the probability',
+          CAUTION,
+        ],
+        [
+          '3',
+          '2026-12-01T00:00:00.000Z',
+          '79001',
+          '79002',
+          '',
+          '1.00000E-06',
+          '2.60000E-07',
+          '',
+          '',
+          'no figure',
+          CAUTION,
+        ],
       ],
-      [
-        '3',
-        '2026-12-01T00:00:00.000Z',
-        '79001',
-        '79002',
-        '2.50000E-06',
-        '1.00000E-06',
-        '2.60000E-07',
-        '0.4000',
-        '2.75000E-06',
-        'diluted: better orbits may raise the probability',
-        CAUTION,
-      ],
-      [
-        '3',
-        '2026-12-01T00:00:00.000Z',
-        '79001',
-        '79002',
-        '',
-        '1.00000E-06',
-        '2.60000E-07',
-        '',
-        '',
-        'no figure',
-        CAUTION,
-      ],
-    ]);
+    );
   });
 
   test('knows the side of the peak', () => {

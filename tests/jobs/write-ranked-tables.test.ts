@@ -1,0 +1,80 @@
+import { Writable } from 'node:stream';
+import { describe, expect, it } from 'vitest';
+import { createEncounterRecords, extendRecords, FIELD } from '../../src/jobs/encounter-records.js';
+import type { OutputFolder } from '../../src/jobs/output-folder.js';
+import { rankedRecords } from '../../src/jobs/ranked-records.js';
+import { screenedObject } from '../../src/jobs/screened-object.js';
+import { defaultSigmaTable } from '../../src/uncertainty/default-sigma-table.js';
+import { syntheticCatalog } from '../synthetic/catalog.js';
+import { seededRandom } from '../synthetic/random.js';
+import { silentPorts } from './silent-ports.js';
+
+type WriteRankedTables = typeof import('../../src/jobs/write-ranked-tables.js');
+
+const START_MS = Date.UTC(2026, 11, 1);
+
+/** A folder whose files are kept as text. */
+function folderInMemory(): { folder: OutputFolder; files: Map<string, string> } {
+  const files = new Map<string, string>();
+  const stream = (name: string) => {
+    const chunks: Buffer[] = [];
+    return new Writable({
+      write(chunk: Buffer, _encoding, done) {
+        chunks.push(chunk);
+        done();
+      },
+      final(done) {
+        files.set(name, Buffer.concat(chunks).toString());
+        done();
+      },
+    });
+  };
+  return { folder: { stream } as unknown as OutputFolder, files };
+}
+
+/** More encounters than are written in one thread, the figures drawn. */
+function manyEncounters(count: number) {
+  const random = seededRandom(81);
+  const knowledge = { listed: undefined, sigmas: undefined, defaultSigmas: defaultSigmaTable() };
+  const objects = syntheticCatalog({ seed: 82, count: 50, epochMs: START_MS }).map((set) =>
+    screenedObject(set, knowledge),
+  );
+  const records = createEncounterRecords(count, SharedArrayBuffer);
+  for (let k = 0; k < count; k++) {
+    const at = extendRecords(records, 1);
+    for (const place of Object.values(FIELD)) records.data[at + place] = random.between(1, 7000);
+    records.data[at + FIELD.first] = random.integer(25);
+    records.data[at + FIELD.second] = 25 + random.integer(25);
+    records.data[at + FIELD.tcaMs] = START_MS + random.integer(86_400_000);
+    records.data[at + FIELD.probability] = 10 ** random.between(-12, -3);
+    records.data[at + FIELD.method] = 1;
+    records.data[at + FIELD.remarks] = random.integer(16);
+  }
+  return rankedRecords(records, objects);
+}
+
+describe('the ranked tables', () => {
+  it('have the same bytes from one thread and from three', async () => {
+    // Threads run the compiled build.
+    const { writeRankedTables } = (await import(
+      new URL('../../dist/jobs/write-ranked-tables.js', import.meta.url).href
+    )) as WriteRankedTables;
+    const ranked = manyEncounters(41_234);
+    const one = folderInMemory();
+    await writeRankedTables(one.folder, ranked, 1, silentPorts());
+    const three = folderInMemory();
+    const ports = silentPorts();
+    await writeRankedTables(three.folder, ranked, 3, ports);
+    expect(ports.undos.size, 'what a signal would undo').toBe(0);
+    for (const name of ['conjunctions.csv', 'sensitivity.csv']) {
+      const text = one.files.get(name) ?? '';
+      expect(three.files.get(name) === text, name).toBe(true);
+      const ranks = text
+        .split('\r\n')
+        .slice(1, -1)
+        .map((row) => Number(row.slice(0, row.indexOf(','))));
+      expect(ranks.length).toBe(ranked.count);
+      expect(ranks.every((rank, k) => rank === k + 1)).toBe(true);
+    }
+  });
+});
