@@ -1,10 +1,12 @@
+import { lowestRadiusKm } from '../ephemeris/lowest-radius.js';
+import { SLAB_S } from '../ephemeris/node-spacing.js';
 import {
   type CursorRoom,
   createTrackCursor,
   moveCursor,
   type TrackCursor,
 } from '../ephemeris/track-cursor.js';
-import { createTrackMaker, type SlabTracks, type TrackMaker } from '../ephemeris/tracks.js';
+import { createTrackMaker, type IsOut, type SlabTracks, type TrackMaker } from '../ephemeris/tracks.js';
 import { radialAcceleration, type StepBounds, stepBounds, stepToleranceKm } from './bounds.js';
 import { cheapestStepS, LONGEST_STEP_S, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
 import type { ClosestApproach } from './closest-approach.js';
@@ -13,6 +15,7 @@ import { goneFromMs } from './gone-objects.js';
 import { createNearPairs, listsOf, type NearPairs, sweepStep, takeNearPairs } from './near-pairs.js';
 import { refinePairs } from './refine-pairs.js';
 import { type SearchObjects, type SearchRules, slabOf } from './search-problem.js';
+import { primaryBand } from './sieve.js';
 import { type CellRoom, createStepKernel, type StepKernel } from './step-kernel.js';
 
 /** Closest approaches of one slab by a grid of steps. */
@@ -108,9 +111,30 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
         perigeeRadiusKm: perigeeRadiusKm[i],
         goneFromMs: goneMs[i],
       })),
+      outOfReach(objects, rules, order, primaryCount),
     ),
   };
   return searcher;
+}
+
+/** The others that stay above all primaries for a whole slab are out; `undefined` where all objects are primaries. */
+function outOfReach(
+  { recordOf, epochMs }: SearchObjects,
+  { startMs, endMs, missKm }: SearchRules,
+  order: Int32Array,
+  primaryCount: number,
+): IsOut | undefined {
+  if (primaryCount === order.length) return undefined;
+  let ceilingKm = 0;
+  for (const i of order.subarray(0, primaryCount)) {
+    const band = primaryBand(recordOf(i), epochMs[i], startMs, endMs);
+    ceilingKm = Math.max(ceilingKm, (band?.highKm ?? Number.POSITIVE_INFINITY) + missKm);
+  }
+  return (object, slabStartMs) => {
+    if (object < primaryCount) return false;
+    const i = order[object];
+    return lowestRadiusKm(recordOf(i), epochMs[i], slabStartMs, slabStartMs + SLAB_S * 1000) > ceilingKm;
+  };
 }
 
 /** The finest cells are those of the shortest step and of tracks without error. */
@@ -176,7 +200,7 @@ function readySlab(searcher: GridSearcher, tracks: SlabTracks, lengthS: number):
     toS[k] = Math.min(tracks.endS[k], (objects.validToMs[i] - tracks.startMs) / 1000);
   });
   const there = Int32Array.from(order.keys()).filter(
-    (k) => fromS[k] < lengthS && toS[k] > 0 && fromS[k] < toS[k],
+    (k) => tracks.segmentCount[k] > 0 && fromS[k] < lengthS && toS[k] > 0 && fromS[k] < toS[k],
   );
   const primaries = there.filter((k) => k < primaryCount);
   const others = withinHeights(searcher, tracks, primaries, there.subarray(primaries.length));

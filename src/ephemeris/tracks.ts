@@ -51,12 +51,15 @@ export type TrackedObject = {
   readonly goneFromMs?: number;
 };
 
+/** Whether an object stays out of reach of all that matters for a whole slab: no track is laid then. */
+export type IsOut = (object: number, slabStartMs: number) => boolean;
+
 /** The objects' paths through one slab, as chains of segments between SGP4 nodes. */
 export type SlabTracks = {
   readonly startMs: number;
   /** Six doubles a node: km and km/s, TEME. */
   readonly nodes: Float64Array;
-  /** First node of each object; its segments join consecutive nodes. */
+  /** First node of each object; its segments join consecutive nodes, none where no track was laid. */
   readonly firstNode: Int32Array;
   readonly segmentCount: Int32Array;
   readonly segmentS: Float64Array;
@@ -81,11 +84,19 @@ type MutableTracks = { -readonly [K in keyof SlabTracks]: SlabTracks[K] } & {
 
 type Group = { readonly members: Int32Array; readonly segments: number; readonly bulk: BulkNodes };
 
+/** A group whose records the bulk propagator keeps; those that may be out are handed over slab by slab. */
+type LastingGroup = Omit<Group, 'bulk'> & { readonly bulk: BulkNodes | undefined };
+
+/** Groups with more segments hold eccentric orbits: those that can be out of reach for hours. */
+const LEAST_SEGMENTS_OUT = 15;
+
 /**
  * Groups the objects by node spacing and hands their records to the bulk propagator once.
  * `loadBulkPropagator` must have been awaited in this thread.
+ *
+ * @param isOut default: no object ever is
  */
-export function createTrackMaker(objects: readonly TrackedObject[]): TrackMaker {
+export function createTrackMaker(objects: readonly TrackedObject[], isOut?: IsOut): TrackMaker {
   const bySegments = new Map<number, number[]>();
   objects.forEach((object, index) => {
     const segments = segmentsPerSlab(object.eccentricity, object.perigeeRadiusKm);
@@ -93,22 +104,41 @@ export function createTrackMaker(objects: readonly TrackedObject[]): TrackMaker 
     if (members === undefined) bySegments.set(segments, [index]);
     else members.push(index);
   });
-  const groups: Group[] = [...bySegments]
+  const groups: LastingGroup[] = [...bySegments]
     .sort(([a], [b]) => a - b)
     .map(([segments, members]) => ({
       segments,
       members: Int32Array.from(members),
-      bulk: createBulkNodes(
-        members.map((index) => objects[index].record),
-        2 * segments + 1,
-      ),
+      bulk:
+        isOut !== undefined && segments >= LEAST_SEGMENTS_OUT
+          ? undefined
+          : bulkOf(objects, members, segments),
     }));
   let room = new Float64Array(0);
   return (slabStartMs, slabIndex) => {
-    const tracks = makeTracks(objects, groups, slabStartMs, slabIndex, room);
+    const inReach = groups.map(({ segments, members, bulk }) => {
+      if (bulk !== undefined) return { segments, members, bulk };
+      const near = members.filter((object) => !isOut?.(object, slabStartMs));
+      return { segments, members: near, bulk: bulkOf(objects, near, segments) };
+    });
+    const tracks = makeTracks(objects, inReach, slabStartMs, slabIndex, room);
+    inReach.forEach(({ bulk }, k) => {
+      if (groups[k].bulk === undefined) bulk.dispose();
+    });
     room = tracks.nodes;
     return tracks;
   };
+}
+
+function bulkOf(
+  objects: readonly TrackedObject[],
+  members: Int32Array | readonly number[],
+  segments: number,
+): BulkNodes {
+  return createBulkNodes(
+    Array.from(members, (index) => objects[index].record),
+    2 * segments + 1,
+  );
 }
 
 function makeTracks(
@@ -155,10 +185,7 @@ function makeTracks(
   const finerGroups = [...retried].map(([segments, members]) => ({
     segments,
     members: Int32Array.from(members),
-    bulk: createBulkNodes(
-      members.map((object) => objects[object].record),
-      2 * segments + 1,
-    ),
+    bulk: bulkOf(objects, members, segments),
   }));
   const finerCount = finerGroups.reduce(
     (sum, { members, segments }) => sum + members.length * (segments + 1),
