@@ -71,8 +71,6 @@ export type SlabTracks = {
   readonly toleranceKm: Float64Array;
   /** Largest distance measured between a segment and SGP4, of the objects that were not stepped. */
   readonly worstDefectKm: number;
-  /** Number of objects that were stepped with SGP4 one by one. */
-  readonly watchedCount: number;
 };
 
 /** Makes the tracks of a slab, which the next call overwrites; objects keep the order in which they were given. */
@@ -160,7 +158,6 @@ function makeTracks(
     endS: new Float64Array(count).fill(SLAB_S),
     toleranceKm: Float64Array.from(objects, ({ eccentricity }) => trackToleranceKm(eccentricity)),
     worstDefectKm: 0,
-    watchedCount: 0,
   };
   const watched: number[] = [];
   const retried = new Map<number, number[]>();
@@ -282,7 +279,6 @@ function layWatchedTracks(
   tracks: MutableTracks,
   firstNode: number,
 ): void {
-  tracks.watchedCount = watched.length;
   if (watched.length === 0) return;
   const times = WATCHED_STEPS + 1;
   const bulk = createBulkNodes(

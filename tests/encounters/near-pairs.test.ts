@@ -119,7 +119,6 @@ function tracksOf(middles: readonly (readonly number[])[], lengthS: number): Sla
     endS: new Float64Array(count).fill(lengthS),
     toleranceKm: new Float64Array(count).fill(0.01),
     worstDefectKm: 0,
-    watchedCount: 0,
   };
 }
 
