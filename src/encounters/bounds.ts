@@ -88,6 +88,39 @@ export function lineReachKm(halfStepS: number, reachKm: number, tide: number, sp
   return reachKm + tide * (0.5 * reachKm * t2 + (speed * t2 * halfStepS) / 3);
 }
 
+/**
+ * Bound 4: whether two objects can be within reach of each other at some time of a step.
+ *
+ * @param states x, y, z (km) and vx, vy, vz (km/s) in its middle, of one from `a` on, of the other from `b` on
+ * @param reachKm D' of the pair
+ * @param tide g at the lower of the two
+ */
+export function passesNear(
+  states: Float32Array | Float64Array,
+  a: number,
+  b: number,
+  halfStepS: number,
+  reachKm: number,
+  tide: number,
+): boolean {
+  const x = states[b] - states[a];
+  const y = states[b + 1] - states[a + 1];
+  const z = states[b + 2] - states[a + 2];
+  const vx = states[b + 3] - states[a + 3];
+  const vy = states[b + 4] - states[a + 4];
+  const vz = states[b + 5] - states[a + 5];
+  const distance2 = x * x + y * y + z * z;
+  const along = Math.abs(x * vx + y * vy + z * vz);
+  const speed2 = vx * vx + vy * vy + vz * vz;
+  const inside = along <= speed2 * halfStepS;
+  // Squared distance of the line times speed2 where the nearest point lies inside the step.
+  const line = inside
+    ? distance2 * speed2 - along * along
+    : distance2 + halfStepS * (halfStepS * speed2 - 2 * along);
+  const reach = lineReachKm(halfStepS, reachKm, tide, Math.sqrt(speed2));
+  return line <= reach * reach * (inside ? speed2 : 1);
+}
+
 /** A: the largest |r''| of an orbit, km/s^2. */
 export function radialAcceleration(eccentricity: number, perigeeRadiusKm: number): number {
   const lowest = Math.max(EARTH_RADIUS_KM, perigeeRadiusKm - 25);

@@ -1,5 +1,5 @@
 import { type MeanOrbits, stateOnMeanOrbit, unevenKmPerS, unevenKmPerS2 } from '../ephemeris/mean-orbits.js';
-import { lineReachKm, tidePerS2 } from './bounds.js';
+import { passesNear, tidePerS2 } from './bounds.js';
 
 /**
  * When two objects can meet, from their mean orbits alone.
@@ -248,29 +248,6 @@ function cutIntoPieces(
     const middleS = fromS + (2 * k + 1) * halfS;
     stateOnMeanOrbit(orbits, a, middleS, states, 0);
     stateOnMeanOrbit(orbits, b, middleS, states, 6);
-    if (passesNear(states, halfS, reachKm, tide)) windows.push({ middleS, halfS });
+    if (passesNear(states, 0, 6, halfS, reachKm, tide)) windows.push({ middleS, halfS });
   }
-}
-
-/**
- * Bound 4 of `bounds.ts`: whether two objects can be within reach of each other at some time of a window.
- *
- * @param pair the two states in its middle, km and km/s
- */
-export function passesNear(pair: Float64Array, halfS: number, reachKm: number, tide: number): boolean {
-  const x = pair[6] - pair[0];
-  const y = pair[7] - pair[1];
-  const z = pair[8] - pair[2];
-  const vx = pair[9] - pair[3];
-  const vy = pair[10] - pair[4];
-  const vz = pair[11] - pair[5];
-  const distance2 = x * x + y * y + z * z;
-  const along = Math.abs(x * vx + y * vy + z * vz);
-  const speed2 = vx * vx + vy * vy + vz * vz;
-  const isInside = along <= speed2 * halfS;
-  const line2 = isInside
-    ? distance2 - (along * along) / speed2
-    : distance2 + halfS * (halfS * speed2 - 2 * along);
-  const reach = lineReachKm(halfS, reachKm, tide, Math.sqrt(speed2));
-  return !(line2 > reach * reach);
 }

@@ -1,5 +1,5 @@
 import { EARTH_RADIUS_KM } from '../ephemeris/gravity.js';
-import { FASTEST_RELATIVE_KM_PER_S, lineReachKm, type StepBounds, tidePerS2 } from './bounds.js';
+import { FASTEST_RELATIVE_KM_PER_S, lineReachKm, passesNear, type StepBounds, tidePerS2 } from './bounds.js';
 import { type CellLists, cellsWithin, type DirectionCells, filterLists } from './direction-cells.js';
 import { shellFloorKm } from './shell.js';
 import {
@@ -95,24 +95,9 @@ export function takeNearPairs(
     const b = handed[n + 1];
     const i = RECORD_SIZE * a;
     const k = RECORD_SIZE * b;
-    const x = records[k] - records[i];
-    const y = records[k + 1] - records[i + 1];
-    const z = records[k + 2] - records[i + 2];
-    const vx = records[k + 3] - records[i + 3];
-    const vy = records[k + 4] - records[i + 4];
-    const vz = records[k + 5] - records[i + 5];
-    const distance2 = x * x + y * y + z * z;
-    const along = Math.abs(x * vx + y * vy + z * vz);
-    const speed2 = vx * vx + vy * vy + vz * vz;
-    const inside = along <= speed2 * halfStepS;
-    // Squared distance of the line times speed2 where the nearest point lies inside the step.
-    const line = inside
-      ? distance2 * speed2 - along * along
-      : distance2 + halfStepS * (halfStepS * speed2 - 2 * along);
     const tide = tidePerS2(shellFloorKm(Math.min(records[i + RECORD_LOW], records[k + RECORD_LOW])));
     const reachKm = baseReachKm + toleranceKm[a] + toleranceKm[b];
-    const reach = lineReachKm(halfStepS, reachKm, tide, Math.sqrt(speed2));
-    if (line <= reach * reach * (inside ? speed2 : 1)) add(pairs, Math.min(a, b), Math.max(a, b));
+    if (passesNear(records, i, k, halfStepS, reachKm, tide)) add(pairs, Math.min(a, b), Math.max(a, b));
   }
 }
 

@@ -3,7 +3,7 @@ import { createMeanOrbits, layMeanOrbit, type MeanOrbits } from '../ephemeris/me
 import { SLAB_S } from '../ephemeris/node-spacing.js';
 import { hasSecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
 import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
-import { farthestInStepKm, isConvex, tidePerS2 } from './bounds.js';
+import { farthestInStepKm, isConvex, passesNear, tidePerS2 } from './bounds.js';
 import type { ClosestApproach } from './closest-approach.js';
 import {
   canMeet,
@@ -13,7 +13,6 @@ import {
   type MeetingWindow,
   meetingWindows,
   type OrbitFrames,
-  passesNear,
 } from './meeting-windows.js';
 import { velocityDefectKmPerS } from './refine.js';
 import {
@@ -182,7 +181,7 @@ function refineWindow(
   );
   // Over half a window an orbit with e up to 0.1 sinks by less.
   const tide = tidePerS2(lowestKm - halfS);
-  if (!passesNear(states, halfS, reachKm, tide)) return false;
+  if (!passesNear(states, 0, 6, halfS, reachKm, tide)) return false;
   const farthestKm = farthestInStepKm(halfS, reachKm, tide, speed);
   if (isConvex(halfS, farthestKm, tide, speed - defectKmPerS)) {
     const nearestS = -(x * vx + y * vy + z * vz) / (speed * speed);
