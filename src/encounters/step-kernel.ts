@@ -51,6 +51,8 @@ export type StepKernel = {
   readonly marginKm: Float64Array;
   /** `RECORD_SIZE` numbers an object, in single precision: what that rounds away is in eps of `bounds.ts`. */
   readonly records: Float32Array;
+  /** By object, after `evaluate`: kind times the number of cells, plus its cell; -1 where it is not there. */
+  readonly groups: Int32Array;
   /** Objects that are evaluated; as many as `evaluate` is told. */
   readonly candidates: Int32Array;
   /** Takes over cells of directions and the lists of cells that sweeps go along. */
@@ -143,6 +145,7 @@ export function createStepKernel(
     curvature: doubles('curvature', objectCount),
     marginKm: doubles('marginKm', objectCount),
     records: new Float32Array(buffer, places.records, RECORD_SIZE * objectCount),
+    groups: integers('groups', objectCount),
     candidates: integers('candidates', objectCount),
     layCells: (cells, cellLists) => {
       cellCount = cells.count;

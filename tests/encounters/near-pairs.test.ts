@@ -321,6 +321,25 @@ describe('the kernel', () => {
       moveCursor(cursor, k, 100);
     }
     kernel.evaluate(count, 100, halfStepS);
+    const otherwise = states.filter((_, k) => {
+      const [x, y, z] = kernel.records.subarray(RECORD_SIZE * k);
+      const radiusKm = Math.sqrt(x * x + y * y + z * z);
+      return kernel.groups[k] !== FLAT * cells.count + cellOf(cells, x, y, z / radiusKm);
+    });
+    expect(otherwise, 'in other cells than those of directionCells').toEqual([]);
+    const shells = states.filter((_, k) => {
+      const [x, y, z, vx, vy, vz, low, high] = kernel.records.subarray(RECORD_SIZE * k);
+      const radiusKm = Math.sqrt(x * x + y * y + z * z);
+      const swingKm = (Math.abs(x * vx + y * vy + z * vz) / radiusKm) * halfStepS + 20;
+      // A hundredth of a kilometer for single precision.
+      return !(
+        low >= shellOf(radiusKm - swingKm - 0.01) &&
+        low <= shellOf(radiusKm - swingKm + 0.01) &&
+        high >= shellOf(radiusKm + swingKm - 0.01) &&
+        high <= shellOf(radiusKm + swingKm + 0.01)
+      );
+    });
+    expect(shells, 'in other shells').toEqual([]);
     kernel.sweep(FLAT, FLAT, 1, true, reachKm);
     expect(calls).toBeGreaterThan(1);
     expect([...times.values()].every((each) => each === 1)).toBe(true);
