@@ -36,19 +36,15 @@ export function splitSearch(objects: SearchObjects, rules: SearchRules): SplitSe
   const byPairs = hasMeanOrbit(objects, rules);
   const primaries = all.subarray(0, primaryCount);
   const others = all.subarray(primaryCount);
-  const isRegular = (object: number) => byPairs[object] === 1;
-  const irregular = (object: number) => byPairs[object] === 0;
-  const partners = rules.withinPrimaries ? all : others;
+  const hasOrbit = (object: number) => byPairs[object] === 1;
+  const hasNone = (object: number) => byPairs[object] === 0;
+  const stepped = primaries.filter(hasNone);
+  const partners = (rules.withinPrimaries ? all : others).filter(hasOrbit);
   return {
     byPairs,
     onGrids: [
-      partOf(objects, { ...rules, withinPrimaries: false }, primaries, others.filter(irregular)),
-      partOf(
-        objects,
-        rules,
-        primaries.filter(irregular),
-        withinReach(objects, rules, primaries.filter(irregular), partners.filter(isRegular)),
-      ),
+      partOf(objects, { ...rules, withinPrimaries: false }, primaries, others.filter(hasNone)),
+      partOf(objects, rules, stepped, withinReach(objects, rules, stepped, partners)),
     ].flatMap((part) => (part === undefined ? [] : [part])),
   };
 }
