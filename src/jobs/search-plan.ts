@@ -1,5 +1,5 @@
 import type { SatRec } from 'satellite.js';
-import { EARTH_RADIUS_KM, orbitOf } from '../elements/orbit.js';
+import { EARTH_RADIUS_KM } from '../elements/orbit.js';
 import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
 import type { SearchObjects, SearchRules } from '../encounters/search-problem.js';
 import { enclosingRadiusKm, type ScreeningVolume } from '../encounters/volume.js';
@@ -65,7 +65,7 @@ export function searchPlanOf(
         set.bstar,
         object.validFromMs,
         object.validToMs,
-        orbitOf(set, record).perigeeHeightKm + EARTH_RADIUS_KM,
+        object.orbit.perigeeHeightKm + EARTH_RADIUS_KM,
       ],
       PLAN_FIELDS * i,
     );

@@ -26,18 +26,15 @@ export async function writeRankedTables(
   workers: number,
   ports: Pick<JobPorts, 'onStop'>,
 ): Promise<void> {
-  const source: TableSource = {
-    records: ranked.records,
-    order: ranked.order,
-    objects: ranked.objects.map(shownObject),
-  };
-  if (workers < 2 || ranked.count < LEAST_ROWS_FOR_THREADS) {
-    await writeBoth(folder, ranked.count, 0, (range) => tableText(source, range));
+  const { records, order, objects, count } = ranked;
+  if (workers < 2 || count < LEAST_ROWS_FOR_THREADS) {
+    await writeBoth(folder, count, 0, (range) => tableText(ranked, range));
     return;
   }
+  const source: TableSource = { records, order, objects: objects.map(shownObject) };
   const script = new URL('./table-worker.js', import.meta.url);
   await withWorkerThreads<TableSource, RowRange, string, void>(script, workers, ports, ({ ask }) =>
-    writeBoth(folder, ranked.count, AHEAD_PER_THREAD * workers, (range) => ask(source, range)),
+    writeBoth(folder, count, AHEAD_PER_THREAD * workers, (range) => ask(source, range)),
   );
 }
 

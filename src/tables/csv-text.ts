@@ -110,25 +110,13 @@ export async function writeCsv<Row>(
   rows: Iterable<Row> | AsyncIterable<Row>,
 ): Promise<number> {
   let count = 0;
-  let chunk = csvHeader(columns);
-  const take = (row: Row): string | undefined => {
-    chunk += csvRow(columns, row, ++count);
-    if (chunk.length < CHUNK_LENGTH) return undefined;
-    const full = chunk;
-    chunk = '';
-    return full;
-  };
   async function* chunks(): AsyncGenerator<string> {
-    // Rows that are there need not be waited for one by one.
-    if (Symbol.iterator in rows) {
-      for (const row of rows) {
-        const full = take(row);
-        if (full !== undefined) yield full;
-      }
-    } else {
-      for await (const row of rows) {
-        const full = take(row);
-        if (full !== undefined) yield full;
+    let chunk = csvHeader(columns);
+    for await (const row of rows) {
+      chunk += csvRow(columns, row, ++count);
+      if (chunk.length >= CHUNK_LENGTH) {
+        yield chunk;
+        chunk = '';
       }
     }
     yield chunk;
