@@ -1,4 +1,4 @@
-import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
+import { recordStateAt } from '../ephemeris/record-states.js';
 import { type RefinedObject, relativeStateAt, slowTcas } from './refine.js';
 import type { SearchObjects, SearchRules } from './search-problem.js';
 
@@ -54,7 +54,7 @@ function closePairsAt(
   const alive: number[] = [];
   for (let i = 0; i < objects.count; i++) {
     if (objects.validFromMs[i] > timeMs || objects.validToMs[i] < rules.endMs) continue;
-    if (sgp4StateAt(objects.recordOf(i), objects.epochMs[i], timeMs, states, 6 * i)) alive.push(i);
+    if (recordStateAt(objects.records, i, timeMs, states, 6 * i)) alive.push(i);
   }
   alive.sort((a, b) => states[6 * a] - states[6 * b] || a - b);
   const pairs: [number, number][] = [];
@@ -89,7 +89,7 @@ function followPair(
   objects: SearchObjects,
   { startMs, endMs }: SearchRules,
 ): Companions | undefined {
-  const side = (index: number) => ({ record: objects.recordOf(index), epochMs: objects.epochMs[index] });
+  const side = (place: number) => ({ records: objects.records, place });
   const followedToMs = startMs + Math.max(endMs - startMs, LEAST_FOLLOWED_MS);
   const together = flightTogether(
     side(first),

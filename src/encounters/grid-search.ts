@@ -11,7 +11,7 @@ import { radialAcceleration, type StepBounds, stepBounds, stepToleranceKm } from
 import { cheapestStepS, LONGEST_STEP_S, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
 import type { ClosestApproach } from './closest-approach.js';
 import { type CellLists, type DirectionCells, directionCells } from './direction-cells.js';
-import { goneFromMs } from './gone-objects.js';
+import { goneTimes } from './gone-objects.js';
 import { createNearPairs, listsOf, type NearPairs, sweepStep, takeNearPairs } from './near-pairs.js';
 import { refinePairs } from './refine-pairs.js';
 import { type SearchObjects, type SearchRules, slabOf } from './search-problem.js';
@@ -69,11 +69,11 @@ type StepPlan = {
   readonly toleranceKm: Float64Array;
 };
 
-/** `loadBulkPropagator` must have been awaited in this thread. */
+/** `loadSgp4` must have been awaited in this thread. */
 export function createGridSearcher(objects: SearchObjects, rules: SearchRules): GridSearcher {
-  const { recordOf, epochMs, eccentricity, perigeeRadiusKm } = objects;
+  const { eccentricity, perigeeRadiusKm } = objects;
   const axisKm = perigeeRadiusKm.map((radiusKm, i) => radiusKm / (1 - eccentricity[i]));
-  const goneMs = epochMs.map((epoch, i) => goneFromMs(recordOf(i), epoch, rules.startMs, rules.endMs));
+  const goneMs = goneTimes(objects, rules.startMs, rules.endMs);
   const indices = Int32Array.from(goneMs.keys());
   const order = indices.filter((i) => goneMs[i] > rules.startMs);
   const count = order.length;
@@ -104,9 +104,9 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
     cellsOf: new Map(),
     plan: { bounds: stepBounds(rules.missKm, SHORTEST_STEP_S / 2, 0), toleranceKm: new Float64Array(0) },
     makeTracks: createTrackMaker(
+      objects.records,
       Array.from(order, (i) => ({
-        record: recordOf(i),
-        epochMs: epochMs[i],
+        place: i,
         eccentricity: eccentricity[i],
         perigeeRadiusKm: perigeeRadiusKm[i],
         goneFromMs: goneMs[i],

@@ -1,8 +1,8 @@
 import { EARTH_RADIUS_KM } from '../ephemeris/gravity.js';
 import { createMeanOrbits, layMeanOrbit, type MeanOrbits } from '../ephemeris/mean-orbits.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
+import { recordStateAt } from '../ephemeris/record-states.js';
 import { hasSecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
-import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 import { farthestInStepKm, isConvex, passesNear, tidePerS2 } from './bounds.js';
 import type { ClosestApproach } from './closest-approach.js';
 import {
@@ -168,8 +168,8 @@ function refineWindow(
   const object1 = refinedObject(objects, pair.first);
   const object2 = refinedObject(objects, pair.second);
   const hasStates =
-    sgp4StateAt(object1.record, object1.epochMs, middleMs, states, 0) &&
-    sgp4StateAt(object2.record, object2.epochMs, middleMs, states, 6);
+    recordStateAt(objects.records, pair.first, middleMs, states, 0) &&
+    recordStateAt(objects.records, pair.second, middleMs, states, 6);
   if (!hasStates) throw new Error(`objects ${pair.first} and ${pair.second}: SGP4 fails on a mean orbit`);
   const defectKmPerS = velocityDefectKmPerS(object1, object2);
   const reachKm = rules.missKm + SLACK_KM + defectKmPerS * halfS;

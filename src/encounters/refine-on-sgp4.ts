@@ -1,7 +1,6 @@
 import type { ClosestApproach } from './closest-approach.js';
 import {
   createRecentStates,
-  type RecentStates,
   type RefinedObject,
   refineFastTca,
   relativeStateAt,
@@ -18,8 +17,8 @@ const EDGE_MS = 0.01;
 export type Sgp4Refiner = {
   readonly objects: SearchObjects;
   readonly rules: SearchRules;
-  /** Latest states of the objects in slow pairs. */
-  readonly recent: Map<number, RecentStates>;
+  /** The objects of slow pairs with their latest states. */
+  readonly recent: Map<number, RefinedObject>;
 };
 
 /** Object indices, `first` < `second`. */
@@ -64,18 +63,18 @@ export function refineSlowPair(
   }
 }
 
-export function refinedObject({ recordOf, epochMs }: SearchObjects, object: number): RefinedObject {
-  return { record: recordOf(object), epochMs: epochMs[object] };
+export function refinedObject({ records }: SearchObjects, object: number): RefinedObject {
+  return { records, place: object };
 }
 
 /** Slow pairs are asked for at the same times, and one object is part of many in a train. */
 function objectWithRecentStates({ objects, recent }: Sgp4Refiner, object: number): RefinedObject {
-  let states = recent.get(object);
-  if (states === undefined) {
-    states = createRecentStates();
-    recent.set(object, states);
+  let known = recent.get(object);
+  if (known === undefined) {
+    known = { ...refinedObject(objects, object), recent: createRecentStates() };
+    recent.set(object, known);
   }
-  return { ...refinedObject(objects, object), recent: states };
+  return known;
 }
 
 /** Takes a closest approach that lies in the stretch, in the window and in the time of both objects. */

@@ -1,10 +1,11 @@
-import type { SatRec } from 'satellite.js';
-import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
+import { recordStateAt } from '../ephemeris/record-states.js';
+import type { Sgp4Records } from '../ephemeris/sgp4-records.js';
 
 /** One side of a pair for work on true SGP4 states. */
 export type RefinedObject = {
-  readonly record: SatRec;
-  readonly epochMs: number;
+  readonly records: Sgp4Records;
+  /** Of its record among the records. */
+  readonly place: number;
   /** Its latest states, where many pairs ask for it at the same times. */
   readonly recent?: RecentStates;
 };
@@ -18,18 +19,18 @@ export function createRecentStates(): RecentStates {
   return { times: new Float64Array(RECENT).fill(Number.NaN), states: new Float64Array(6 * RECENT), next: 0 };
 }
 
-function stateAt({ record, epochMs, recent }: RefinedObject, timeMs: number, out: Float64Array): boolean {
-  if (recent === undefined) return sgp4StateAt(record, epochMs, timeMs, out);
+function stateAt({ records, place, recent }: RefinedObject, timeMs: number, out: Float64Array): boolean {
+  if (recent === undefined) return recordStateAt(records, place, timeMs, out);
   const { times, states } = recent;
-  let place = 0;
-  while (place < RECENT && times[place] !== timeMs) place++;
-  if (place === RECENT) {
-    place = recent.next;
-    recent.next = (place + 1) % RECENT;
-    times[place] = timeMs;
-    if (!sgp4StateAt(record, epochMs, timeMs, states, 6 * place)) states[6 * place] = Number.NaN;
+  let at = 0;
+  while (at < RECENT && times[at] !== timeMs) at++;
+  if (at === RECENT) {
+    at = recent.next;
+    recent.next = (at + 1) % RECENT;
+    times[at] = timeMs;
+    if (!recordStateAt(records, place, timeMs, states, 6 * at)) states[6 * at] = Number.NaN;
   }
-  for (let k = 0; k < 6; k++) out[k] = states[6 * place + k];
+  for (let k = 0; k < 6; k++) out[k] = states[6 * at + k];
   return !Number.isNaN(out[0]);
 }
 
@@ -56,7 +57,11 @@ const relative = new Float64Array(6);
  * near-circular orbits, up to some m/s in eccentric deep-space ones.
  */
 export function velocityDefectKmPerS(object1: RefinedObject, object2: RefinedObject): number {
-  return object1.record.ecco < 0.01 && object2.record.ecco < 0.01 ? 1e-4 : 0.02;
+  return eccentricityOf(object1) < 0.01 && eccentricityOf(object2) < 0.01 ? 1e-4 : 0.02;
+}
+
+function eccentricityOf({ records, place }: RefinedObject): number {
+  return records.values[records.size * place + records.at.eccentricity];
 }
 
 /** Relative state, object 2 minus object 1; false where SGP4 gives no state for one of them. */

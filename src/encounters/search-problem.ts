@@ -1,8 +1,6 @@
 import type { SatRec } from 'satellite.js';
-import { EARTH_RADIUS_KM, orbitOf } from '../elements/orbit.js';
-import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
-import { laySecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
+import type { Sgp4Records } from '../ephemeris/sgp4-records.js';
 
 /**
  * What is screened against what. The first `primaryCount` objects are the primaries (the fleet, a launch
@@ -11,7 +9,9 @@ import { laySecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
 export type SearchObjects = {
   readonly count: number;
   readonly primaryCount: number;
-  /** SGP4's record, which may be made when it is first asked for. */
+  /** Their SGP4 records, in the same order. */
+  readonly records: Sgp4Records;
+  /** SGP4's record for mean elements, which may be made when it is first asked for. */
   readonly recordOf: (object: number) => SatRec;
   /** `TERMS_SIZE` numbers an object, as `laySecularTerms` lays them. */
   readonly secularTerms: Float64Array;
@@ -58,34 +58,4 @@ export function slabOf(
 /** One number for an unordered pair of object indices. */
 export function pairKey(a: number, b: number, count: number): number {
   return a < b ? a * count + b : b * count + a;
-}
-
-/** Mean elements with the time in which they stand for their object. */
-export type SearchedSet = MeanElements & { readonly validFromMs?: number; readonly validToMs?: number };
-
-/**
- * Readies element sets for a search, SGP4 records included.
- *
- * @param sets primaries first, all of them accepted by SGP4
- * @param records their SGP4 records, where they are there already
- */
-export function searchObjectsOf(
-  sets: readonly SearchedSet[],
-  primaryCount: number,
-  records: readonly SatRec[] = sets.map(sgp4RecordOf),
-): SearchObjects {
-  const orbits = sets.map((set, i) => orbitOf(set, records[i]));
-  const secularTerms = new Float64Array(TERMS_SIZE * sets.length);
-  for (const [i, record] of records.entries()) laySecularTerms(record, secularTerms, TERMS_SIZE * i);
-  return {
-    count: sets.length,
-    primaryCount,
-    recordOf: (object) => records[object],
-    secularTerms,
-    epochMs: Float64Array.from(sets, (set) => set.epochMs),
-    eccentricity: Float64Array.from(sets, (set) => set.eccentricity),
-    perigeeRadiusKm: Float64Array.from(orbits, (orbit) => orbit.perigeeHeightKm + EARTH_RADIUS_KM),
-    validFromMs: Float64Array.from(sets, (set) => set.validFromMs ?? Number.NEGATIVE_INFINITY),
-    validToMs: Float64Array.from(sets, (set) => set.validToMs ?? Number.POSITIVE_INFINITY),
-  };
 }

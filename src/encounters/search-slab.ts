@@ -22,7 +22,7 @@ export type SlabSearcher = {
   readonly pairs: PairSearcher | undefined;
 };
 
-/** `loadBulkPropagator` must have been awaited in this thread. */
+/** `loadSgp4` must have been awaited in this thread. */
 export function createSlabSearcher(objects: SearchObjects, rules: SearchRules): SlabSearcher {
   const { byPairs, onGrids } = splitSearch(objects, rules);
   return {

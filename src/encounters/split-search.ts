@@ -1,4 +1,5 @@
 import { TERMS_SIZE } from '../ephemeris/secular-elements.js';
+import { pickRecords } from '../ephemeris/sgp4-records.js';
 import { hasMeanOrbit } from './pair-search.js';
 import { pairKey, type SearchObjects, type SearchRules } from './search-problem.js';
 import { nearEarthBand, primaryBand, sieve } from './sieve.js';
@@ -95,6 +96,7 @@ function partOf(
     objects: {
       count: indices.length,
       primaryCount: primaries.length,
+      records: pickRecords(objects.records, indices),
       recordOf: (place) => objects.recordOf(indices[place]),
       secularTerms: termsOf(objects, indices),
       epochMs: pick(objects.epochMs),

@@ -1,4 +1,4 @@
-import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
+import { recordStateAt } from '../ephemeris/record-states.js';
 import type { Vector3 } from '../vector.js';
 import type { RefinedObject } from './refine.js';
 
@@ -77,8 +77,8 @@ function depth(
   volume: ScreeningVolume,
 ): { depth: number; distanceKm: number } {
   if (
-    !sgp4StateAt(object1.record, object1.epochMs, timeMs, states, 0) ||
-    !sgp4StateAt(object2.record, object2.epochMs, timeMs, states, 6)
+    !recordStateAt(object1.records, object1.place, timeMs, states, 0) ||
+    !recordStateAt(object2.records, object2.place, timeMs, states, 6)
   ) {
     return { depth: Number.NaN, distanceKm: Number.NaN };
   }

@@ -1,18 +1,14 @@
-import { BulkPropagator, createSingleThreadRuntime, EciBaseCalculator, type SatRec } from 'satellite.js';
-import { setRecords } from './bulk-records.js';
+import { sgp4Module, writeRun } from './sgp4-module.js';
+import type { Sgp4Records } from './sgp4-records.js';
 
-/**
- * SGP4 states of many objects at common times by the WebAssembly propagator of satellite.js. It takes
- * times as a Julian date in one double, which moves a state along its path by up to 0.4 m: good for
- * segments of a search that allows for it, not for a closest approach.
- */
+/** SGP4 states of many objects at common times. */
 export type BulkNodes = {
   readonly objectCount: number;
   /** Gives the memory back. */
   readonly dispose: () => void;
   /**
-   * @param timesMs the common times, whole milliseconds of UTC since 1970-01-01
-   * @returns views that the next call overwrites: for object i and time k, `position` and `velocity` hold
+   * @param timesMs the common times, milliseconds of UTC since 1970-01-01
+   * @returns views that the next call of any overwrites: for object i and time k, `position` and `velocity` hold
    * three components at 3 (i x times + k), km and km/s, TEME; `error` is 0 where there is a state
    */
   readonly statesAt: (timesMs: readonly number[]) => {
@@ -22,34 +18,60 @@ export type BulkNodes = {
   };
 };
 
-let runtime: Awaited<ReturnType<typeof createSingleThreadRuntime>> | undefined;
-
-/** Loads the WebAssembly module once for this thread. */
-export async function loadBulkPropagator(): Promise<void> {
-  runtime ??= await createSingleThreadRuntime();
-}
+const MS_PER_DAY = 86_400_000;
 
 /**
- * Takes over the records of a group of objects. `loadBulkPropagator` must have been awaited.
+ * Takes over the records of a group of objects. `loadSgp4` must have been awaited.
  *
+ * @param members places among the records
  * @param mostTimes largest number of common times asked for in one call
  */
-export function createBulkNodes(records: readonly SatRec[], mostTimes: number): BulkNodes {
-  if (runtime === undefined) throw new Error('loadBulkPropagator() has not been awaited');
-  const propagator = new BulkPropagator({
-    runtime,
-    calculators: [new EciBaseCalculator()],
-    satRecsCount: records.length,
-    datesCount: mostTimes,
+export function createBulkNodes(
+  records: Sgp4Records,
+  members: Int32Array | readonly number[],
+  mostTimes: number,
+): BulkNodes {
+  const { module, runBytes } = sgp4Module();
+  const { size, values, originMs } = records;
+  const count = members.length;
+  const most = count * mostTimes;
+  const run = module._calloc_one(runBytes);
+  const held = module._malloc(8 * Math.max(1, size * count));
+  const days = module._malloc(8 * mostTimes);
+  const output = module._malloc(Math.max(8, 49 * most));
+  members.forEach((place, k) => {
+    module.HEAPF64.set(values.subarray(size * place, size * (place + 1)), held / 8 + size * k);
   });
-  setRecords(propagator, runtime.module, records);
   return {
-    objectCount: records.length,
-    dispose: () => propagator.dispose(),
+    objectCount: count,
+    dispose: () => {
+      for (const place of [run, held, days, output]) module._free(place);
+    },
     statesAt: (timesMs) => {
-      propagator.setDates(timesMs.map((timeMs) => new Date(timeMs)));
-      propagator.run({ eci: { communityDecayCheckEnabled: true } });
-      return propagator.getRawOutput().eci;
+      if (timesMs.length > mostTimes) throw new RangeError(`${timesMs.length} times, expected ${mostTimes}`);
+      const heap = module.HEAPF64;
+      timesMs.forEach((timeMs, k) => {
+        heap[days / 8 + k] = (timeMs - originMs) / MS_PER_DAY;
+      });
+      const states = count * timesMs.length;
+      const velocities = output + 24 * states;
+      const errors = velocities + 24 * states;
+      writeRun(run, {
+        records: held,
+        recordCount: count,
+        days,
+        dayCount: timesMs.length,
+        positions: output,
+        velocities,
+        errors,
+      });
+      module._compute(run);
+      const { buffer } = module.HEAP8;
+      return {
+        position: new Float64Array(buffer, output, 3 * states),
+        velocity: new Float64Array(buffer, velocities, 3 * states),
+        error: new Int8Array(buffer, errors, states),
+      };
     },
   };
 }

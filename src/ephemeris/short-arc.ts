@@ -1,5 +1,5 @@
-import type { SatRec } from 'satellite.js';
-import { sgp4StateAt } from './sgp4-state.js';
+import { recordStateAt } from './record-states.js';
+import type { Sgp4Records } from './sgp4-records.js';
 import type { OrbitState } from './state.js';
 
 /**
@@ -25,24 +25,25 @@ const WEIGHTS = Float64Array.from(
  * @returns the state at a time, or `undefined` where SGP4 gives none in that piece
  */
 export function createShortArc(
-  record: SatRec,
-  epochMs: number,
+  records: Sgp4Records,
+  place: number,
   centerMs: number,
 ): (timeMs: number) => OrbitState | undefined {
   const pieces = new Map<number, Float64Array | undefined>();
   return (timeMs) => {
     const number = Math.round((timeMs - centerMs) / PIECE_MS);
     const middleMs = centerMs + number * PIECE_MS;
-    if (!pieces.has(number)) pieces.set(number, pieceAround(record, epochMs, middleMs));
+    if (!pieces.has(number)) pieces.set(number, pieceAround(records, place, middleMs));
     const states = pieces.get(number);
     return states === undefined ? undefined : interpolated(states, (2 * (timeMs - middleMs)) / PIECE_MS);
   };
 }
 
-function pieceAround(record: SatRec, epochMs: number, middleMs: number): Float64Array | undefined {
+function pieceAround(records: Sgp4Records, place: number, middleMs: number): Float64Array | undefined {
   const states = new Float64Array(6 * NODES);
   for (let k = 0; k < NODES; k++) {
-    if (!sgp4StateAt(record, epochMs, middleMs + (POINTS[k] * PIECE_MS) / 2, states, 6 * k)) return undefined;
+    const timeMs = middleMs + (POINTS[k] * PIECE_MS) / 2;
+    if (!recordStateAt(records, place, timeMs, states, 6 * k)) return undefined;
   }
   return states;
 }

@@ -1,9 +1,10 @@
-import type { SatRec } from 'satellite.js';
 import { type BulkNodes, createBulkNodes } from './bulk-nodes.js';
-import { EARTH_MU_KM3_PER_S2, EARTH_RADIUS_KM, gravityAlong } from './gravity.js';
+import { EARTH_RADIUS_KM, gravityAlong } from './gravity.js';
 import { SLAB_S, segmentsPerSlab } from './node-spacing.js';
+import { osculatingPerigeeKm } from './osculating-perigee.js';
+import { recordStateAt } from './record-states.js';
 import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
-import { sgp4StateAt } from './sgp4-state.js';
+import type { Sgp4Records } from './sgp4-records.js';
 
 /**
  * How far an interpolated position may lie from SGP4's, doubled. In near-circular orbits it is interpolation
@@ -43,8 +44,8 @@ const COASTING_STEPS = 3;
 const NODES_PER_WATCHED = WATCHED_STEPS + 1 + COASTING_STEPS;
 
 export type TrackedObject = {
-  readonly record: SatRec;
-  readonly epochMs: number;
+  /** Of its record among the records. */
+  readonly place: number;
   readonly eccentricity: number;
   readonly perigeeRadiusKm: number;
   /** Object counts as gone from then on. Default: never. */
@@ -90,11 +91,15 @@ const LEAST_SEGMENTS_OUT = 15;
 
 /**
  * Groups the objects by node spacing and hands their records to the bulk propagator once.
- * `loadBulkPropagator` must have been awaited in this thread.
+ * `loadSgp4` must have been awaited in this thread.
  *
  * @param isOut default: no object ever is
  */
-export function createTrackMaker(objects: readonly TrackedObject[], isOut?: IsOut): TrackMaker {
+export function createTrackMaker(
+  records: Sgp4Records,
+  objects: readonly TrackedObject[],
+  isOut?: IsOut,
+): TrackMaker {
   const bySegments = new Map<number, number[]>();
   objects.forEach((object, index) => {
     const segments = segmentsPerSlab(object.eccentricity, object.perigeeRadiusKm);
@@ -110,16 +115,16 @@ export function createTrackMaker(objects: readonly TrackedObject[], isOut?: IsOu
       bulk:
         isOut !== undefined && segments >= LEAST_SEGMENTS_OUT
           ? undefined
-          : bulkOf(objects, members, segments),
+          : bulkOf(records, objects, members, segments),
     }));
   let room = new Float64Array(0);
   return (slabStartMs, slabIndex) => {
     const inReach = groups.map(({ segments, members, bulk }) => {
       if (bulk !== undefined) return { segments, members, bulk };
       const near = members.filter((object) => !isOut?.(object, slabStartMs));
-      return { segments, members: near, bulk: bulkOf(objects, near, segments) };
+      return { segments, members: near, bulk: bulkOf(records, objects, near, segments) };
     });
-    const tracks = makeTracks(objects, inReach, slabStartMs, slabIndex, room);
+    const tracks = makeTracks(records, objects, inReach, slabStartMs, slabIndex, room);
     inReach.forEach(({ bulk }, k) => {
       if (groups[k].bulk === undefined) bulk.dispose();
     });
@@ -129,17 +134,20 @@ export function createTrackMaker(objects: readonly TrackedObject[], isOut?: IsOu
 }
 
 function bulkOf(
+  records: Sgp4Records,
   objects: readonly TrackedObject[],
   members: Int32Array | readonly number[],
   segments: number,
 ): BulkNodes {
   return createBulkNodes(
-    Array.from(members, (index) => objects[index].record),
+    records,
+    Array.from(members, (index) => objects[index].place),
     2 * segments + 1,
   );
 }
 
 function makeTracks(
+  records: Sgp4Records,
   objects: readonly TrackedObject[],
   groups: readonly Group[],
   slabStartMs: number,
@@ -182,7 +190,7 @@ function makeTracks(
   const finerGroups = [...retried].map(([segments, members]) => ({
     segments,
     members: Int32Array.from(members),
-    bulk: bulkOf(objects, members, segments),
+    bulk: bulkOf(records, objects, members, segments),
   }));
   const finerCount = finerGroups.reduce(
     (sum, { members, segments }) => sum + members.length * (segments + 1),
@@ -196,7 +204,7 @@ function makeTracks(
     group.bulk.dispose();
   }
   tracks.nodes = withRoom(tracks.nodes, node + NODES_PER_WATCHED * watched.length, node);
-  layWatchedTracks(objects, watched, tracks, node);
+  layWatchedTracks(records, objects, watched, tracks, node);
   return tracks;
 }
 
@@ -274,6 +282,7 @@ function withRoom(room: Float64Array<ArrayBuffer>, nodes: number, used: number):
 
 /** Lays the tracks of watched objects in short steps, to where SGP4 fails. */
 function layWatchedTracks(
+  records: Sgp4Records,
   objects: readonly TrackedObject[],
   watched: readonly number[],
   tracks: MutableTracks,
@@ -282,7 +291,8 @@ function layWatchedTracks(
   if (watched.length === 0) return;
   const times = WATCHED_STEPS + 1;
   const bulk = createBulkNodes(
-    watched.map((object) => objects[object].record),
+    records,
+    watched.map((object) => objects[object].place),
     times,
   );
   const states = bulk.statesAt(Array.from({ length: times }, (_, k) => tracks.startMs + k * WATCHED_STEP_MS));
@@ -299,7 +309,8 @@ function layWatchedTracks(
     if (alive < times) ending.push({ object, lastGood: alive - 1 });
   }
   bulk.dispose();
-  for (const { object, lastGood } of ending) layEndingTrack(objects[object], object, lastGood, tracks);
+  for (const { object, lastGood } of ending)
+    layEndingTrack(records, objects[object].place, object, lastGood, tracks);
 }
 
 /**
@@ -308,7 +319,8 @@ function layWatchedTracks(
  * @param lastGood number of the last watched step that has a state
  */
 function layEndingTrack(
-  { record, epochMs }: TrackedObject,
+  records: Sgp4Records,
+  place: number,
   object: number,
   lastGood: number,
   tracks: MutableTracks,
@@ -320,17 +332,17 @@ function layEndingTrack(
   let badMs = goodMs + WATCHED_STEP_MS;
   while (badMs - goodMs > 1) {
     const middleMs = Math.floor((goodMs + badMs) / 2);
-    if (sgp4StateAt(record, epochMs, middleMs, sample)) goodMs = middleMs;
+    if (recordStateAt(records, place, middleMs, sample)) goodMs = middleMs;
     else badMs = middleMs;
   }
   const lastS = (goodMs - tracks.startMs) / 1000;
   const segments = Math.max(1, Math.ceil(lastS / WATCHED_STEP_S));
-  const bulk = createBulkNodes([record], segments);
+  const bulk = createBulkNodes(records, [place], segments);
   const states = bulk.statesAt(
     Array.from({ length: segments }, (_, k) => goodMs - (segments - k) * WATCHED_STEP_MS),
   );
   const firstNode = tracks.firstNode[object];
-  let complete = sgp4StateAt(record, epochMs, goodMs, tracks.nodes, 6 * (firstNode + segments));
+  let complete = recordStateAt(records, place, goodMs, tracks.nodes, 6 * (firstNode + segments));
   for (let k = 0; k < segments; k++) {
     if (!copyState(states, k, tracks.nodes, firstNode + k)) complete = false;
   }
@@ -397,21 +409,4 @@ function defectAtKm(
   const dy = sample[1] - positions[3 * index + 1];
   const dz = sample[2] - positions[3 * index + 2];
   return Math.sqrt(dx * dx + dy * dy + dz * dz);
-}
-
-/** Perigee distance of the two-body orbit through one state. */
-function osculatingPerigeeKm(states: Float64Array, at: number): number {
-  const x = states[at];
-  const y = states[at + 1];
-  const z = states[at + 2];
-  const vx = states[at + 3];
-  const vy = states[at + 4];
-  const vz = states[at + 5];
-  const r = Math.sqrt(x * x + y * y + z * z);
-  const v2 = vx * vx + vy * vy + vz * vz;
-  const rDotV = x * vx + y * vy + z * vz;
-  const momentum2 = r * r * v2 - rDotV * rDotV;
-  const semiLatusRectumKm = momentum2 / EARTH_MU_KM3_PER_S2;
-  const eccentricity2 = 1 + semiLatusRectumKm * (v2 / EARTH_MU_KM3_PER_S2 - 2 / r);
-  return semiLatusRectumKm / (1 + Math.sqrt(Math.max(0, eccentricity2)));
 }

@@ -2,7 +2,7 @@ import type { ClosestApproach } from '../encounters/closest-approach.js';
 import type { RefinedObject } from '../encounters/refine.js';
 import type { SearchObjects } from '../encounters/search-problem.js';
 import { passageThrough } from '../encounters/volume.js';
-import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
+import { recordStateAt } from '../ephemeris/record-states.js';
 import type { OrbitState } from '../ephemeris/state.js';
 import { assessInFull, type EncounterObject } from '../probability/assess-encounter.js';
 import { discProbability } from '../probability/foster.js';
@@ -39,10 +39,11 @@ function assessApproach(
   plan: SearchPlan,
   records: EncounterRecords,
 ): void {
-  const object1 = { record: objects.recordOf(first), epochMs: objects.epochMs[first] };
-  const object2 = { record: objects.recordOf(second), epochMs: objects.epochMs[second] };
-  sgp4StateAt(object1.record, object1.epochMs, tcaMs, states, 0);
-  sgp4StateAt(object2.record, object2.epochMs, tcaMs, states, 6);
+  const { records: sgp4 } = objects;
+  const object1 = { records: sgp4, place: first };
+  const object2 = { records: sgp4, place: second };
+  recordStateAt(sgp4, first, tcaMs, states, 0);
+  recordStateAt(sgp4, second, tcaMs, states, 6);
   const speedKmPerS = Math.hypot(states[9] - states[3], states[10] - states[4], states[11] - states[5]);
   const fromMs = Math.max(plan.startMs, objects.validFromMs[first], objects.validFromMs[second]);
   const toMs = Math.min(plan.endMs, objects.validToMs[first], objects.validToMs[second]);
@@ -121,8 +122,8 @@ function stateFrom(offset: number): OrbitState {
 
 // Field by field in the next two: spread syntax costs microseconds, a good part of a row.
 
-function sideOf({ record, epochMs }: RefinedObject, state: OrbitState, covariance: Matrix3): PathSide {
-  return { record, epochMs, state, covarianceRtnM2: covariance };
+function sideOf({ records, place }: RefinedObject, state: OrbitState, covariance: Matrix3): PathSide {
+  return { records, place, state, covarianceRtnM2: covariance };
 }
 
 function atTca(side: PathSide): EncounterObject {

@@ -1,5 +1,5 @@
 import type { RefinedObject } from '../encounters/refine.js';
-import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
+import { recordStateAt } from '../ephemeris/record-states.js';
 import { createShortArc } from '../ephemeris/short-arc.js';
 import type { OrbitState } from '../ephemeris/state.js';
 import type { FullAssessment } from '../probability/assess-encounter.js';
@@ -99,8 +99,8 @@ function atClosest(
   tcaMs: number,
   hardBodyRadiusM: number,
 ): PathEncounter {
-  const arc1 = createShortArc(object1.record, object1.epochMs, tcaMs);
-  const arc2 = createShortArc(object2.record, object2.epochMs, tcaMs);
+  const arc1 = createShortArc(object1.records, object1.place, tcaMs);
+  const arc2 = createShortArc(object2.records, object2.place, tcaMs);
   return {
     statesAt: (timeMs) => ({ object1: found(arc1(timeMs)), object2: found(arc2(timeMs)) }),
     fromMs: tcaMs,
@@ -114,9 +114,9 @@ function atClosest(
 
 /** The states as given at closest approach, SGP4's at other times. */
 function directly(object1: PathSide, object2: PathSide, tcaMs: number): StatesAt {
-  const at = ({ record, epochMs, state }: PathSide, timeMs: number): OrbitState => {
+  const at = ({ records, place, state }: PathSide, timeMs: number): OrbitState => {
     if (timeMs === tcaMs) return state;
-    if (!sgp4StateAt(record, epochMs, timeMs, scratch)) throw new NoState();
+    if (!recordStateAt(records, place, timeMs, scratch)) throw new NoState();
     return {
       positionKm: [scratch[0], scratch[1], scratch[2]],
       velocityKmPerS: [scratch[3], scratch[4], scratch[5]],
@@ -127,6 +127,6 @@ function directly(object1: PathSide, object2: PathSide, tcaMs: number): StatesAt
 
 const scratch = new Float64Array(6);
 
-function periodS({ record }: PathSide): number {
-  return (120 * Math.PI) / record.no;
+function periodS({ records, place }: PathSide): number {
+  return (120 * Math.PI) / records.values[records.size * place + records.at.meanMotion];
 }

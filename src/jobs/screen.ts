@@ -3,8 +3,9 @@ import { expectCurrentFleet } from '../elements/age.js';
 import type { ElementSet } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
 import { findCompanions } from '../encounters/companions.js';
-import { pairKey, searchObjectsOf, slabCount } from '../encounters/search-problem.js';
+import { pairKey, slabCount } from '../encounters/search-problem.js';
 import { enclosingRadiusKm } from '../encounters/volume.js';
+import { loadSgp4 } from '../ephemeris/sgp4-module.js';
 import { writeChangesCsv } from '../tables/changes-csv.js';
 import {
   formatCaution,
@@ -29,7 +30,7 @@ import type { JobPorts, ScreenOptions, ScreenOutcome } from './screen-options.js
 import { screenedObject } from './screened-object.js';
 import { searchAndRank, type Window } from './search-and-rank.js';
 import { withSearchWorkers } from './search-in-workers.js';
-import { searchPlanOf } from './search-plan.js';
+import { objectsOfPlan, rulesOfPlan, searchPlanOf } from './search-plan.js';
 import { createTimings } from './timings.js';
 import { warnOfUnlisted } from './unlisted-objects.js';
 import { withinReach } from './within-reach.js';
@@ -68,6 +69,7 @@ async function screenInto(
 
   const threads = Math.min(options.workers, slabCount(window));
   const { prepared, search } = await withSearchWorkers(threads, ports, async (workers) => {
+    await loadSgp4();
     const ready = prepareSearch(read, options, window, ports);
     timings.end('preparing');
     const primaryCount = ready.primaries.length;
@@ -180,22 +182,17 @@ function prepareSearch(
       'every object of the catalog is one of the fleet, so there is nothing to screen it against: give another --catalog, or --within-fleet for the fleet against itself',
     );
   }
-  const searched = searchObjectsOf(
-    objects.map(({ set }) => set),
-    primaryCount,
-    objects.map(({ record }) => record),
-  );
-  const rules = { startMs, endMs, missKm, withinPrimaries, skippedPairs: new Set<number>() };
-  const companions = findCompanions(searched, rules);
-  const skippedPairs = companions.map(({ first, second }) => pairKey(first, second, objects.length));
-  const plan = searchPlanOf(objects, {
+  const whole = searchPlanOf(objects, {
     primaryCount,
     startMs,
     endMs,
     withinPrimaries,
-    skippedPairs,
+    skippedPairs: [],
     volume,
     maxAgeDays,
   });
+  const companions = findCompanions(objectsOfPlan(whole), rulesOfPlan(whole));
+  const skippedPairs = companions.map(({ first, second }) => pairKey(first, second, objects.length));
+  const plan = { ...whole, skippedPairs };
   return { primaries, others, objects, withinPrimaries, companions, plan };
 }

@@ -4,6 +4,7 @@ import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
 import type { SearchObjects, SearchRules } from '../encounters/search-problem.js';
 import { enclosingRadiusKm, type ScreeningVolume } from '../encounters/volume.js';
 import { laySecularTerms, TERMS_SIZE } from '../ephemeris/secular-elements.js';
+import { laySgp4Records, type Sgp4Records } from '../ephemeris/sgp4-records.js';
 import type { SigmaCurve } from '../uncertainty/sigma-table.js';
 import type { ScreenedObject } from './screened-object.js';
 
@@ -11,7 +12,8 @@ import type { ScreenedObject } from './screened-object.js';
 export type SearchPlan = {
   /** `PLAN_FIELDS` doubles for each object, primaries first. */
   readonly elements: Float64Array;
-  /** As in `SearchObjects`. */
+  /** As in `SearchObjects`, as are the secular terms. */
+  readonly records: Sgp4Records;
   readonly secularTerms: Float64Array;
   /** When the age of each object's elements counts from. */
   readonly agesFromMs: Float64Array;
@@ -35,12 +37,23 @@ export type SearchPlan = {
 
 const PLAN_FIELDS = 11;
 
-/** @param objects primaries first */
+/**
+ * `loadSgp4` must have been awaited.
+ *
+ * @param objects primaries first
+ */
 export function searchPlanOf(
   objects: readonly ScreenedObject[],
   settings: Omit<
     SearchPlan,
-    'elements' | 'secularTerms' | 'agesFromMs' | 'hardBodyRadiusM' | 'hasDefaultRadius' | 'curves' | 'curveOf'
+    | 'elements'
+    | 'records'
+    | 'secularTerms'
+    | 'agesFromMs'
+    | 'hardBodyRadiusM'
+    | 'hasDefaultRadius'
+    | 'curves'
+    | 'curveOf'
   >,
 ): SearchPlan {
   const elements = sharedFloat64(PLAN_FIELDS * objects.length);
@@ -82,6 +95,11 @@ export function searchPlanOf(
   return {
     ...settings,
     elements,
+    records: laySgp4Records(
+      objects.map(({ record }) => record),
+      objects.map(({ set }) => set.epochMs),
+      settings.startMs,
+    ),
     secularTerms,
     agesFromMs,
     hardBodyRadiusM,
@@ -91,8 +109,13 @@ export function searchPlanOf(
   };
 }
 
-/** What is searched, from the bare numbers, on the side of the worker: SGP4 records are made as they are asked for. */
-export function objectsOfPlan({ elements, secularTerms, primaryCount }: SearchPlan): SearchObjects {
+/** What is searched, from the bare numbers of a plan: SGP4 records of JavaScript are made as they are asked for. */
+export function objectsOfPlan({
+  elements,
+  records: sgp4,
+  secularTerms,
+  primaryCount,
+}: SearchPlan): SearchObjects {
   const count = elements.length / PLAN_FIELDS;
   const field = (place: number) =>
     Float64Array.from({ length: count }, (_, object) => elements[PLAN_FIELDS * object + place]);
@@ -108,6 +131,7 @@ export function objectsOfPlan({ elements, secularTerms, primaryCount }: SearchPl
   return {
     count,
     primaryCount,
+    records: sgp4,
     recordOf,
     secularTerms,
     epochMs: field(0),

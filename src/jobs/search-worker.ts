@@ -1,6 +1,6 @@
 import { parentPort } from 'node:worker_threads';
 import { createSlabSearcher, searchSlab } from '../encounters/search-slab.js';
-import { loadBulkPropagator } from '../ephemeris/bulk-nodes.js';
+import { loadSgp4 } from '../ephemeris/sgp4-module.js';
 import { assessApproaches } from './assess-approach.js';
 import { createEncounterRecords, FIELDS } from './encounter-records.js';
 import { objectsOfPlan, rulesOfPlan, type SearchPlan } from './search-plan.js';
@@ -21,7 +21,7 @@ export type SlabAnswer = {
 async function serve(): Promise<void> {
   if (parentPort === null) throw new Error('search-worker runs in a worker thread only');
   const port = parentPort;
-  await loadBulkPropagator();
+  await loadSgp4();
   let search: ((slab: number) => SlabAnswer) | undefined;
   port.on('message', ({ brief: plan, question: slab }: ThreadMessage<SearchPlan, number>) => {
     if (plan !== undefined) search = searchOf(plan);

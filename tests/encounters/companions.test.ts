@@ -1,7 +1,8 @@
-import { describe, expect, it } from 'vitest';
+import { beforeAll, describe, expect, it } from 'vitest';
 import { findCompanions } from '../../src/encounters/companions.js';
-import { searchObjectsOf } from '../../src/encounters/search-problem.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { walkerShell } from '../synthetic/catalog.js';
+import { searchObjectsOf } from './search-objects.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 
@@ -27,6 +28,8 @@ const RULES = {
   withinPrimaries: true,
   skippedPairs: new Set<number>(),
 };
+
+beforeAll(loadSgp4);
 
 describe('findCompanions', () => {
   it('tells a pair that stays near once, with its distances, and leaves wider ones out', () => {

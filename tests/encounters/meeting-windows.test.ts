@@ -1,11 +1,12 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
 import { type ClosestApproach, distinctApproaches } from '../../src/encounters/closest-approach.js';
-import { searchObjectsOf, slabCount } from '../../src/encounters/search-problem.js';
+import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
-import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
+import { searchObjectsOf } from './search-objects.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const HOUR_MS = 3_600_000;
@@ -69,7 +70,7 @@ function search(
   return distinctApproaches(found, objects.count);
 }
 
-beforeAll(loadBulkPropagator);
+beforeAll(loadSgp4);
 
 describe('windows from mean orbits', () => {
   it.each([

@@ -1,11 +1,14 @@
-import { describe, expect, it } from 'vitest';
-import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
+import { beforeAll, describe, expect, it } from 'vitest';
 import { enclosingRadiusKm, passageThrough, type ScreeningVolume } from '../../src/encounters/volume.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
+import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 import { bruteForceEncounters, bruteForcePassages } from './brute-force.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const END_MS = START_MS + 8 * 3_600_000;
+
+beforeAll(loadSgp4);
 
 describe('passageThrough', () => {
   it.each(['BOX', 'ELLIPSOID'] as const)('%s: finds the passages of brute force, entry and exit', (shape) => {
@@ -17,7 +20,8 @@ describe('passageThrough', () => {
       volume: { shape: shape === 'BOX' ? 'box' : 'ellipsoid', halfSizesKm: volume.halfSizeRtnKm },
     });
     const approaches = bruteForceEncounters({ ...window, missKm: enclosingRadiusKm(volume) });
-    const side = (index: number) => ({ record: sgp4RecordOf(first[index]), epochMs: first[index].epochMs });
+    const records = sgp4RecordsOf(first);
+    const side = (place: number) => ({ records, place });
     let inside = 0;
     let outside = 0;
     for (const { i, j, tcaMs, relativeSpeedKmPerS } of approaches) {

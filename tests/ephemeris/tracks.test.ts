@@ -1,39 +1,51 @@
+import type { SatRec } from 'satellite.js';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { orbitOf } from '../../src/elements/orbit.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
-import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
 import { SLAB_S } from '../../src/ephemeris/node-spacing.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
+import type { Sgp4Records } from '../../src/ephemeris/sgp4-records.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
 import { createCursorRoom, createTrackCursor, stateOnTrack } from '../../src/ephemeris/track-cursor.js';
 import { createTrackMaker, type TrackedObject } from '../../src/ephemeris/tracks.js';
 import { type CatalogMix, syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
+import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 import { move } from './motion-under-gravity.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const DAY_MS = 86_400_000;
 const NOTHING: CatalogMix = { low: 0, eccentric: 0, medium: 0, geosynchronous: 0, decaying: 0, train: 0 };
 
-function trackedObjects(mix: CatalogMix, count: number, seed: number): TrackedObject[] {
-  return syntheticCatalog({ seed, count, epochMs: START_MS, mix }).map((set) => {
+type Known = TrackedObject & { readonly record: SatRec; readonly epochMs: number };
+
+function trackedObjects(
+  mix: CatalogMix,
+  count: number,
+  seed: number,
+): { records: Sgp4Records; objects: Known[] } {
+  const sets = syntheticCatalog({ seed, count, epochMs: START_MS, mix });
+  const objects = sets.map((set, place) => {
     const record = sgp4RecordOf(set);
     return {
+      place,
       record,
       epochMs: set.epochMs,
       eccentricity: set.eccentricity,
       perigeeRadiusKm: orbitOf(set, record).perigeeHeightKm + 6378.135,
     };
   });
+  return { records: sgp4RecordsOf(sets), objects };
 }
 
-beforeAll(loadBulkPropagator);
+beforeAll(loadSgp4);
 
 describe('tracks', () => {
   const kinds = Object.keys(NOTHING) as (keyof CatalogMix)[];
   it.each(kinds)('stay within their tolerance of SGP4: %s', (kind) => {
-    const objects = trackedObjects({ ...NOTHING, [kind]: 1 }, 60, 7);
+    const { records, objects } = trackedObjects({ ...NOTHING, [kind]: 1 }, 60, 7);
     const random = seededRandom(8);
-    const makeTracks = createTrackMaker(objects);
+    const makeTracks = createTrackMaker(records, objects);
     const truth = new Float64Array(6);
     const onTrack = new Float64Array(6);
     let compared = 0;
@@ -70,8 +82,8 @@ describe('tracks', () => {
   });
 
   it('end where SGP4 fails, to the millisecond, and coast on from there', () => {
-    const objects = trackedObjects({ ...NOTHING, decaying: 1 }, 300, 9);
-    const makeTracks = createTrackMaker(objects);
+    const { records, objects } = trackedObjects({ ...NOTHING, decaying: 1 }, 300, 9);
+    const makeTracks = createTrackMaker(records, objects);
     const state = new Float64Array(6);
     let endings = 0;
     let dead = 0;
@@ -104,12 +116,12 @@ describe('tracks', () => {
   });
 
   it('of one slab do not hang on which slabs came before', () => {
-    const objects = trackedObjects({ ...NOTHING, low: 1, decaying: 1, eccentric: 1 }, 60, 10);
-    const makeTracks = createTrackMaker(objects);
+    const { records, objects } = trackedObjects({ ...NOTHING, low: 1, decaying: 1, eccentric: 1 }, 60, 10);
+    const makeTracks = createTrackMaker(records, objects);
     makeTracks(START_MS, 0);
     makeTracks(START_MS + 5 * DAY_MS, 30);
     const again = makeTracks(START_MS + DAY_MS, 6);
-    const fresh = createTrackMaker(objects)(START_MS + DAY_MS, 6);
+    const fresh = createTrackMaker(records, objects)(START_MS + DAY_MS, 6);
     const cursors = [again, fresh].map((tracks) =>
       createTrackCursor(tracks, createCursorRoom(objects.length)),
     );

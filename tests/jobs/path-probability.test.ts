@@ -1,6 +1,7 @@
-import { describe, expect, it } from 'vitest';
+import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
 import { type PathSide, pathProbability } from '../../src/jobs/path-probability.js';
 import { assessInFull } from '../../src/probability/assess-encounter.js';
@@ -11,17 +12,22 @@ import type { Vector3 } from '../../src/vector.js';
 import { bruteForceEncounters } from '../encounters/brute-force.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
+import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const HOURS_6_MS = 6 * 3_600_000;
 
-function side(set: ElementSet, timeMs: number, sigmaRtnM: Vector3): PathSide {
-  const record = sgp4RecordOf(set);
+beforeAll(loadSgp4);
+
+type Side = PathSide & { readonly set: ElementSet };
+
+function side(set: ElementSet, timeMs: number, sigmaRtnM: Vector3): Side {
   const state = new Float64Array(6);
-  expect(sgp4StateAt(record, set.epochMs, timeMs, state)).toBe(true);
+  expect(sgp4StateAt(sgp4RecordOf(set), set.epochMs, timeMs, state)).toBe(true);
   return {
-    record,
-    epochMs: set.epochMs,
+    set,
+    records: sgp4RecordsOf([set]),
+    place: 0,
     covarianceRtnM2: covarianceRtnM2(sigmaRtnM),
     state: {
       positionKm: [state[0], state[1], state[2]],
@@ -39,10 +45,10 @@ function assessed(one: PathSide, other: PathSide, hardBodyRadiusM: number) {
 }
 
 /** True SGP4 states of both sides, without interpolation. */
-function truth(one: PathSide, other: PathSide) {
+function truth(one: Side, other: Side) {
   const out = new Float64Array(6);
-  const at = ({ record, epochMs }: PathSide, timeMs: number) => {
-    sgp4StateAt(record, epochMs, timeMs, out);
+  const at = ({ set }: Side, timeMs: number) => {
+    sgp4StateAt(sgp4RecordOf(set), set.epochMs, timeMs, out);
     return {
       positionKm: [out[0], out[1], out[2]] as const,
       velocityKmPerS: [out[3], out[4], out[5]] as const,

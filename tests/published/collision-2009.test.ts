@@ -4,10 +4,11 @@ import { join } from 'node:path';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { readElementFiles } from '../../src/elements/read.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
-import { searchObjectsOf, slabCount } from '../../src/encounters/search-problem.js';
+import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
-import { loadBulkPropagator } from '../../src/ephemeris/bulk-nodes.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { searchObjectsOf } from '../encounters/search-objects.js';
 
 /*
  * The accidental collision of 10 February 2009, from the last public element sets before it. Figures: worked
@@ -23,7 +24,7 @@ const TCA_MS = Date.UTC(2009, 1, 10, 16, 55, 59, 796);
 const MISS_KM = 0.698;
 const SPEED_KM_PER_S = 11.647;
 
-beforeAll(loadBulkPropagator);
+beforeAll(loadSgp4);
 
 describe('the collision of 10 February 2009', () => {
   it('is found in its window within 20 ms, 1 m and 1 m/s of the independent figures', async () => {

@@ -5,7 +5,9 @@ import {
   type Companions,
   flightTogether,
 } from '../../encounters/companions.js';
+import type { RefinedObject } from '../../encounters/refine.js';
 import { EARTH_MU_KM3_PER_S2 } from '../../ephemeris/gravity.js';
+import type { Sgp4Records } from '../../ephemeris/sgp4-records.js';
 import { dot, type Vector3 } from '../../vector.js';
 import type { ScreenedObject } from '../screened-object.js';
 import { groupBy } from './group-by.js';
@@ -30,10 +32,12 @@ export type FlyingAlong = Companions;
  * which is distance times orbital rate (29 m/s at 25 km in low orbit).
  *
  * @param objects primaries (phases of the batch), then the others; `validToMs` not after the end of the window
+ * @param records of the objects, in their order
  * @param missKm pairs that are never closer than this are left out: they are no encounters either
  */
 export function findFlyingAlong(
   objects: readonly ScreenedObject[],
+  records: Sgp4Records,
   primaryCount: number,
   missKm: number,
 ): FlyingAlong[] {
@@ -54,7 +58,8 @@ export function findFlyingAlong(
       const own = planeNormal(objects[first], startMs);
       for (const { second, normal } of near) {
         if (own !== undefined && normal !== undefined && dot(own, normal) < like.leastCosine) continue;
-        const pair = flyTogether(objects[first], objects[second], limitKm);
+        const sides = [first, second].map((place) => ({ records, place }));
+        const pair = flyTogether(objects[first], sides[0], sides[1], limitKm);
         if (pair !== undefined && pair.closestKm <= missKm) found.push({ first, second, ...pair });
       }
     }
@@ -83,14 +88,14 @@ export function probablySame(
 
 function flyTogether(
   first: ScreenedObject,
-  second: ScreenedObject,
+  side1: RefinedObject,
+  side2: RefinedObject,
   limitKm: number,
 ): Omit<FlyingAlong, 'first' | 'second'> | undefined {
-  const side = ({ record, set }: ScreenedObject) => ({ record, epochMs: set.epochMs });
   const startMs = first.validFromMs;
   const endMs = Math.min(startMs + FIRST_STRETCH_MS, first.validToMs);
   const rate = orbitalRate(first);
-  return flightTogether(side(first), side(second), { startMs, endMs, followedToMs: endMs }, (distanceKm) =>
+  return flightTogether(side1, side2, { startMs, endMs, followedToMs: endMs }, (distanceKm) =>
     distanceKm <= limitKm ? COMPANION_SPEED_KM_PER_S + rate * distanceKm : Number.NaN,
   );
 }

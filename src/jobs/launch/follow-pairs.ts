@@ -1,12 +1,9 @@
-import type { SatRec } from 'satellite.js';
 import { tidePerS2 } from '../../encounters/bounds.js';
-import { relativeStateAt, slowTcas } from '../../encounters/refine.js';
-import { sgp4StateAt } from '../../ephemeris/sgp4-state.js';
+import { type RefinedObject, relativeStateAt, slowTcas } from '../../encounters/refine.js';
+import { recordStateAt } from '../../ephemeris/record-states.js';
 
 /** A stretch of time in which an object flies on one set; milliseconds of UTC since 1970-01-01. */
-type FollowedPhase = {
-  readonly record: SatRec;
-  readonly epochMs: number;
+type FollowedPhase = Pick<RefinedObject, 'records' | 'place'> & {
   readonly fromMs: number;
   /** Exclusive; infinite where nothing ends it. */
   readonly toMs: number;
@@ -153,7 +150,7 @@ function followStretch(
     const afterMs = fromMs + ((toMs - fromMs) * k) / steps;
     for (const [i, phase] of active.entries()) {
       if (phase === undefined) continue;
-      if (failed.has(phase) || !sgp4StateAt(phase.record, phase.epochMs, afterMs, after, 6 * i)) {
+      if (failed.has(phase) || !recordStateAt(phase.records, phase.place, afterMs, after, 6 * i)) {
         failed.add(phase);
         after.fill(Number.NaN, 6 * i, 6 * i + 6);
       }

@@ -3,6 +3,7 @@ import { isBatchDesignator } from '../../elements/batch-designator.js';
 import { formatUtc } from '../../elements/utc.js';
 import { slabCount } from '../../encounters/search-problem.js';
 import { enclosingRadiusKm } from '../../encounters/volume.js';
+import { loadSgp4 } from '../../ephemeris/sgp4-module.js';
 import { type BatchObjectRow, writeBatchObjectsCsv } from '../../tables/batch-objects-csv.js';
 import { writeBatchPairsCsv } from '../../tables/batch-pairs-csv.js';
 import { writeSlipsCsv } from '../../tables/slips-csv.js';
@@ -83,6 +84,7 @@ async function launchInto(
   const missKm = enclosingRadiusKm(options.volume);
   const threads = Math.min(options.workers, slabCount(window));
   const searched = await withSearchWorkers(threads, ports, async (workers) => {
+    await loadSgp4();
     // On its own, so that its figures are to the last digit those of a run without slips.
     const planned = searchOf([0], false);
     const { objects, flying } = planned;

@@ -24,7 +24,7 @@ const MOST_COPIES = 3100;
  * Puts all slipped copies of the batch as primaries into one search, each with a time of its own in which it
  * exists, so that what does not change with the slip (above all the flight of the catalog) is done once.
  * Copies never meet each other. Of objects that fly along with the copies of a liftoff no encounters are
- * searched with these.
+ * searched with these. `loadSgp4` must have been awaited.
  *
  * @param batch phases of the nominal launch
  * @param window of the nominal launch
@@ -49,7 +49,17 @@ export function liftoffSearch(
   const endMs = window.endMs + Math.max(...slipsMs);
   const missKm = enclosingRadiusKm(settings.volume);
   const objects = [...copies, ...withinReach(others, copies, missKm, startMs, endMs)];
-  const flying = findFlyingAlong(objects, copies.length, missKm);
+  const whole = searchPlanOf(objects, {
+    primaryCount: copies.length,
+    startMs,
+    endMs,
+    withinPrimaries: false,
+    skippedPairs: [],
+    volume: settings.volume,
+    maxAgeDays: settings.maxAgeDays,
+    onlyProbability: settings.onlyProbability,
+  });
+  const flying = findFlyingAlong(objects, whole.records, copies.length, missKm);
   const skipped = new Set<number>();
   for (const { first, second } of flying) {
     const liftoff = Math.floor(first / phaseCount);
@@ -57,16 +67,7 @@ export function liftoffSearch(
       skipped.add(pairKey(liftoff * phaseCount + phase, second, objects.length));
     }
   }
-  const plan = searchPlanOf(objects, {
-    primaryCount: copies.length,
-    startMs,
-    endMs,
-    withinPrimaries: false,
-    skippedPairs: [...skipped],
-    volume: settings.volume,
-    maxAgeDays: settings.maxAgeDays,
-    onlyProbability: settings.onlyProbability,
-  });
+  const plan = { ...whole, skippedPairs: [...skipped] };
   return { slipsMs, phaseCount, objects, flying, plan };
 }
 

@@ -1,3 +1,4 @@
+import { laySgp4Records } from '../../ephemeris/sgp4-records.js';
 import { type BatchPair, type PairRemark, sortBatchPairs } from '../../tables/batch-pairs-csv.js';
 import type { ScreenedObject } from '../screened-object.js';
 import { type FollowedObject, followPairs } from './follow-pairs.js';
@@ -6,7 +7,7 @@ import { pairTrend } from './pair-trend.js';
 
 /**
  * The pairs of one deployment that are within the limit at some time: objects of the batch with each other,
- * and with those of fleet and catalog that fly along. They are the same for every liftoff, since a slip turns
+ * and with those of fleet and catalog that fly along. `loadSgp4` must have been awaited. They are the same for every liftoff, since a slip turns
  * and delays all of the batch alike.
  *
  * @param batch phases of the nominal launch
@@ -21,6 +22,21 @@ export function pairRows(
 ): BatchPair[] {
   const members = [...groupBy(batch, ({ designator }) => designator).values()];
   const objects = [...members, ...along.map((object) => [object])];
+  const phases = objects.flat();
+  const records = laySgp4Records(
+    phases.map(({ record }) => record),
+    phases.map(({ set }) => set.epochMs),
+    window.startMs,
+  );
+  const placeOf = new Map(phases.map((phase, place) => [phase, place]));
+  const followedObject = (own: readonly ScreenedObject[]): FollowedObject => ({
+    phases: own.map((phase) => ({
+      records,
+      place: placeOf.get(phase) as number,
+      fromMs: phase.validFromMs,
+      toMs: phase.validToMs,
+    })),
+  });
   const followed = followPairs(objects.map(followedObject), members.length, window, (first, second) => {
     return second >= members.length && isSkipped(objects[first][0].designator, objects[second][0]);
   });
@@ -53,17 +69,6 @@ export function pairRows(
       };
     }),
   );
-}
-
-function followedObject(phases: readonly ScreenedObject[]): FollowedObject {
-  return {
-    phases: phases.map(({ record, set, validFromMs, validToMs }) => ({
-      record,
-      epochMs: set.epochMs,
-      fromMs: validFromMs,
-      toMs: validToMs,
-    })),
-  };
 }
 
 /** Of the phase that holds at a time. */

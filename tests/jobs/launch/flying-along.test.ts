@@ -2,6 +2,7 @@ import { sgp4 } from 'satellite.js';
 import { describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../../src/elements/element-set.js';
 import { pairKey } from '../../../src/encounters/search-problem.js';
+import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
 import { findFlyingAlong, probablySame } from '../../../src/jobs/launch/flying-along.js';
 import { liftoffSearch } from '../../../src/jobs/launch/liftoff-search.js';
 import { pairRows } from '../../../src/jobs/launch/pair-rows.js';
@@ -13,6 +14,7 @@ import {
 import { defaultSigmaTable } from '../../../src/uncertainty/default-sigma-table.js';
 import { syntheticCatalog } from '../../synthetic/catalog.js';
 import { atEpoch } from '../../synthetic/mean-elements.js';
+import { sgp4RecordsOf } from '../../synthetic/sgp4-records.js';
 import { batchSet, RELEASE_MS } from './batch-sets.js';
 
 const HOUR_MS = 3_600_000;
@@ -64,6 +66,8 @@ function isTogether(a: ScreenedObject, b: ScreenedObject, missKm: number): boole
   return closest <= missKm;
 }
 
+await loadSgp4();
+
 describe('objects that the catalog holds already', () => {
   const search = liftoffSearch([0], batch, others, WINDOW, VOLUME);
   const same = probablySame(search.flying, search.objects);
@@ -101,10 +105,12 @@ describe('objects that the catalog holds already', () => {
 });
 
 describe('an object that flies along', () => {
+  const flyingAlong = (objects: readonly ScreenedObject[]) =>
+    findFlyingAlong(objects, sgp4RecordsOf(objects.map(({ set }) => set)), 1, 25);
   const neighbor = (changes: Partial<ElementSet>) =>
     screenedObject({ ...batchSets[0], designator: '90001', ...changes }, KNOWLEDGE);
   const found = (other: ScreenedObject) =>
-    findFlyingAlong([{ ...batch[0], validToMs: WINDOW.endMs }, other], 1, 25).length;
+    flyingAlong([{ ...batch[0], validToMs: WINDOW.endMs }, other]).length;
 
   it.each([
     ['a kilometer ahead', { meanAnomalyDeg: 254.01 }, 1],
@@ -138,7 +144,7 @@ describe('an object that flies along', () => {
     const expected = many.filter((other) => isTogether(first, other, 25)).map(({ designator }) => designator);
     expect(expected.length).toBeGreaterThan(20);
     expect(expected.length).toBeLessThan(380);
-    const found = findFlyingAlong([first, ...many], 1, 25);
+    const found = flyingAlong([first, ...many]);
     expect(found.map(({ second }) => many[second - 1].designator)).toEqual(expected);
   });
 

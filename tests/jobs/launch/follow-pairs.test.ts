@@ -1,7 +1,8 @@
 import { sgp4 } from 'satellite.js';
-import { describe, expect, it } from 'vitest';
+import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../../src/elements/element-set.js';
 import { sgp4RecordOf } from '../../../src/elements/sgp4-record.js';
+import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
 import {
   type FollowedObject,
   type FollowedPair,
@@ -9,6 +10,7 @@ import {
 } from '../../../src/jobs/launch/follow-pairs.js';
 import { pairTrend } from '../../../src/jobs/launch/pair-trend.js';
 import { stateAt } from '../../synthetic/mean-elements.js';
+import { sgp4RecordsOf } from '../../synthetic/sgp4-records.js';
 import { batchSet, RELEASE_MS } from './batch-sets.js';
 
 const HOUR_MS = 3_600_000;
@@ -19,13 +21,15 @@ type Stretch = readonly [set: ElementSet, fromMs: number, toMs: number];
 function objectOf(...stretches: readonly Stretch[]): FollowedObject {
   return {
     phases: stretches.map(([set, fromMs, toMs]) => ({
-      record: sgp4RecordOf(set),
-      epochMs: set.epochMs,
+      records: sgp4RecordsOf([set]),
+      place: 0,
       fromMs,
       toMs,
     })),
   };
 }
+
+beforeAll(loadSgp4);
 
 type Components = { readonly x: number; readonly y: number; readonly z: number };
 

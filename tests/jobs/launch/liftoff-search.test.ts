@@ -1,5 +1,6 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../../src/elements/element-set.js';
+import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
 import { type EncounterRecords, FIELD, FIELDS } from '../../../src/jobs/encounter-records.js';
 import { batchObjects } from '../../../src/jobs/launch/batch-objects.js';
 import { injectionCurve } from '../../../src/jobs/launch/injection-sigma.js';
@@ -12,6 +13,8 @@ import { bruteForceEncounters } from '../../encounters/brute-force.js';
 import { walkerShell } from '../../synthetic/catalog.js';
 import { batchSet, RELEASE_MS } from './batch-sets.js';
 import { searchHere } from './search-here.js';
+
+await loadSgp4();
 
 const HOUR_MS = 3_600_000;
 const MINUTE_MS = 60_000;

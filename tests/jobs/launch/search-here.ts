@@ -1,14 +1,14 @@
 import { distinctApproaches } from '../../../src/encounters/closest-approach.js';
 import { slabCount } from '../../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../../src/encounters/search-slab.js';
-import { loadBulkPropagator } from '../../../src/ephemeris/bulk-nodes.js';
+import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
 import { assessApproaches } from '../../../src/jobs/assess-approach.js';
 import { createEncounterRecords, type EncounterRecords } from '../../../src/jobs/encounter-records.js';
 import { objectsOfPlan, rulesOfPlan, type SearchPlan } from '../../../src/jobs/search-plan.js';
 
 /** Searches a plan in this thread. */
 export async function searchHere(plan: SearchPlan): Promise<EncounterRecords> {
-  await loadBulkPropagator();
+  await loadSgp4();
   const objects = objectsOfPlan(plan);
   const rules = rulesOfPlan(plan);
   const searcher = createSlabSearcher(objects, rules);

@@ -1,0 +1,97 @@
+import { type NativeModule, sgp4Module, writeRun } from './sgp4-module.js';
+import type { Sgp4Records } from './sgp4-records.js';
+
+/** Records that lie in the module's memory at a time: pairs come in turns, and each is asked for several times. */
+const SLOTS = 16;
+const MS_PER_DAY = 86_400_000;
+
+/** Where single states are worked out: for each slot a record, and a run of one record at one time. */
+type Slots = {
+  readonly module: NativeModule;
+  readonly records: number;
+  readonly runs: number;
+  readonly runBytes: number;
+  readonly day: number;
+  /** Position, then velocity. */
+  readonly state: number;
+  readonly error: number;
+  readonly heldPlace: Int32Array;
+  readonly heldRecords: (Sgp4Records | undefined)[];
+};
+
+let slots: Slots | undefined;
+
+/**
+ * The true SGP4 state of one record at one time. It depends on nothing asked before: resonances of deep-space
+ * orbits are integrated anew from the epoch. `loadSgp4` must have been awaited.
+ *
+ * @param place of the record among the records
+ * @param timeMs milliseconds of UTC since 1970-01-01; near the records' origin nanoseconds are told apart
+ * @param out x, y, z (km) and vx, vy, vz (km/s), TEME, from `offset` on
+ * @returns false where SGP4 gives no state, or one of an orbit that its drag term has long eaten up
+ */
+export function recordStateAt(
+  records: Sgp4Records,
+  place: number,
+  timeMs: number,
+  out: Float64Array,
+  offset = 0,
+): boolean {
+  slots ??= createSlots(records.size);
+  const slot = place % SLOTS;
+  const heap = slots.module.HEAPF64;
+  const { size } = records;
+  const at = slots.records / 8 + slot * size;
+  if (slots.heldPlace[slot] !== place || slots.heldRecords[slot] !== records) {
+    const { values } = records;
+    const from = size * place;
+    // Subarrays to copy from would be garbage, one for each.
+    for (let k = 0; k < size; k++) heap[at + k] = values[from + k];
+    slots.heldPlace[slot] = place;
+    slots.heldRecords[slot] = records;
+  }
+  heap[at + records.at.integrated] = 0;
+  heap[slots.day / 8] = (timeMs - records.originMs) / MS_PER_DAY;
+  slots.module._compute(slots.runs + slot * slots.runBytes);
+  if (slots.module.HEAP8[slots.error] !== 0) return false;
+  const state = slots.state / 8;
+  const computed = slots.module.HEAPF64;
+  let sum = 0;
+  for (let k = 0; k < 6; k++) {
+    const value = computed[state + k];
+    out[offset + k] = value;
+    sum += value;
+  }
+  return Number.isFinite(sum);
+}
+
+function createSlots(recordSize: number): Slots {
+  const { module, runBytes } = sgp4Module();
+  const records = module._malloc(8 * recordSize * SLOTS);
+  const runs = module._calloc_one(runBytes * SLOTS);
+  const day = module._malloc(8);
+  const state = module._malloc(48);
+  const error = module._malloc(8);
+  for (let slot = 0; slot < SLOTS; slot++) {
+    writeRun(runs + slot * runBytes, {
+      records: records + 8 * recordSize * slot,
+      recordCount: 1,
+      days: day,
+      dayCount: 1,
+      positions: state,
+      velocities: state + 24,
+      errors: error,
+    });
+  }
+  return {
+    module,
+    records,
+    runs,
+    runBytes,
+    day,
+    state,
+    error,
+    heldPlace: new Int32Array(SLOTS).fill(-1),
+    heldRecords: new Array(SLOTS).fill(undefined),
+  };
+}

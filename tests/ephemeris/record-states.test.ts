@@ -1,0 +1,107 @@
+import { BulkPropagator, createSingleThreadRuntime, EciBaseCalculator } from 'satellite.js';
+import { beforeAll, describe, expect, it } from 'vitest';
+import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
+import { recordStateAt } from '../../src/ephemeris/record-states.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
+import { laySgp4Records, pickRecords } from '../../src/ephemeris/sgp4-records.js';
+import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { syntheticCatalog } from '../synthetic/catalog.js';
+import { seededRandom } from '../synthetic/random.js';
+import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
+
+const START_MS = Date.UTC(2026, 11, 1);
+const DAY_MS = 86_400_000;
+const sets = syntheticCatalog({ seed: 72, count: 400, epochMs: START_MS });
+
+beforeAll(loadSgp4);
+
+describe('states of single records', () => {
+  it('are those of SGP4 in JavaScript, in all kinds of orbits, and missing where they are', () => {
+    const records = sgp4RecordsOf(sets);
+    const own = sets.map(sgp4RecordOf);
+    const random = seededRandom(73);
+    const [found, expected] = [new Float64Array(6), new Float64Array(6)];
+    let compared = 0;
+    let missing = 0;
+    for (let k = 0; k < 4000; k++) {
+      const place = random.integer(sets.length);
+      const timeMs = START_MS + random.between(0, 10 * DAY_MS);
+      const isThere = recordStateAt(records, place, timeMs, found);
+      expect(isThere).toBe(sgp4StateAt(own[place], sets[place].epochMs, timeMs, expected));
+      if (!isThere) {
+        missing++;
+        continue;
+      }
+      compared++;
+      const km = Math.hypot(...[0, 1, 2].map((axis) => found[axis] - expected[axis]));
+      const kmPerS = Math.hypot(...[3, 4, 5].map((axis) => found[axis] - expected[axis]));
+      // Days since the origin resolve a nanosecond: 1e-8 km.
+      expect(km).toBeLessThan(3e-8);
+      expect(kmPerS).toBeLessThan(3e-11);
+    }
+    expect(compared).toBeGreaterThan(3500);
+    expect(missing).toBeGreaterThan(20);
+  });
+
+  it('do not hang on what was asked before, resonances included', () => {
+    const mix = { low: 0, eccentric: 0.5, medium: 0.2, geosynchronous: 0.3, decaying: 0, train: 0 };
+    const deep = sgp4RecordsOf(syntheticCatalog({ seed: 74, count: 60, epochMs: START_MS, mix }));
+    const ask = (place: number, timeMs: number) => {
+      const state = new Float64Array(6);
+      recordStateAt(deep, place, timeMs, state);
+      return [...state];
+    };
+    for (let place = 0; place < 60; place++) {
+      const first = ask(place, START_MS + 20 * DAY_MS);
+      ask(place, START_MS + 20.3 * DAY_MS);
+      ask(place, START_MS - 3 * DAY_MS);
+      expect(ask(place, START_MS + 20 * DAY_MS)).toEqual(first);
+    }
+  });
+
+  it('are of the records that are asked, where two share a place', () => {
+    const records = sgp4RecordsOf(sets);
+    const picked = pickRecords(records, Int32Array.of(7, 3));
+    const [one, other] = [new Float64Array(6), new Float64Array(6)];
+    for (const [place, original] of [
+      [0, 7],
+      [1, 3],
+    ]) {
+      recordStateAt(records, place, START_MS, one);
+      recordStateAt(picked, place, START_MS, one);
+      recordStateAt(records, original, START_MS, other);
+      expect([...one]).toEqual([...other]);
+    }
+  });
+});
+
+describe('laySgp4Records', () => {
+  it('lays every number that satellite.js hands to its own propagator', async () => {
+    const own = sets.map(sgp4RecordOf);
+    const epochs = sets.map(({ epochMs }) => epochMs);
+    const { values, size, count } = laySgp4Records(own, epochs, START_MS);
+    const runtime = await createSingleThreadRuntime();
+    const propagator = new BulkPropagator({
+      runtime,
+      calculators: [new EciBaseCalculator()],
+      satRecsCount: count,
+      datesCount: 1,
+    });
+    propagator.setSatRecs(own);
+    const { satrecsPointer } = propagator as unknown as { satrecsPointer: number };
+    const expected = runtime.module.HEAPF64.slice(satrecsPointer / 8, satrecsPointer / 8 + size * count);
+    const text = runtime.module.UTF8ToString(runtime.module._create_elsetrec_struct_layout_string_pointer());
+    const names: readonly string[] = JSON.parse(text)
+      .filter(([name, type]: [string, string]) => type === 'double' && !name.startsWith('jdsatepoch'))
+      .map(([name]: [string]) => name);
+    const placeOf = new Map<string, number>(
+      JSON.parse(text).map(([name, , offset]: [string, string, number]) => [name, offset / 8]),
+    );
+    expect(names.length).toBeGreaterThan(90);
+    for (let k = 0; k < count; k++) {
+      const laid = names.map((name) => values[size * k + (placeOf.get(name) as number)]);
+      expect(laid).toEqual(names.map((name) => expected[size * k + (placeOf.get(name) as number)]));
+    }
+    propagator.dispose();
+  });
+});
