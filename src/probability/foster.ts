@@ -1,6 +1,7 @@
 import { requireFinite, requireNotNegative, requirePositive } from './arguments.js';
 import { erf, scaledErfc } from './error-function.js';
 import { integrate } from './quadrature.js';
+import { LARGEST_VARIATION, smallDiscProbability, variationOver } from './small-disc.js';
 
 /** The encounter plane in the principal axes of the combined covariance; all lengths in meters. */
 export type FosterEncounter = {
@@ -31,12 +32,13 @@ const RELATIVE_TOLERANCE = 1e-8;
  * Collision Probability and Maneuver Rate for Space Vehicles", NASA JSC-25898, 1992. It assumes a
  * straight relative path, constant covariance, spherical objects and no velocity error.
  *
- * Method: one axis is integrated in closed form (a difference of error functions, formed without
- * cancellation), the other numerically over the angle around the disc. That integrand is periodic and
- * analytic, so that equally spaced angles converge exponentially; where the disc spans many sigmas it is
- * instead integrated adaptively between the points at which it has become negligible. The relative error
- * is below 1e-9 for any aspect ratio and size of the disc as long as the inputs themselves determine the
- * figure that well; below about 1e-308 the result loses digits and ends at 0.
+ * Method: a Taylor series about the center of the disc where the density varies little over it
+ * (`smallDiscProbability`). Elsewhere one axis is integrated in closed form (a difference of error functions,
+ * formed without cancellation), the other numerically over the angle around the disc. That integrand is
+ * periodic and analytic, so that equally spaced angles converge exponentially; where the disc spans many
+ * sigmas it is instead integrated adaptively between the points at which it has become negligible. The
+ * relative error is below 1e-9 for any aspect ratio and size of the disc as long as the inputs themselves
+ * determine the figure that well; below about 1e-308 the result loses digits and ends at 0.
  *
  * @returns probability from 0 to 1
  * @throws RangeError if a sigma is not positive, the radius is negative, or any argument is not finite
@@ -64,11 +66,19 @@ export function discProbability(
   const swap = sigmaX < sigmaY;
   const missWide = Math.abs(swap ? missY : missX);
   const missNarrow = Math.abs(swap ? missX : missY);
+  const sigmaWide = swap ? sigmaY : sigmaX;
+  const sigmaNarrow = swap ? sigmaX : sigmaY;
+  const x = missWide / sigmaWide;
+  const y = missNarrow / sigmaNarrow;
+  const variation = variationOver(x, y, radius / sigmaWide, radius / sigmaNarrow);
+  if (variation <= LARGEST_VARIATION) {
+    return smallDiscProbability(x, y, radius / sigmaWide, radius / sigmaNarrow, variation);
+  }
   const distance = Math.hypot(missX, missY);
   // A sigma below the rounding of the lengths counts as that rounding.
   const least = 1e-13 * (radius + distance);
-  const wide = Math.max(swap ? sigmaY : sigmaX, least);
-  const narrow = Math.max(swap ? sigmaX : sigmaY, least);
+  const wide = Math.max(sigmaWide, least);
+  const narrow = Math.max(sigmaNarrow, least);
   if (distance - radius > CERTAIN_SIGMAS * wide) return 0;
   if (radius - distance > CERTAIN_SIGMAS * wide) return 1;
   // How strongly the exponent of the Gaussian varies over the disc decides how many angles it takes.
