@@ -4,7 +4,7 @@ import { requireFinite, requireNotNegative, shown } from './arguments.js';
 import { covarianceOutOf, requireCovariance, sumOf } from './covariance.js';
 import { type EncounterPlane, encounterPlane } from './encounter-plane.js';
 import { discProbability } from './foster.js';
-import { maximumProbability } from './maximum.js';
+import { peakProbability } from './maximum.js';
 
 /** One object at, or within rounding of, the time of closest approach. */
 export type EncounterObject = {
@@ -91,7 +91,19 @@ export function assessInFull(
     covarianceOutOf(frame2, object2.covarianceRtnM2),
   );
   const plane = encounterPlane(positionM, velocityMPerS, covarianceM2);
-  const maximum = withMaximum && plane ? maximumProbability({ ...plane, hardBodyRadiusM }) : undefined;
+  const probability =
+    plane && discProbability(plane.sigmaXM, plane.sigmaYM, plane.missXM, plane.missYM, hardBodyRadiusM);
+  const maximum =
+    withMaximum && plane !== undefined && probability !== undefined
+      ? peakProbability(
+          plane.sigmaXM,
+          plane.sigmaYM,
+          plane.missXM,
+          plane.missYM,
+          hardBodyRadiusM,
+          probability,
+        )
+      : undefined;
   const speed = norm(velocityMPerS);
   return {
     missDistanceM: norm(positionM),
@@ -99,8 +111,7 @@ export function assessInFull(
     sigmaAlongM: Math.sqrt(Math.max(0, dot(velocityMPerS, rotate(covarianceM2, velocityMPerS)))) / speed,
     relativePositionRtnM: rotate(frame1, positionM),
     relativeVelocityRtnMPerS: rotate(frame1, velocityMPerS),
-    collisionProbability:
-      plane && discProbability(plane.sigmaXM, plane.sigmaYM, plane.missXM, plane.missYM, hardBodyRadiusM),
+    collisionProbability: probability,
     collisionProbabilityMax: maximum?.probability,
     mahalanobisDistance: plane?.mahalanobisDistance,
     plane,

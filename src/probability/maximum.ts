@@ -1,4 +1,5 @@
 import { discProbability, type FosterEncounter, fosterProbability } from './foster.js';
+import { peakScaleOf } from './peak-scale.js';
 
 export type MaximumProbability = {
   /** Largest probability over all scales of the sigmas. */
@@ -23,35 +24,55 @@ const LOG_SCALE_TOLERANCE = 1e-6;
  * the miss inside the radius it rises to 1 as k goes to 0, and with the miss on the circle to 1/2: these
  * limits are returned with `sigmaScale` 0. A radius of 0 gives probability 0 at the limit of small discs.
  *
+ * For a small disc the peak is where the rate of the probability is 0 (`peakScaleOf`), for others it is searched
+ * for. That there is one peak only is taken from trial, not proved.
+ *
  * @throws RangeError as `fosterProbability`
  */
 export function maximumProbability(encounter: FosterEncounter): MaximumProbability {
   const given = fosterProbability(encounter);
   const { sigmaXM, sigmaYM, missXM, missYM, hardBodyRadiusM } = encounter;
-  const distance = Math.hypot(missXM, missYM);
-  const mahalanobis = Math.hypot(missXM / sigmaXM, missYM / sigmaYM);
-  if (hardBodyRadiusM === 0) return { probability: 0, sigmaScale: mahalanobis * Math.SQRT1_2 };
-  if (distance < hardBodyRadiusM) return { probability: 1, sigmaScale: 0 };
-  if (distance === hardBodyRadiusM) return { probability: 0.5, sigmaScale: 0 };
-
-  const at = (logScale: number) => {
-    const scale = Math.exp(logScale);
-    return discProbability(sigmaXM * scale, sigmaYM * scale, missXM, missYM, hardBodyRadiusM);
-  };
-  // Along one direction from the center the disc spans r1 to r2 and exp(-r1^2/2k^2) - exp(-r2^2/2k^2)
-  // peaks at k^2 = (r2^2 - r1^2) / (2 ln(r2^2/r1^2)); the direction of the miss is a good first guess.
-  const ratio = hardBodyRadiusM / distance;
-  const logRatio = 2 * Math.log((1 + ratio) / (1 - ratio));
-  const squares = logRatio > 1e-6 && Number.isFinite(logRatio) ? (4 * ratio) / logRatio : 1;
-  const found = climb(at, Math.log(mahalanobis) + 0.5 * Math.log(0.5 * squares));
-  const scale = Math.exp(found.x);
-  return given > found.value
-    ? { probability: given, sigmaScale: 1 }
-    : { probability: found.value, sigmaScale: scale };
+  return peakProbability(sigmaXM, sigmaYM, missXM, missYM, hardBodyRadiusM, given);
 }
 
-/** The peak of a function with one peak: brackets it from `start`, then Brent's method. */
-function climb(f: (x: number) => number, start: number): { x: number; value: number } {
+/**
+ * `maximumProbability` without the checks, for callers that have made them.
+ *
+ * @param given the probability with the sigmas as they are
+ */
+export function peakProbability(
+  sigmaX: number,
+  sigmaY: number,
+  missX: number,
+  missY: number,
+  radius: number,
+  given: number,
+): MaximumProbability {
+  const mahalanobis = Math.hypot(missX / sigmaX, missY / sigmaY);
+  if (radius === 0) return { probability: 0, sigmaScale: mahalanobis * Math.SQRT1_2 };
+  const distance = Math.hypot(missX, missY);
+  if (distance < radius) return { probability: 1, sigmaScale: 0 };
+  if (distance === radius) return { probability: 0.5, sigmaScale: 0 };
+
+  const atScale = (scale: number) => discProbability(sigmaX * scale, sigmaY * scale, missX, missY, radius);
+  const sigmaScale =
+    peakScaleOf(sigmaX, sigmaY, missX, missY, radius) ?? climbToPeak(atScale, mahalanobis, radius / distance);
+  const probability = atScale(sigmaScale);
+  return given > probability ? { probability: given, sigmaScale: 1 } : { probability, sigmaScale };
+}
+
+/** @param ratio radius over distance of the miss */
+function climbToPeak(atScale: (scale: number) => number, mahalanobis: number, ratio: number): number {
+  // Along one direction from the center the disc spans r1 to r2 and exp(-r1^2/2k^2) - exp(-r2^2/2k^2)
+  // peaks at k^2 = (r2^2 - r1^2) / (2 ln(r2^2/r1^2)); the direction of the miss is a good first guess.
+  const logRatio = 2 * Math.log((1 + ratio) / (1 - ratio));
+  const squares = logRatio > 1e-6 && Number.isFinite(logRatio) ? (4 * ratio) / logRatio : 1;
+  const start = Math.log(mahalanobis) + 0.5 * Math.log(0.5 * squares);
+  return Math.exp(climb((logScale) => atScale(Math.exp(logScale)), start));
+}
+
+/** Where a function with one peak has it: brackets it from `start`, then Brent's method. */
+function climb(f: (x: number) => number, start: number): number {
   let step = STEP;
   let x = start;
   let value = f(x);
@@ -84,13 +105,7 @@ function climb(f: (x: number) => number, start: number): { x: number; value: num
  * Brent's maximization: parabolas through the three best points, golden section where they fail
  * (R. P. Brent, Algorithms for Minimization without Derivatives, Prentice-Hall 1973, chapter 5).
  */
-function brent(
-  f: (x: number) => number,
-  from: number,
-  guess: number,
-  to: number,
-  atGuess: number,
-): { x: number; value: number } {
+function brent(f: (x: number) => number, from: number, guess: number, to: number, atGuess: number): number {
   const golden = 0.5 * (3 - Math.sqrt(5));
   let low = from;
   let high = to;
@@ -150,5 +165,5 @@ function brent(
       }
     }
   }
-  return { x, value: fx };
+  return x;
 }
