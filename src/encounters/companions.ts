@@ -1,5 +1,8 @@
+import { createBulkNodes } from '../ephemeris/bulk-nodes.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
-import { type RefinedObject, relativeStateAt, slowTcas } from './refine.js';
+import type { Sgp4Records } from '../ephemeris/sgp4-records.js';
+import { slowMinima } from './refine.js';
+import type { ObjectPair } from './refine-on-sgp4.js';
 import type { SearchObjects, SearchRules } from './search-problem.js';
 
 /** Companions never part by more than this, km, or by twice the miss distance where that is more. */
@@ -11,6 +14,8 @@ const SAMPLE_MS = 300_000;
 /** Two satellites that drift past each other in a short window part within days: they are an encounter. */
 const LEAST_FOLLOWED_MS = 3 * 86_400_000;
 const CLOSEST_GRID_MS = 20_000;
+/** Samples that all pairs are followed through at a time. */
+const SAMPLES_AT_A_TIME = 32;
 
 /** Two objects that fly together for the whole window. */
 export type Companions = {
@@ -35,12 +40,18 @@ export type Companions = {
  */
 export function findCompanions(objects: SearchObjects, rules: SearchRules): Companions[] {
   const limitKm = Math.max(COMPANION_LIMIT_KM, 2 * rules.missKm);
-  const companions: Companions[] = [];
-  for (const [first, second] of closePairsAt(rules.startMs, limitKm, objects, rules)) {
-    const pair = followPair(first, second, limitKm, objects, rules);
-    if (pair !== undefined && pair.closestKm <= rules.missKm) companions.push(pair);
-  }
-  return companions.sort((a, b) => a.first - b.first || a.second - b.second);
+  const { startMs, endMs, missKm } = rules;
+  const followedToMs = startMs + Math.max(endMs - startMs, LEAST_FOLLOWED_MS);
+  const pairs = closePairsAt(startMs, limitKm, objects, rules);
+  const flights = flightsTogether(objects.records, pairs, { startMs, endMs, followedToMs }, (distanceKm) =>
+    distanceKm <= limitKm ? COMPANION_SPEED_KM_PER_S : Number.NaN,
+  );
+  return pairs
+    .flatMap((pair, k) => {
+      const flight = flights[k];
+      return flight !== undefined && flight.closestKm <= missKm ? [{ ...pair, ...flight }] : [];
+    })
+    .sort((a, b) => a.first - b.first || a.second - b.second);
 }
 
 /** Pairs within the limit and slow at one time: objects sorted along one axis, each compared with the next ones. */
@@ -49,7 +60,7 @@ function closePairsAt(
   limitKm: number,
   objects: SearchObjects,
   rules: SearchRules,
-): [number, number][] {
+): ObjectPair[] {
   const states = new Float64Array(6 * objects.count);
   const alive: number[] = [];
   for (let i = 0; i < objects.count; i++) {
@@ -57,7 +68,7 @@ function closePairsAt(
     if (recordStateAt(objects.records, i, timeMs, states, 6 * i)) alive.push(i);
   }
   alive.sort((a, b) => states[6 * a] - states[6 * b] || a - b);
-  const pairs: [number, number][] = [];
+  const pairs: ObjectPair[] = [];
   for (let k = 0; k < alive.length; k++) {
     const a = 6 * alive[k];
     for (let m = k + 1; m < alive.length && states[6 * alive[m]] - states[a] <= limitKm; m++) {
@@ -74,79 +85,136 @@ function closePairsAt(
       const second = Math.max(alive[k], alive[m]);
       if (first >= objects.primaryCount) continue;
       if (second < objects.primaryCount && !rules.withinPrimaries) continue;
-      pairs.push([first, second]);
+      pairs.push({ first, second });
     }
   }
   return pairs;
 }
 
-const relative = new Float64Array(6);
+/** How two objects fly together, sampled every five minutes. */
+export type Flight = Omit<Companions, 'first' | 'second'>;
 
-function followPair(
-  first: number,
-  second: number,
-  limitKm: number,
-  objects: SearchObjects,
-  { startMs, endMs }: SearchRules,
-): Companions | undefined {
-  const side = (place: number) => ({ records: objects.records, place });
-  const followedToMs = startMs + Math.max(endMs - startMs, LEAST_FOLLOWED_MS);
-  const together = flightTogether(
-    side(first),
-    side(second),
-    { startMs, endMs, followedToMs },
-    (distanceKm) => (distanceKm <= limitKm ? COMPANION_SPEED_KM_PER_S : Number.NaN),
+type Span = { readonly startMs: number; readonly endMs: number; readonly followedToMs: number };
+
+/**
+ * How pairs of objects fly together. `loadSgp4` must have been awaited.
+ *
+ * @param pairs places among the records
+ * @param span figures are those from `startMs` to `endMs`; a pair must hold together to `followedToMs`
+ * @param fastestAt highest relative speed allowed at a distance, km/s; NaN where the distance is too large
+ * @returns for each pair, `undefined` where a sample breaks that, or SGP4 gives no state
+ */
+export function flightsTogether(
+  records: Sgp4Records,
+  pairs: readonly ObjectPair[],
+  span: Span,
+  fastestAt: (distanceKm: number) => number,
+): (Flight | undefined)[] {
+  const { startMs, followedToMs } = span;
+  const samples = Math.max(1, Math.ceil((followedToMs - startMs) / SAMPLE_MS));
+  const timesMs = Array.from(
+    { length: samples + 1 },
+    (_, k) => startMs + ((followedToMs - startMs) * k) / samples,
   );
-  return together && { first, second, ...together };
+  const figures = pairs.map(() => newFigures(startMs));
+  // Most of those that part are apart at the end: a few looks from there on spare all the others.
+  const few = timesMs.filter((_, k) => k % SAMPLES_AT_A_TIME === 0 || k === samples).reverse();
+  let left = follow(records, pairs, [...pairs.keys()], few, fastestAt, () => undefined);
+  for (let from = 0; from <= samples && left.length > 0; from += SAMPLES_AT_A_TIME) {
+    const times = timesMs.slice(from, from + SAMPLES_AT_A_TIME);
+    left = follow(records, pairs, left, times, fastestAt, (k, timeMs, distanceKm, speedKmPerS) => {
+      if (timeMs <= span.endMs) take(figures[k], timeMs, distanceKm, speedKmPerS);
+    });
+  }
+  const flights: (Flight | undefined)[] = pairs.map(() => undefined);
+  for (const k of left) flights[k] = withClosest(records, pairs[k], figures[k], span);
+  return flights;
 }
 
 /**
- * How two objects fly together, sampled every five minutes.
+ * Follows some of the pairs through a few times.
  *
- * @param span figures are those from `startMs` to `endMs`; the pair must hold together to `followedToMs`
- * @param fastestAt highest relative speed allowed at a distance, km/s; NaN where the distance is too large
- * @returns `undefined` where a sample breaks that, or SGP4 gives no state
+ * @param take told of every pair and time that holds
+ * @returns those of the pairs that no time breaks
  */
-export function flightTogether(
-  object1: RefinedObject,
-  object2: RefinedObject,
-  span: { readonly startMs: number; readonly endMs: number; readonly followedToMs: number },
+function follow(
+  records: Sgp4Records,
+  pairs: readonly ObjectPair[],
+  followed: readonly number[],
+  timesMs: readonly number[],
   fastestAt: (distanceKm: number) => number,
-): Omit<Companions, 'first' | 'second'> | undefined {
-  const { startMs, endMs, followedToMs } = span;
-  const distanceAt = (timeMs: number) =>
-    relativeStateAt(object1, object2, timeMs, relative)
-      ? Math.hypot(relative[0], relative[1], relative[2])
-      : Number.NaN;
-  let closestMs = startMs;
-  let closestKm = Number.POSITIVE_INFINITY;
-  let farthestKm = 0;
-  let slowest = Number.POSITIVE_INFINITY;
-  let fastest = 0;
-  const samples = Math.max(1, Math.ceil((followedToMs - startMs) / SAMPLE_MS));
-  for (let k = 0; k <= samples; k++) {
-    const timeMs = startMs + ((followedToMs - startMs) * k) / samples;
-    const distance = distanceAt(timeMs);
-    const speed = Math.hypot(relative[3], relative[4], relative[5]);
-    // Written so that a NaN breaks it, too.
-    if (!(speed <= fastestAt(distance))) return undefined;
-    if (timeMs > endMs) continue;
-    if (distance < closestKm) {
-      closestKm = distance;
-      closestMs = timeMs;
-    }
-    farthestKm = Math.max(farthestKm, distance);
-    slowest = Math.min(slowest, speed);
-    fastest = Math.max(fastest, speed);
+  take: (pair: number, timeMs: number, distanceKm: number, speedKmPerS: number) => void,
+): number[] {
+  const members = [...new Set(followed.flatMap((k) => [pairs[k].first, pairs[k].second]))];
+  const rowOf = new Map(members.map((place, row) => [place, row]));
+  const bulk = createBulkNodes(records, members, timesMs.length);
+  const { position, velocity, error } = bulk.statesAt(timesMs);
+  const holding = followed.filter((k) => {
+    const first = timesMs.length * (rowOf.get(pairs[k].first) as number);
+    const second = timesMs.length * (rowOf.get(pairs[k].second) as number);
+    return timesMs.every((timeMs, time) => {
+      const a = first + time;
+      const b = second + time;
+      if (error[a] !== 0 || error[b] !== 0) return false;
+      const distance = distanceBetween(position, 3 * a, 3 * b);
+      const speed = distanceBetween(velocity, 3 * a, 3 * b);
+      // Written so that a NaN breaks it, too.
+      if (!(speed <= fastestAt(distance))) return false;
+      take(k, timeMs, distance, speed);
+      return true;
+    });
+  });
+  bulk.dispose();
+  return holding;
+}
+
+function distanceBetween(vectors: Float64Array, a: number, b: number): number {
+  return Math.hypot(
+    vectors[b] - vectors[a],
+    vectors[b + 1] - vectors[a + 1],
+    vectors[b + 2] - vectors[a + 2],
+  );
+}
+
+type Figures = { -readonly [K in keyof Flight]: Flight[K] };
+
+function newFigures(startMs: number): Figures {
+  return {
+    closestMs: startMs,
+    closestKm: Number.POSITIVE_INFINITY,
+    farthestKm: 0,
+    slowestKmPerS: Number.POSITIVE_INFINITY,
+    fastestKmPerS: 0,
+  };
+}
+
+function take(figures: Figures, timeMs: number, distanceKm: number, speedKmPerS: number): void {
+  if (distanceKm < figures.closestKm) {
+    figures.closestKm = distanceKm;
+    figures.closestMs = timeMs;
   }
+  figures.farthestKm = Math.max(figures.farthestKm, distanceKm);
+  figures.slowestKmPerS = Math.min(figures.slowestKmPerS, speedKmPerS);
+  figures.fastestKmPerS = Math.max(figures.fastestKmPerS, speedKmPerS);
+}
+
+/** Takes the minima about the closest sample into account. */
+function withClosest(
+  records: Sgp4Records,
+  { first, second }: ObjectPair,
+  figures: Flight,
+  { startMs, endMs }: Span,
+): Flight {
+  const object1 = { records, place: first };
+  const object2 = { records, place: second };
+  let { closestMs, closestKm } = figures;
   const fromMs = Math.max(startMs, closestMs - SAMPLE_MS);
   const toMs = Math.min(endMs, closestMs + SAMPLE_MS);
-  for (const timeMs of slowTcas(object1, object2, fromMs, toMs, CLOSEST_GRID_MS)) {
-    const distance = distanceAt(timeMs);
-    if (distance < closestKm) {
-      closestKm = distance;
-      closestMs = timeMs;
+  for (const { tcaMs, missKm } of slowMinima(object1, object2, fromMs, toMs, CLOSEST_GRID_MS)) {
+    if (missKm < closestKm) {
+      closestKm = missKm;
+      closestMs = tcaMs;
     }
   }
-  return { closestMs, closestKm, farthestKm, slowestKmPerS: slowest, fastestKmPerS: fastest };
+  return { ...figures, closestMs, closestKm };
 }

@@ -1,14 +1,8 @@
 import type { ClosestApproach } from './closest-approach.js';
-import {
-  createRecentStates,
-  type RefinedObject,
-  refineFastTca,
-  relativeStateAt,
-  slowTcas,
-} from './refine.js';
+import { createRecentStates, type Minimum, type RefinedObject, refineFastTca, slowMinima } from './refine.js';
 import type { SearchObjects, SearchRules } from './search-problem.js';
 
-/** Grid of the sign changes of a slow pair. */
+/** Grid of the samples of a slow pair. */
 const SLOW_GRID_MS = 40_000;
 /** A refined TCA is taken by the stretch of time that holds it; this much over its edges covers rounding. */
 const EDGE_MS = 0.01;
@@ -25,8 +19,6 @@ export type Sgp4Refiner = {
 export type ObjectPair = { readonly first: number; readonly second: number };
 
 export type Stretch = { readonly fromMs: number; readonly toMs: number };
-
-const relative = new Float64Array(6);
 
 /**
  * Finds the closest approach of a pair whose distance has one minimum in a stretch of time.
@@ -45,8 +37,10 @@ export function refineFastPair(
   const object1 = refinedObject(objects, pair.first);
   const object2 = refinedObject(objects, pair.second);
   const reachMs = stretch.toMs - stretch.fromMs;
-  const tcaMs = refineFastTca(object1, object2, guessMs, reachMs, rules.missKm);
-  accept(refiner, pair, object1, object2, tcaMs, stretch, approaches);
+  const minimum = refineFastTca(object1, object2, guessMs, reachMs, rules.missKm);
+  if (minimum === 'none') return;
+  if (minimum === 'unsettled') refineSlowPair(refiner, pair, stretch, approaches);
+  else accept(refiner, pair, minimum, stretch, approaches);
 }
 
 /** Finds all closest approaches of a pair in a stretch of time. */
@@ -58,8 +52,10 @@ export function refineSlowPair(
 ): void {
   const object1 = objectWithRecentStates(refiner, pair.first);
   const object2 = objectWithRecentStates(refiner, pair.second);
-  for (const tcaMs of slowTcas(object1, object2, stretch.fromMs, stretch.toMs, SLOW_GRID_MS)) {
-    accept(refiner, pair, object1, object2, tcaMs, stretch, approaches);
+  const fromMs = stretch.fromMs - EDGE_MS;
+  const toMs = stretch.toMs + EDGE_MS;
+  for (const minimum of slowMinima(object1, object2, fromMs, toMs, SLOW_GRID_MS)) {
+    accept(refiner, pair, minimum, stretch, approaches);
   }
 }
 
@@ -81,9 +77,7 @@ function objectWithRecentStates({ objects, recent }: Sgp4Refiner, object: number
 function accept(
   { objects, rules }: Sgp4Refiner,
   { first, second }: ObjectPair,
-  object1: RefinedObject,
-  object2: RefinedObject,
-  tcaMs: number,
+  { tcaMs, missKm }: Minimum,
   { fromMs, toMs }: Stretch,
   approaches: ClosestApproach[],
 ): void {
@@ -91,7 +85,5 @@ function accept(
   if (tcaMs < rules.startMs || tcaMs >= rules.endMs) return;
   if (tcaMs < objects.validFromMs[first] || tcaMs >= objects.validToMs[first]) return;
   if (tcaMs < objects.validFromMs[second] || tcaMs >= objects.validToMs[second]) return;
-  if (!relativeStateAt(object1, object2, tcaMs, relative)) return;
-  const missKm = Math.sqrt(relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2);
   if (missKm <= rules.missKm) approaches.push({ first, second, tcaMs, missKm });
 }

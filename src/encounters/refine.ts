@@ -92,31 +92,34 @@ export function closingRateAt(object1: RefinedObject, object2: RefinedObject, ti
   return (after - before) / (4 * DIFFERENCE_S);
 }
 
-/**
- * Sign of `closingRateAt`, from one state a side where SGP4's velocity is good enough to tell.
- *
- * @returns NaN where SGP4 gives no state
- */
-function closingSignAt(object1: RefinedObject, object2: RefinedObject, timeMs: number): number {
-  if (!relativeStateAt(object1, object2, timeMs, relative)) return Number.NaN;
-  const distance = Math.sqrt(relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2);
-  const rate = relative[0] * relative[3] + relative[1] * relative[4] + relative[2] * relative[5];
-  if (Math.abs(rate) > distance * velocityDefectKmPerS(object1, object2)) return Math.sign(rate);
-  return Math.sign(closingRateAt(object1, object2, timeMs));
-}
-
-/** TCA to the microsecond, so that the way there leaves no trace in the result. */
+/** TCA to the microsecond. */
 export function roundTca(timeMs: number): number {
   return Math.round(timeMs * 1000) / 1000;
 }
 
+/** A minimum of the distance of a pair. */
+export type Minimum = { readonly tcaMs: number; readonly missKm: number };
+
+/** What is left of the way where the last steps start: small beside the grids that those start from. */
+const NEARER_MS = 0.01;
+const NEAR_MS = 1;
+const POSITIONS_GRID_MS = 1000;
+/** From this speed on a pair may count as fast in a shorter step: it is settled alike there and here. */
+const LEAST_FAST_KM_PER_S = 0.004;
+/** A Newton step's error is a bound on its size, of which nothing must be seen; a secant's is far smaller than that. */
+const NEWTON_DOUBT = 30;
+/** What rounding leaves uncertain of a position: angles of hundreds of revolutions resolve no more. */
+const POSITION_NOISE_KM = 1e-9;
+const MOST_STEPS = 20;
+
 /**
- * Time of closest approach of a pair whose distance is convex around `guessMs`, by Newton's method on true
- * SGP4 states.
+ * The closest approach of a pair whose distance is convex around `guessMs`, on true SGP4 states: near it by
+ * secants of r . v, then once more from the nearest whole millisecond (a whole second where positions alone must
+ * tell), so that the way there leaves no trace in the result.
  *
  * @param widestKm approaches that are surely wider are not worth going on with
- * @returns the time, rounded to a microsecond, or NaN where SGP4 gives no state on the way there, the
- * iteration leaves `reachMs` around the guess, or the approach is wider than `widestKm`
+ * @returns its time, rounded to a microsecond, and distance; 'none' where SGP4 gives no state on the way there or
+ * the approach is wider than `widestKm`; 'unsettled' where the steps lead nowhere within `reachMs` of the guess
  */
 export function refineFastTca(
   object1: RefinedObject,
@@ -124,41 +127,106 @@ export function refineFastTca(
   guessMs: number,
   reachMs: number,
   widestKm = Number.POSITIVE_INFINITY,
-): number {
+): Minimum | 'none' | 'unsettled' {
   const defectKmPerS = velocityDefectKmPerS(object1, object2);
   let timeMs = guessMs;
-  let speed2 = 0;
-  let distance = 0;
-  for (let iteration = 0; iteration < 20; iteration++) {
-    if (!relativeStateAt(object1, object2, timeMs, relative)) return Number.NaN;
-    const x = relative[0];
-    const y = relative[1];
-    const z = relative[2];
-    const vx = relative[3];
-    const vy = relative[4];
-    const vz = relative[5];
-    speed2 = vx * vx + vy * vy + vz * vz;
-    distance = Math.sqrt(x * x + y * y + z * z);
-    const stepS = -(x * vx + y * vy + z * vz) / speed2;
+  let beforeMs = Number.NaN;
+  let rateBefore = Number.NaN;
+  for (let step = 0; step < MOST_STEPS; step++) {
+    if (!relativeStateAt(object1, object2, timeMs, relative)) return 'none';
+    const { distance, speed2, rate, stepS } = newtonStep(relative);
     if (Math.abs(stepS) < STRAIGHT_S) {
       const straight2 = distance * distance - stepS * stepS * speed2;
       const surely = widestKm + STRAIGHT_SLACK_KM;
-      if (straight2 > surely * surely) return Number.NaN;
+      if (straight2 > surely * surely) return 'none';
     }
+    const secantMs = step === 0 ? stepS * MS_PER_S : (-rate * (timeMs - beforeMs)) / (rate - rateBefore);
+    beforeMs = timeMs;
+    rateBefore = rate;
+    timeMs += secantMs;
+    if (!(Math.abs(timeMs - guessMs) <= reachMs)) return 'unsettled';
+    const leftMs = Math.abs(secantMs) * newtonError(distance, speed2, defectKmPerS);
+    if (distance * defectKmPerS > speed2 * TOLERATED_SHIFT_S) {
+      if (leftMs < NEAR_MS) return settledOnPositions(object1, object2, timeMs, reachMs, defectKmPerS);
+    } else if (leftMs < NEARER_MS) {
+      return settledOnVelocities(object1, object2, timeMs, defectKmPerS);
+    }
+  }
+  return 'unsettled';
+}
+
+function newtonStep(state: Float64Array) {
+  const x = state[0];
+  const y = state[1];
+  const z = state[2];
+  const vx = state[3];
+  const vy = state[4];
+  const vz = state[5];
+  const speed2 = vx * vx + vy * vy + vz * vz;
+  const rate = x * vx + y * vy + z * vz;
+  return { distance: Math.sqrt(x * x + y * y + z * z), speed2, rate, stepS: -rate / speed2 };
+}
+
+function settledOnVelocities(
+  object1: RefinedObject,
+  object2: RefinedObject,
+  nearMs: number,
+  defectKmPerS: number,
+): Minimum | 'none' | 'unsettled' {
+  let timeMs = Math.round(nearMs);
+  for (let step = 0; step < MOST_STEPS; step++) {
+    if (!relativeStateAt(object1, object2, timeMs, relative)) return 'none';
+    const { distance, speed2, stepS } = newtonStep(relative);
     const stepMs = stepS * MS_PER_S;
     timeMs += stepMs;
-    if (!(Math.abs(timeMs - guessMs) <= reachMs)) return Number.NaN;
-    if (Math.abs(stepMs) * newtonError(distance, speed2, defectKmPerS) < SETTLED_MS) break;
+    if (Math.abs(stepMs) * newtonError(distance, speed2, defectKmPerS) >= SETTLED_MS) continue;
+    // Over a millisecond the path is straight.
+    const missKm = Math.sqrt(Math.max(0, distance * distance - stepS * stepS * speed2));
+    return { tcaMs: roundTca(timeMs), missKm };
   }
-  if (distance * defectKmPerS > speed2 * TOLERATED_SHIFT_S) {
-    for (let iteration = 0; iteration < 6; iteration++) {
-      const stepMs = (-closingRateAt(object1, object2, timeMs) / speed2) * MS_PER_S;
-      timeMs += stepMs;
-      if (!(Math.abs(timeMs - guessMs) <= reachMs)) return Number.NaN;
-      if (Math.abs(stepMs) * newtonError(distance, speed2, defectKmPerS) < SETTLED_MS) break;
-    }
+  return 'unsettled';
+}
+
+/** Where SGP4's velocities are not good enough, they give the first step, and secants of the closing rate the rest. */
+function settledOnPositions(
+  object1: RefinedObject,
+  object2: RefinedObject,
+  nearMs: number,
+  reachMs: number,
+  defectKmPerS: number,
+): Minimum | 'none' | 'unsettled' {
+  let timeMs = POSITIONS_GRID_MS * Math.round(nearMs / POSITIONS_GRID_MS);
+  if (!relativeStateAt(object1, object2, timeMs, relative)) return 'none';
+  const { distance, speed2, stepS } = newtonStep(relative);
+  timeMs += stepS * MS_PER_S;
+  let rate = closingRateAt(object1, object2, timeMs);
+  let stepMs = (-rate / speed2) * MS_PER_S;
+  const settledMs = Math.max(SETTLED_MS, (MS_PER_S * distance * POSITION_NOISE_KM) / (DIFFERENCE_S * speed2));
+  let leftMs = NEWTON_DOUBT * Math.abs(stepMs) * newtonError(distance, speed2, defectKmPerS);
+  for (let step = 0; step < MOST_STEPS && leftMs >= settledMs; step++) {
+    const beforeMs = timeMs;
+    const rateBefore = rate;
+    timeMs += stepMs;
+    if (!(Math.abs(timeMs - nearMs) <= reachMs)) return 'unsettled';
+    rate = closingRateAt(object1, object2, timeMs);
+    stepMs = (-rate * (timeMs - beforeMs)) / (rate - rateBefore);
+    leftMs = Math.abs(stepMs);
   }
-  return roundTca(timeMs);
+  if (!(leftMs < settledMs)) return 'unsettled';
+  return minimumAt(object1, object2, roundTca(timeMs + stepMs)) ?? 'none';
+}
+
+function minimumAt(object1: RefinedObject, object2: RefinedObject, tcaMs: number): Minimum | undefined {
+  if (!relativeStateAt(object1, object2, tcaMs, relative)) return undefined;
+  return { tcaMs, missKm: Math.sqrt(squareOf(relative)) };
+}
+
+function speedOf(state: Float64Array): number {
+  return Math.sqrt(state[3] * state[3] + state[4] * state[4] + state[5] * state[5]);
+}
+
+function squareOf(state: Float64Array): number {
+  return state[0] * state[0] + state[1] * state[1] + state[2] * state[2];
 }
 
 /**
@@ -171,29 +239,60 @@ function newtonError(distanceKm: number, speed2: number, defectKmPerS: number): 
 }
 
 /**
- * All local minima of the distance of a slow pair in [fromMs, toMs): sign changes of the closing rate from
- * negative to positive on a grid of `gridMs`, then a root in between. Two minima that a maximum less than a grid
- * step long divides count as one.
+ * All local minima of the distance of a slow pair from `fromMs` to `toMs`: samples at whole multiples of
+ * `gridMs`, so that other stretches of time find the same, then a root of the closing rate between the neighbors
+ * of each that is lower than these. Two minima that a maximum less than a grid step long divides count as one.
  */
-export function slowTcas(
+export function slowMinima(
   object1: RefinedObject,
   object2: RefinedObject,
   fromMs: number,
   toMs: number,
   gridMs: number,
-): number[] {
-  const found: number[] = [];
-  const steps = Math.max(1, Math.ceil((toMs - fromMs) / gridMs));
-  let beforeMs = fromMs;
-  let before = closingSignAt(object1, object2, beforeMs);
-  for (let k = 1; k <= steps; k++) {
-    const afterMs = fromMs + ((toMs - fromMs) * k) / steps;
-    const after = closingSignAt(object1, object2, afterMs);
-    if (before < 0 && after >= 0) found.push(roundTca(closestBetween(object1, object2, beforeMs, afterMs)));
-    beforeMs = afterMs;
-    before = after;
+): Minimum[] {
+  const found: Minimum[] = [];
+  const first = Math.ceil(fromMs / gridMs) - 1;
+  const last = Math.floor(toMs / gridMs) + 1;
+  let before = squareAt(object1, object2, (first - 1) * gridMs);
+  let here = squareAt(object1, object2, first * gridMs);
+  for (let sample = first; sample <= last; sample++) {
+    const after = squareAt(object1, object2, (sample + 1) * gridMs);
+    if (before > here && here <= after) {
+      const minimum = minimumAbout(alone(object1), alone(object2), sample * gridMs, gridMs);
+      if (minimum !== undefined && minimum.tcaMs >= fromMs && minimum.tcaMs <= toMs) found.push(minimum);
+    }
+    before = here;
+    here = after;
   }
   return found;
+}
+
+/** Without its latest states: those of a root are asked for once, and would drive out the samples. */
+function alone({ records, place }: RefinedObject): RefinedObject {
+  return { records, place };
+}
+
+/** NaN where SGP4 gives no state. */
+function squareAt(object1: RefinedObject, object2: RefinedObject, timeMs: number): number {
+  return relativeStateAt(object1, object2, timeMs, relative) ? squareOf(relative) : Number.NaN;
+}
+
+/** The minimum next to a sample that is lower than both of its neighbors. */
+function minimumAbout(
+  object1: RefinedObject,
+  object2: RefinedObject,
+  middleMs: number,
+  gridMs: number,
+): Minimum | undefined {
+  const rate = closingRateAt(object1, object2, middleMs);
+  const rootMs =
+    rate < 0
+      ? closestBetween(object1, object2, middleMs, rate, middleMs + gridMs, Number.NaN)
+      : closestBetween(object1, object2, middleMs - gridMs, Number.NaN, middleMs, rate);
+  const minimum = minimumAt(object1, object2, roundTca(rootMs));
+  if (minimum === undefined || speedOf(relative) < LEAST_FAST_KM_PER_S) return minimum;
+  const settled = refineFastTca(object1, object2, rootMs, POSITIONS_GRID_MS);
+  return typeof settled === 'string' ? minimum : settled;
 }
 
 const MOST_ROOT_STEPS = 60;
@@ -202,23 +301,28 @@ const MOST_ROOT_STEPS = 60;
  * Where the closing rate changes its sign, by false position with the Illinois rule (M. Dowell and P. Jarratt, BIT
  * 11, 1971): the rate is nearly straight between two points of the grid, and the root stays between its brackets
  * where it is not.
+ *
+ * @param lowRate closing rate at `fromMs`, NaN where it is yet to be worked out; `highRate` at `toMs` likewise
  */
 function closestBetween(
   object1: RefinedObject,
   object2: RefinedObject,
   fromMs: number,
+  lowRate: number,
   toMs: number,
+  highRate: number,
 ): number {
   let low = fromMs;
   let high = toMs;
-  let lowRate = closingRateAt(object1, object2, low);
-  let highRate = closingRateAt(object1, object2, high);
+  let rateAtLow = Number.isNaN(lowRate) ? closingRateAt(object1, object2, low) : lowRate;
+  let rateAtHigh = Number.isNaN(highRate) ? closingRateAt(object1, object2, high) : highRate;
   let latest = (low + high) / 2;
   let side = 0;
   for (let step = 0; step < MOST_ROOT_STEPS && high - low > SETTLED_MS; step++) {
-    const straight = low - (lowRate * (high - low)) / (highRate - lowRate);
-    // Signs are told by velocities where those are good enough: the rates of both ends can then agree.
-    const next = straight > low && straight < high ? straight : (low + high) / 2;
+    const straight = low - (rateAtLow * (high - low)) / (rateAtHigh - rateAtLow);
+    // Where a maximum lies between as well, the rates of both ends agree.
+    const isBracketed = rateAtLow < 0 && rateAtHigh >= 0 && straight > low && straight < high;
+    const next = isBracketed ? straight : (low + high) / 2;
     const moved = Math.abs(next - latest);
     latest = next;
     if (step > 0 && moved < SETTLED_MS) break;
@@ -226,13 +330,13 @@ function closestBetween(
     if (Number.isNaN(rate)) break;
     if (rate < 0) {
       low = next;
-      lowRate = rate;
-      if (side < 0) highRate /= 2;
+      rateAtLow = rate;
+      if (side < 0) rateAtHigh /= 2;
       side = -1;
     } else {
       high = next;
-      highRate = rate;
-      if (side > 0) lowRate /= 2;
+      rateAtHigh = rate;
+      if (side > 0) rateAtLow /= 2;
       side = 1;
     }
   }

@@ -1,12 +1,14 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
 import { type ClosestApproach, distinctApproaches } from '../../src/encounters/closest-approach.js';
+import { createRecentStates, slowMinima } from '../../src/encounters/refine.js';
 import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { setPassing } from '../synthetic/passing-orbit.js';
 import { seededRandom } from '../synthetic/random.js';
+import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 import { type BruteForceEncounter, bruteForceEncounters } from './brute-force.js';
 import { searchObjectsOf } from './search-objects.js';
 
@@ -176,5 +178,33 @@ describe('the search finds what brute force finds, and nothing else', () => {
         );
       },
     );
+
+    it('to the last bit as the plain path does: every pair looked at all the time', () => {
+      const plain = everyMinimum(sets, 4, 5);
+      expect(plain.length).toBe(expected.length);
+      for (const forced of [{}, { stepS: 36 }, { stepS: 120 }, { stepS: 300 }, { byPairs: true }]) {
+        const found = search({ fleet: sets, catalog: [], within: true, hours: 4, missKm: 5, ...forced });
+        expect(found).toEqual(plain);
+      }
+    });
   });
 });
+
+/** No index, no bound, no track: the minima of all pairs from samples of SGP4. */
+function everyMinimum(sets: readonly ElementSet[], hours: number, missKm: number): ClosestApproach[] {
+  const records = sgp4RecordsOf(sets);
+  const objects = sets.map((_, place) => ({ records, place, recent: createRecentStates() }));
+  const endMs = START_MS + hours * HOUR_MS;
+  const found: ClosestApproach[] = [];
+  for (let fromMs = START_MS; fromMs < endMs; fromMs += 300_000) {
+    objects.forEach((object1, first) => {
+      objects.slice(first + 1).forEach((object2, k) => {
+        for (const minimum of slowMinima(object1, object2, fromMs, fromMs + 300_000, 40_000)) {
+          if (minimum.missKm <= missKm && minimum.tcaMs < endMs)
+            found.push({ first, second: first + 1 + k, ...minimum });
+        }
+      });
+    });
+  }
+  return distinctApproaches(found, sets.length);
+}

@@ -3,9 +3,9 @@ import {
   COMPANION_LIMIT_KM,
   COMPANION_SPEED_KM_PER_S,
   type Companions,
-  flightTogether,
+  type Flight,
+  flightsTogether,
 } from '../../encounters/companions.js';
-import type { RefinedObject } from '../../encounters/refine.js';
 import { EARTH_MU_KM3_PER_S2 } from '../../ephemeris/gravity.js';
 import type { Sgp4Records } from '../../ephemeris/sgp4-records.js';
 import { dot, type Vector3 } from '../../vector.js';
@@ -58,9 +58,8 @@ export function findFlyingAlong(
       const own = planeNormal(objects[first], startMs);
       for (const { second, normal } of near) {
         if (own !== undefined && normal !== undefined && dot(own, normal) < like.leastCosine) continue;
-        const sides = [first, second].map((place) => ({ records, place }));
-        const pair = flyTogether(objects[first], sides[0], sides[1], limitKm);
-        if (pair !== undefined && pair.closestKm <= missKm) found.push({ first, second, ...pair });
+        const flight = flyTogether(objects[first], records, { first, second }, limitKm);
+        if (flight !== undefined && flight.closestKm <= missKm) found.push({ first, second, ...flight });
       }
     }
   }
@@ -87,17 +86,18 @@ export function probablySame(
 }
 
 function flyTogether(
-  first: ScreenedObject,
-  side1: RefinedObject,
-  side2: RefinedObject,
+  object: ScreenedObject,
+  records: Sgp4Records,
+  pair: { readonly first: number; readonly second: number },
   limitKm: number,
-): Omit<FlyingAlong, 'first' | 'second'> | undefined {
-  const startMs = first.validFromMs;
-  const endMs = Math.min(startMs + FIRST_STRETCH_MS, first.validToMs);
-  const rate = orbitalRate(first);
-  return flightTogether(side1, side2, { startMs, endMs, followedToMs: endMs }, (distanceKm) =>
+): Flight | undefined {
+  const startMs = object.validFromMs;
+  const endMs = Math.min(startMs + FIRST_STRETCH_MS, object.validToMs);
+  const rate = orbitalRate(object);
+  const span = { startMs, endMs, followedToMs: endMs };
+  return flightsTogether(records, [pair], span, (distanceKm) =>
     distanceKm <= limitKm ? COMPANION_SPEED_KM_PER_S + rate * distanceKm : Number.NaN,
-  );
+  )[0];
 }
 
 /** At perigee, where it is highest; radians a second, with a tenth for J2 and for the swing of a relative orbit. */

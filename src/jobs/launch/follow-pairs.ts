@@ -1,5 +1,5 @@
 import { tidePerS2 } from '../../encounters/bounds.js';
-import { type RefinedObject, relativeStateAt, slowTcas } from '../../encounters/refine.js';
+import { type RefinedObject, relativeStateAt, slowMinima } from '../../encounters/refine.js';
 import { recordStateAt } from '../../ephemeris/record-states.js';
 
 /** A stretch of time in which an object flies on one set; milliseconds of UTC since 1970-01-01. */
@@ -227,7 +227,7 @@ function lookBetween(
   const lowest = Math.min(lowestOnHalf(before, i, j, halfS, 1), lowestOnHalf(after, i, j, halfS, -1));
   if (!(lowest < wanted)) return;
   const [first, second] = pair.phases as readonly [FollowedPhase, FollowedPhase];
-  for (const tcaMs of slowTcas(first, second, beforeMs, afterMs, REFINE_GRID_MS)) {
+  for (const { tcaMs } of slowMinima(first, second, beforeMs, afterMs, REFINE_GRID_MS)) {
     if (!relativeStateAt(first, second, tcaMs, relative)) continue;
     const atTcaKm = Math.hypot(relative[0], relative[1], relative[2]);
     if (atTcaKm < pair.closestKm) {
