@@ -3,15 +3,13 @@ import type { RefinedObject } from '../encounters/refine.js';
 import type { SearchObjects } from '../encounters/search-problem.js';
 import { passageThrough } from '../encounters/volume.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
-import type { OrbitState } from '../ephemeris/state.js';
-import { assessInFull, type EncounterObject } from '../probability/assess-encounter.js';
+import { assessInFull } from '../probability/assess-encounter.js';
 import { discProbability } from '../probability/foster.js';
-import { remarksOf } from '../probability/remarks.js';
+import { remarkBitsOf } from '../probability/remarks.js';
 import { covarianceRtnM2, isBeyond, sigmaAt } from '../uncertainty/sigma-table.js';
 import type { Matrix3 } from '../vector.js';
 import { type EncounterRecords, extendRecords, FIELD, PROBABILITY_METHODS } from './encounter-records.js';
 import { type PathSide, pathProbability } from './path-probability.js';
-import { bitsOfRemarks } from './remark-bits.js';
 import type { SearchPlan } from './search-plan.js';
 
 const MS_PER_DAY = 86_400_000;
@@ -61,10 +59,10 @@ function assessApproach(
   const sigma1 = sigmaAt(curve1, age1);
   const sigma2 = sigmaAt(curve2, age2);
   const hardBodyRadiusM = plan.hardBodyRadiusM[first] + plan.hardBodyRadiusM[second];
-  const side1 = sideOf(object1, stateFrom(0), covarianceRtnM2(sigma1));
-  const side2 = sideOf(object2, stateFrom(6), covarianceRtnM2(sigma2));
+  const side1 = sideFrom(0, object1, covarianceRtnM2(sigma1));
+  const side2 = sideFrom(6, object2, covarianceRtnM2(sigma2));
   const assessed = assessInFull(
-    { object1: atTca(side1), object2: atTca(side2), hardBodyRadiusM },
+    { object1: side1, object2: side2, hardBodyRadiusM },
     plan.onlyProbability !== true,
   );
   const path = pathProbability(side1, side2, tcaMs, hardBodyRadiusM, assessed, fromMs, toMs);
@@ -96,37 +94,28 @@ function assessApproach(
   data[at + FIELD.method] = PROBABILITY_METHODS.indexOf(path.method);
   data[at + FIELD.entryMs] = entryMs;
   data[at + FIELD.exitMs] = exitMs;
-  data[at + FIELD.remarks] = bitsOfRemarks(
-    remarksOf({
-      relativeSpeedMPerS: 1000 * speedKmPerS,
-      missDistanceM: 1000 * missKm,
-      hardBodyRadiusM,
-      hasProbability: plane !== undefined,
-      isStraight: path.isStraight,
-      peakSigmaScale: assessed.peakSigmaScale,
-      elementAgeDays: [age1, age2],
-      maxAgeDays: plan.maxAgeDays,
-      hasDefaultSigma: [curve1.isDefault, curve2.isDefault],
-      isBeyondSigmaTable: [isBeyond(curve1, age1), isBeyond(curve2, age2)],
-      hasDefaultRadius: [plan.hasDefaultRadius[first] === 1, plan.hasDefaultRadius[second] === 1],
-    }),
-  );
+  data[at + FIELD.remarks] = remarkBitsOf({
+    relativeSpeedMPerS: 1000 * speedKmPerS,
+    missDistanceM: 1000 * missKm,
+    hardBodyRadiusM,
+    hasProbability: plane !== undefined,
+    isStraight: path.isStraight,
+    peakSigmaScale: assessed.peakSigmaScale,
+    elementAgeDays: [age1, age2],
+    maxAgeDays: plan.maxAgeDays,
+    hasDefaultSigma: [curve1.isDefault, curve2.isDefault],
+    isBeyondSigmaTable: [isBeyond(curve1, age1), isBeyond(curve2, age2)],
+    hasDefaultRadius: [plan.hasDefaultRadius[first] === 1, plan.hasDefaultRadius[second] === 1],
+  });
 }
 
-function stateFrom(offset: number): OrbitState {
+/** One object at closest approach, where its state has been worked out. */
+function sideFrom(offset: number, { records, place }: RefinedObject, covarianceRtnM2: Matrix3): PathSide {
   return {
+    records,
+    place,
     positionKm: [states[offset], states[offset + 1], states[offset + 2]],
     velocityKmPerS: [states[offset + 3], states[offset + 4], states[offset + 5]],
+    covarianceRtnM2,
   };
-}
-
-// Field by field in the next two: spread syntax costs microseconds, a good part of a row.
-
-function sideOf({ records, place }: RefinedObject, state: OrbitState, covariance: Matrix3): PathSide {
-  return { records, place, state, covarianceRtnM2: covariance };
-}
-
-function atTca(side: PathSide): EncounterObject {
-  const { positionKm, velocityKmPerS } = side.state;
-  return { positionKm, velocityKmPerS, covarianceRtnM2: side.covarianceRtnM2 };
 }

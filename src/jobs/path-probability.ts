@@ -2,11 +2,10 @@ import type { RefinedObject } from '../encounters/refine.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
 import { createShortArc } from '../ephemeris/short-arc.js';
 import type { OrbitState } from '../ephemeris/state.js';
-import type { FullAssessment } from '../probability/assess-encounter.js';
+import type { EncounterObject, FullAssessment } from '../probability/assess-encounter.js';
 import { curvedPathProbability } from '../probability/curved-path.js';
 import type { PathEncounter, StatesAt } from '../probability/encounter-path.js';
 import { boundStraightLine, testStraightLine } from '../probability/straight-line.js';
-import type { Matrix3 } from '../vector.js';
 import type { ProbabilityMethod } from './encounter-records.js';
 
 /**
@@ -27,7 +26,8 @@ export type PathProbability = {
   readonly isStraight: boolean | undefined;
 };
 
-export type PathSide = RefinedObject & { readonly covarianceRtnM2: Matrix3; readonly state: OrbitState };
+/** An object with its state at closest approach. */
+export type PathSide = RefinedObject & EncounterObject;
 
 /**
  * The probability of an encounter by the method that its relative path asks for: Foster's where the path
@@ -49,7 +49,11 @@ export function pathProbability(
   if (plane === undefined || collisionProbability === undefined) {
     return { probability: undefined, method: '', isStraight: undefined };
   }
-  const foster = { probability: collisionProbability, method: 'FOSTER-1992' as const };
+  const foster = (isStraight: boolean | undefined): PathProbability => ({
+    probability: collisionProbability,
+    method: 'FOSTER-1992',
+    isStraight,
+  });
   const isNegligible = (deviationSigmas: number): boolean => {
     const miss = plane.mahalanobisDistance;
     const nearest = Math.max(0, miss - deviationSigmas);
@@ -62,12 +66,12 @@ export function pathProbability(
       { statesAt: directly(object1, object2, tcaMs), tcaMs, hardBodyRadiusM },
       assessed,
     );
-    if (bound.isStraight) return { ...foster, isStraight: true };
-    if (isNegligible(bound.deviationSigmas)) return { ...foster, isStraight: undefined };
+    if (bound.isStraight) return foster(true);
+    if (isNegligible(bound.deviationSigmas)) return foster(undefined);
     const encounter = atClosest(object1, object2, tcaMs, hardBodyRadiusM);
     const { isStraight, halfPassageS, deviationSigmas } = testStraightLine(encounter);
-    if (isStraight) return { ...foster, isStraight };
-    if (isNegligible(deviationSigmas)) return { ...foster, isStraight: undefined };
+    if (isStraight) return foster(true);
+    if (isNegligible(deviationSigmas)) return foster(undefined);
     const quarterMs = 250 * Math.min(periodS(object1), periodS(object2));
     const reachMs = Math.min(quarterMs, Math.max(SHORTEST_MS, 1000 * PASSAGES * halfPassageS));
     const along = curvedPathProbability({
@@ -76,11 +80,11 @@ export function pathProbability(
       toMs: Math.min(toMs, tcaMs + reachMs),
     });
     return along === undefined
-      ? { ...foster, isStraight }
+      ? foster(isStraight)
       : { probability: along.probability, method: along.method, isStraight };
   } catch (error) {
     // SGP4 gives up on one of them beside the encounter: only the two-dimensional figure can be had.
-    if (error instanceof NoState) return { ...foster, isStraight: false };
+    if (error instanceof NoState) return foster(false);
     throw error;
   }
 }
@@ -114,9 +118,9 @@ function atClosest(
 
 /** The states as given at closest approach, SGP4's at other times. */
 function directly(object1: PathSide, object2: PathSide, tcaMs: number): StatesAt {
-  const at = ({ records, place, state }: PathSide, timeMs: number): OrbitState => {
-    if (timeMs === tcaMs) return state;
-    if (!recordStateAt(records, place, timeMs, scratch)) throw new NoState();
+  const at = (side: PathSide, timeMs: number): OrbitState => {
+    if (timeMs === tcaMs) return side;
+    if (!recordStateAt(side.records, side.place, timeMs, scratch)) throw new NoState();
     return {
       positionKm: [scratch[0], scratch[1], scratch[2]],
       velocityKmPerS: [scratch[3], scratch[4], scratch[5]],

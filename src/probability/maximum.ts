@@ -48,15 +48,17 @@ export function peakProbability(
   radius: number,
   given: number,
 ): MaximumProbability {
-  const mahalanobis = Math.hypot(missX / sigmaX, missY / sigmaY);
-  if (radius === 0) return { probability: 0, sigmaScale: mahalanobis * Math.SQRT1_2 };
+  if (radius === 0) {
+    return { probability: 0, sigmaScale: Math.hypot(missX / sigmaX, missY / sigmaY) * Math.SQRT1_2 };
+  }
   const distance = Math.hypot(missX, missY);
   if (distance < radius) return { probability: 1, sigmaScale: 0 };
   if (distance === radius) return { probability: 0.5, sigmaScale: 0 };
 
   const atScale = (scale: number) => discProbability(sigmaX * scale, sigmaY * scale, missX, missY, radius);
   const sigmaScale =
-    peakScaleOf(sigmaX, sigmaY, missX, missY, radius) ?? climbToPeak(atScale, mahalanobis, radius / distance);
+    peakScaleOf(sigmaX, sigmaY, missX, missY, radius) ??
+    climbToPeak(atScale, Math.hypot(missX / sigmaX, missY / sigmaY), radius / distance);
   const probability = atScale(sigmaScale);
   return given > probability ? { probability: given, sigmaScale: 1 } : { probability, sigmaScale };
 }

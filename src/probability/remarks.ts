@@ -40,22 +40,25 @@ export type RemarkGrounds = {
   readonly hasDefaultRadius: readonly [boolean, boolean];
 };
 
-/** The remarks of a row, in the order of `REMARKS`. */
-export function remarksOf(grounds: RemarkGrounds): RemarkCode[] {
+/** The remarks of a row as one number: a bit for each, the first of `REMARKS` the lowest. */
+export function remarkBitsOf(grounds: RemarkGrounds): number {
   const still = grounds.relativeSpeedMPerS === 0;
-  const holds: Readonly<Record<RemarkCode, boolean>> = {
-    'no-relative-motion': still,
-    'singular-covariance': !still && !grounds.hasProbability,
-    'not-straight': grounds.isStraight === false,
-    'miss-within-radius': grounds.missDistanceM < grounds.hardBodyRadiusM,
-    diluted: grounds.peakSigmaScale !== undefined && grounds.peakSigmaScale < 1,
-    'old-elements': grounds.elementAgeDays.some((age) => Math.abs(age) > grounds.maxAgeDays),
-    'epoch-after-tca': grounds.elementAgeDays.some((age) => age < 0),
-    'sigma-default': grounds.hasDefaultSigma.includes(true),
-    'sigma-extrapolated': grounds.isBeyondSigmaTable.includes(true),
-    'radius-default': grounds.hasDefaultRadius.includes(true),
-  };
-  return CODES.filter((code) => holds[code]);
+  const [age1, age2] = grounds.elementAgeDays;
+  const { maxAgeDays, hasDefaultSigma, isBeyondSigmaTable, hasDefaultRadius } = grounds;
+  return (
+    (still ? BITS['no-relative-motion'] : 0) |
+    (!still && !grounds.hasProbability ? BITS['singular-covariance'] : 0) |
+    (grounds.isStraight === false ? BITS['not-straight'] : 0) |
+    (grounds.missDistanceM < grounds.hardBodyRadiusM ? BITS['miss-within-radius'] : 0) |
+    (grounds.peakSigmaScale !== undefined && grounds.peakSigmaScale < 1 ? BITS.diluted : 0) |
+    (Math.abs(age1) > maxAgeDays || Math.abs(age2) > maxAgeDays ? BITS['old-elements'] : 0) |
+    (age1 < 0 || age2 < 0 ? BITS['epoch-after-tca'] : 0) |
+    (hasDefaultSigma[0] || hasDefaultSigma[1] ? BITS['sigma-default'] : 0) |
+    (isBeyondSigmaTable[0] || isBeyondSigmaTable[1] ? BITS['sigma-extrapolated'] : 0) |
+    (hasDefaultRadius[0] || hasDefaultRadius[1] ? BITS['radius-default'] : 0)
+  );
 }
 
-const CODES = Object.keys(REMARKS) as RemarkCode[];
+const BITS = Object.fromEntries(Object.keys(REMARKS).map((code, i) => [code, 1 << i])) as Readonly<
+  Record<RemarkCode, number>
+>;

@@ -29,17 +29,15 @@ function side(set: ElementSet, timeMs: number, sigmaRtnM: Vector3): Side {
     records: sgp4RecordsOf([set]),
     place: 0,
     covarianceRtnM2: covarianceRtnM2(sigmaRtnM),
-    state: {
-      positionKm: [state[0], state[1], state[2]],
-      velocityKmPerS: [state[3], state[4], state[5]],
-    },
+    positionKm: [state[0], state[1], state[2]],
+    velocityKmPerS: [state[3], state[4], state[5]],
   };
 }
 
 function assessed(one: PathSide, other: PathSide, hardBodyRadiusM: number) {
   return assessInFull({
-    object1: { ...one.state, covarianceRtnM2: one.covarianceRtnM2 },
-    object2: { ...other.state, covarianceRtnM2: other.covarianceRtnM2 },
+    object1: one,
+    object2: other,
     hardBodyRadiusM,
   });
 }

@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { REMARKS, type RemarkGrounds, remarksOf } from '../../src/probability/remarks.js';
+import { REMARKS, type RemarkGrounds, remarkBitsOf } from '../../src/probability/remarks.js';
 
 const FINE: RemarkGrounds = {
   relativeSpeedMPerS: 12_000,
@@ -15,7 +15,12 @@ const FINE: RemarkGrounds = {
   hasDefaultRadius: [false, false],
 };
 
-describe('remarksOf', () => {
+function remarksOf(grounds: RemarkGrounds): string[] {
+  const bits = remarkBitsOf(grounds);
+  return Object.keys(REMARKS).filter((_, i) => (bits & (1 << i)) !== 0);
+}
+
+describe('remarkBitsOf', () => {
   it('has nothing to say about a row in order', () => {
     expect(remarksOf(FINE)).toEqual([]);
     expect(remarksOf({ ...FINE, isStraight: undefined, peakSigmaScale: 1, elementAgeDays: [30, 0] })).toEqual(
