@@ -62,23 +62,3 @@ export function screenedObject(
     isPredicted: false,
   };
 }
-
-/** The part of an object that its rows show. */
-export type ShownObject = Pick<
-  ScreenedObject,
-  'designator' | 'name' | 'maneuverable' | 'curve' | 'hardBodyRadiusM' | 'agesFromMs' | 'isPredicted'
-> & { readonly set: Pick<ElementSet, 'internationalDesignator' | 'epochMs'> };
-
-/** Without what is heavy to hand to a thread. */
-export function shownObject({ set, ...object }: ScreenedObject): ShownObject {
-  return {
-    designator: object.designator,
-    name: object.name,
-    maneuverable: object.maneuverable,
-    curve: object.curve,
-    hardBodyRadiusM: object.hardBodyRadiusM,
-    agesFromMs: object.agesFromMs,
-    isPredicted: object.isPredicted,
-    set: { internationalDesignator: set.internationalDesignator, epochMs: set.epochMs },
-  };
-}

@@ -1,4 +1,5 @@
-import { type CsvColumn, exponentCell, fixedCell, textCell } from './csv-text.js';
+import { type BulkColumn, bulkColumn } from './bulk-column.js';
+import { putExponent, putFixed, putText, putWhole } from './csv-bytes.js';
 import { CAUTION_COLUMN, DESIGNATOR_COLUMNS, TCA_COLUMN } from './shared-columns.js';
 
 /** How the probability of one conjunction changes when all its sigmas are scaled by one factor. */
@@ -36,50 +37,50 @@ export function describeSensitivity(peakScale: number | undefined): string {
 }
 
 /** The columns of `sensitivity.csv`. */
-export const SENSITIVITY_COLUMNS: readonly CsvColumn<ConjunctionSensitivity>[] = [
-  {
+export const SENSITIVITY_COLUMNS: readonly BulkColumn<ConjunctionSensitivity>[] = [
+  bulkColumn({
     name: 'rank',
     unit: '',
     meaning: 'Rank of the conjunction in conjunctions.csv',
-    cell: (row) => String(row.rank),
-  },
+    put: (out, row) => putWhole(out, row.rank),
+  }),
   TCA_COLUMN,
   ...DESIGNATOR_COLUMNS,
-  {
+  bulkColumn({
     name: 'collision_probability_half_sigma',
     unit: '0 to 1',
     meaning: 'Probability with all sigmas halved, six significant digits; empty where no figure can be given',
-    cell: (row) => exponentCell(row.probabilityAtHalf),
-  },
-  {
+    put: (out, row) => putExponent(out, row.probabilityAtHalf),
+  }),
+  bulkColumn({
     name: 'collision_probability_once_sigma',
     unit: '0 to 1',
     meaning: 'Probability with the sigmas as they are',
-    cell: (row) => exponentCell(row.probabilityAtOnce),
-  },
-  {
+    put: (out, row) => putExponent(out, row.probabilityAtOnce),
+  }),
+  bulkColumn({
     name: 'collision_probability_twice_sigma',
     unit: '0 to 1',
     meaning: 'Probability with all sigmas doubled',
-    cell: (row) => exponentCell(row.probabilityAtTwice),
-  },
-  {
+    put: (out, row) => putExponent(out, row.probabilityAtTwice),
+  }),
+  bulkColumn({
     name: 'peak_sigma_scale',
     unit: '',
     meaning: 'Factor on all sigmas at which the probability is highest, 4 decimals',
-    cell: (row) => fixedCell(row.peakScale, 4),
-  },
-  {
+    put: (out, row) => putFixed(out, row.peakScale, 4),
+  }),
+  bulkColumn({
     name: 'collision_probability_peak',
     unit: '0 to 1',
     meaning: 'Probability at that factor, six significant digits',
-    cell: (row) => exponentCell(row.peakProbability),
-  },
-  {
+    put: (out, row) => putExponent(out, row.peakProbability),
+  }),
+  bulkColumn({
     name: 'direction',
     unit: '',
     meaning: 'In words: what smaller sigmas, that is better orbits, would do to the probability',
-    cell: (row) => textCell(describeSensitivity(row.peakScale)),
-  },
+    put: (out, row) => putText(out, describeSensitivity(row.peakScale)),
+  }),
   CAUTION_COLUMN,
 ];

@@ -1,26 +1,32 @@
 import { CAUTION, LAUNCH_CAUTION } from '../caution.js';
+import { type BulkColumn, bulkColumn } from './bulk-column.js';
+import { putBytes, putText, putUtc } from './csv-bytes.js';
 import { type CsvColumn, fixedCell, textCell, utcCell } from './csv-text.js';
 
 type Numbered = { readonly designator: string };
+type Side = 'object1' | 'object2';
 type Named = Numbered & { readonly name: string };
 
 /** Who met whom, for tables without names. */
-export const DESIGNATOR_COLUMNS = [designatorColumn('object1'), designatorColumn('object2')] as const;
+export const DESIGNATOR_COLUMNS = [
+  designatorColumn('object1', (row: { readonly object1: Numbered }) => row.object1),
+  designatorColumn('object2', (row: { readonly object2: Numbered }) => row.object2),
+] as const;
 
 /** Who met whom, for tables whose rows have both objects with designator and name. */
-export const OBJECT_COLUMNS: readonly CsvColumn<{ readonly object1: Named; readonly object2: Named }>[] = [
+export const OBJECT_COLUMNS: readonly BulkColumn<{ readonly object1: Named; readonly object2: Named }>[] = [
   DESIGNATOR_COLUMNS[0],
-  nameColumn('object1'),
+  nameColumn('object1', (row) => row.object1),
   DESIGNATOR_COLUMNS[1],
-  nameColumn('object2'),
+  nameColumn('object2', (row) => row.object2),
 ];
 
-export const TCA_COLUMN: CsvColumn<{ readonly tcaMs: number }> = {
+export const TCA_COLUMN: BulkColumn<{ readonly tcaMs: number }> = bulkColumn({
   name: 'tca_utc',
   unit: 'UTC',
   meaning: 'Time of closest approach, ISO 8601 to the millisecond',
-  cell: (row) => utcCell(row.tcaMs),
-};
+  put: (out, row) => putUtc(out, row.tcaMs),
+});
 
 /** When and how far apart two objects that are told once are closest. */
 export const CLOSEST_COLUMNS: readonly CsvColumn<{
@@ -52,13 +58,13 @@ export function slowestSpeedColumn(when: string): CsvColumn<{ readonly slowestMP
 }
 
 /** @param what what the codes tell */
-export function remarksColumn(what: string): CsvColumn<{ readonly remarks: readonly string[] }> {
-  return {
+export function remarksColumn(what: string): BulkColumn<{ readonly remarks: readonly string[] }> {
+  return bulkColumn({
     name: 'remarks',
     unit: '',
     meaning: `Codes of ${what}, one blank between them; empty if there is none`,
-    cell: (row) => textCell(row.remarks.join(' ')),
-  };
+    put: (out, row) => putText(out, row.remarks.join(' ')),
+  });
 }
 
 /** What to say of a row that may not be trusted. */
@@ -78,38 +84,34 @@ export function explainedAs<Row>(
   return columns.map((column, i) => ({ ...column, meaning: meanings[i] }));
 }
 
-function designatorColumn<Side extends 'object1' | 'object2'>(
-  side: Side,
-): CsvColumn<{ readonly [S in Side]: Numbered }> {
-  return {
+function designatorColumn<Row>(side: Side, objectOf: (row: Row) => Numbered): BulkColumn<Row> {
+  return bulkColumn({
     name: `${side}_designator`,
     unit: '',
     meaning: `Catalog number of ${inWords(side)}, in decimal`,
-    cell: (row) => textCell(row[side].designator),
-  };
+    put: (out, row) => putText(out, objectOf(row).designator),
+  });
 }
 
-function nameColumn<Side extends 'object1' | 'object2'>(
-  side: Side,
-): CsvColumn<{ readonly [S in Side]: Named }> {
-  return {
+function nameColumn<Row>(side: Side, objectOf: (row: Row) => Named): BulkColumn<Row> {
+  return bulkColumn({
     name: `${side}_name`,
     unit: '',
     meaning: `Name of ${inWords(side)}, empty if the elements give none`,
-    cell: (row) => textCell(row[side].name),
-  };
+    put: (out, row) => putText(out, objectOf(row).name),
+  });
 }
 
-function inWords(side: 'object1' | 'object2'): string {
+function inWords(side: Side): string {
   return side === 'object1' ? 'object 1' : 'object 2';
 }
 
-function cautionColumn(caution: string): CsvColumn<unknown> {
-  const cell = textCell(caution);
-  return {
+function cautionColumn(caution: string): BulkColumn<unknown> {
+  const cell = Buffer.from(textCell(caution));
+  return bulkColumn({
     name: 'caution',
     unit: '',
     meaning: 'What the figures are, and where to decide',
-    cell: () => cell,
-  };
+    put: (out) => putBytes(out, cell),
+  });
 }

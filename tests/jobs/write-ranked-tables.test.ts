@@ -1,9 +1,14 @@
 import { Writable } from 'node:stream';
 import { describe, expect, it } from 'vitest';
+import { sensitivityOf } from '../../src/jobs/conjunctions.js';
 import { createEncounterRecords, extendRecords, FIELD } from '../../src/jobs/encounter-records.js';
 import type { OutputFolder } from '../../src/jobs/output-folder.js';
 import { rankedRecords } from '../../src/jobs/ranked-records.js';
 import { screenedObject } from '../../src/jobs/screened-object.js';
+import { writeRankedTables } from '../../src/jobs/write-ranked-tables.js';
+import { CONJUNCTION_COLUMNS } from '../../src/tables/conjunctions-csv.js';
+import { csvHeader, csvRow } from '../../src/tables/csv-text.js';
+import { SENSITIVITY_COLUMNS } from '../../src/tables/sensitivity-csv.js';
 import { defaultSigmaTable } from '../../src/uncertainty/default-sigma-table.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
@@ -20,7 +25,8 @@ function folderInMemory(): { folder: OutputFolder; files: Map<string, string> } 
     const chunks: Buffer[] = [];
     return new Writable({
       write(chunk: Buffer, _encoding, done) {
-        chunks.push(chunk);
+        // Once it is taken, its memory is used for what comes later.
+        chunks.push(Buffer.from(chunk));
         done();
       },
       final(done) {
@@ -53,12 +59,14 @@ function manyEncounters(count: number) {
   return rankedRecords(records, objects);
 }
 
+/** Threads run the compiled build. */
+async function compiled(): Promise<WriteRankedTables> {
+  return await import(new URL('../../dist/jobs/write-ranked-tables.js', import.meta.url).href);
+}
+
 describe('the ranked tables', () => {
   it('have the same bytes from one thread and from three', async () => {
-    // Threads run the compiled build.
-    const { writeRankedTables } = (await import(
-      new URL('../../dist/jobs/write-ranked-tables.js', import.meta.url).href
-    )) as WriteRankedTables;
+    const { writeRankedTables } = await compiled();
     const ranked = manyEncounters(41_234);
     const one = folderInMemory();
     await writeRankedTables(one.folder, ranked, 1, silentPorts());
@@ -77,4 +85,51 @@ describe('the ranked tables', () => {
       expect(ranks.every((rank, k) => rank === k + 1)).toBe(true);
     }
   });
+
+  it('have the rows that their columns make, in the order of the ranks', async () => {
+    const ranked = manyEncounters(2345);
+    const { folder, files } = folderInMemory();
+    await writeRankedTables(folder, ranked, 1, silentPorts());
+    const { records, order, objects, count, at } = ranked;
+    const numbers = Array.from({ length: count }, (_, index) => index);
+    const row = (index: number) => csvRow(CONJUNCTION_COLUMNS, at(index), index + 1);
+    const conjunctions = csvHeader(CONJUNCTION_COLUMNS) + numbers.map(row).join('');
+    // Not by toBe: it would print two million bytes.
+    expect(files.get('conjunctions.csv') === conjunctions).toBe(true);
+    const sensitivityRow = (index: number) =>
+      csvRow(SENSITIVITY_COLUMNS, sensitivityOf(records, order[index], index + 1, objects), index + 1);
+    const sensitivity = csvHeader(SENSITIVITY_COLUMNS) + numbers.map(sensitivityRow).join('');
+    expect(files.get('sensitivity.csv') === sensitivity).toBe(true);
+  });
+
+  it.each(['conjunctions.csv', 'sensitivity.csv'])(
+    'end both files when %s cannot be written',
+    async (full) => {
+      const { writeRankedTables } = await compiled();
+      const streams: Writable[] = [];
+      const stream = (name: string) => {
+        const one = new Writable({
+          write: (chunk: Buffer, _encoding, done) =>
+            done(name === full && chunk.length > 2000 ? new Error('no space left on device') : null),
+        });
+        streams.push(one);
+        return one;
+      };
+      for (const [count, workers] of [
+        [10, 1],
+        [40_000, 2],
+      ]) {
+        const ports = silentPorts();
+        const written = writeRankedTables(
+          { stream } as unknown as OutputFolder,
+          manyEncounters(count),
+          workers,
+          ports,
+        );
+        await expect(written).rejects.toThrow('no space left');
+        expect(streams.splice(0).map((one) => one.destroyed)).toEqual([true, true]);
+        expect(ports.undos.size).toBe(0);
+      }
+    },
+  );
 });
