@@ -34,6 +34,8 @@ const RECORD_ROUNDING = 2e-7;
 /** Cells that the lists of one cell name, all lists together: some 85 are needed. */
 const LISTED_PER_CELL = 128;
 const LEAST_LISTED = 65_536;
+/** A trial of every so many cells tells the cost of all. */
+const TRIED_CELLS = 8;
 /** The longest step is the cheapest for so few: a trial would cost more than it can save. */
 const FEW_CANDIDATES = 3000;
 
@@ -286,17 +288,17 @@ function chooseStep(searcher: GridSearcher, work: SlabWork, lengthS: number): nu
   if (work.candidateCount <= FEW_CANDIDATES) return LONGEST_STEP_S;
   planStep(searcher, work, TRIAL_STEP_S);
   searcher.kernel.takeVisits();
-  findNearPairs(searcher, work, lengthS / 2);
-  return cheapestStepS(work.candidateCount, searcher.kernel.takeVisits());
+  findNearPairs(searcher, work, Math.min(TRIAL_STEP_S, lengthS) / 2, TRIED_CELLS);
+  return cheapestStepS(work.candidateCount, TRIED_CELLS * searcher.kernel.takeVisits());
 }
 
-function findNearPairs(searcher: GridSearcher, work: SlabWork, middleS: number): void {
+function findNearPairs(searcher: GridSearcher, work: SlabWork, middleS: number, every = 1): void {
   const { kernel, pairs, rules, plan } = searcher;
   const { cursor, candidateCount, hasOthers } = work;
   bringCursor(cursor, kernel.candidates, candidateCount, middleS);
   kernel.evaluate(candidateCount, middleS, plan.bounds.halfStepS);
   pairs.size = 0;
-  sweepStep(kernel, plan.bounds, rules.withinPrimaries, hasOthers);
+  sweepStep(kernel, plan.bounds, rules.withinPrimaries, hasOthers, every);
 }
 
 /** Brings the segments of all candidates to the time. */

@@ -49,31 +49,36 @@ function widestLineReachKm({ halfStepS, widestReachKm }: StepBounds): number {
   return lineReachKm(halfStepS, widestReachKm, tidePerS2(EARTH_RADIUS_KM - 1), FASTEST_RELATIVE_KM_PER_S);
 }
 
-/** Hands over every pair that can come within reach in the step that the kernel has evaluated. */
+/**
+ * Hands over every pair that can come within reach in the step that the kernel has evaluated.
+ *
+ * @param every more than 1 for a sample: the pairs of every so many cells
+ */
 export function sweepStep(
   { sweep }: Pick<StepKernel, 'sweep'>,
   bounds: StepBounds,
   withinPrimaries: boolean,
   hasOthers: boolean,
+  every = 1,
 ): void {
   const reachKm = widestLineReachKm(bounds);
   if (withinPrimaries) {
-    sweep(FLAT, FLAT, ORDINARY_LATER, true, reachKm);
-    sweep(STEEP, STEEP, ORDINARY_LATER, true, reachKm);
-    sweep(STEEP, FLAT, ORDINARY, false, reachKm);
-    sweep(FAST, FLAT, WITH_FAST, false, reachKm);
-    sweep(FAST, STEEP, WITH_FAST, false, reachKm);
-    sweep(FAST, FAST, BOTH_FAST_LATER, true, reachKm);
+    sweep(FLAT, FLAT, ORDINARY_LATER, true, every, reachKm);
+    sweep(STEEP, STEEP, ORDINARY_LATER, true, every, reachKm);
+    sweep(STEEP, FLAT, ORDINARY, false, every, reachKm);
+    sweep(FAST, FLAT, WITH_FAST, false, every, reachKm);
+    sweep(FAST, STEEP, WITH_FAST, false, every, reachKm);
+    sweep(FAST, FAST, BOTH_FAST_LATER, true, every, reachKm);
   }
   if (!hasOthers) return;
   for (const own of [FLAT, STEEP]) {
-    sweep(own, OTHER_FLAT, ORDINARY, false, reachKm);
-    sweep(OTHER_STEEP, own, ORDINARY, false, reachKm);
-    sweep(OTHER_FAST, own, WITH_FAST, false, reachKm);
+    sweep(own, OTHER_FLAT, ORDINARY, false, every, reachKm);
+    sweep(OTHER_STEEP, own, ORDINARY, false, every, reachKm);
+    sweep(OTHER_FAST, own, WITH_FAST, false, every, reachKm);
   }
-  sweep(FAST, OTHER_FLAT, WITH_FAST, false, reachKm);
-  sweep(FAST, OTHER_STEEP, WITH_FAST, false, reachKm);
-  sweep(FAST, OTHER_FAST, BOTH_FAST, false, reachKm);
+  sweep(FAST, OTHER_FLAT, WITH_FAST, false, every, reachKm);
+  sweep(FAST, OTHER_STEEP, WITH_FAST, false, every, reachKm);
+  sweep(FAST, OTHER_FAST, BOTH_FAST, false, every, reachKm);
 }
 
 /**

@@ -3,7 +3,7 @@ import { createRecentStates, type Minimum, type RefinedObject, refineFastTca, sl
 import type { SearchObjects, SearchRules } from './search-problem.js';
 
 /** Grid of the samples of a slow pair. */
-const SLOW_GRID_MS = 40_000;
+export const SLOW_GRID_MS = 40_000;
 /** A refined TCA is taken by the stretch of time that holds it; this much over its edges covers rounding. */
 const EDGE_MS = 0.01;
 

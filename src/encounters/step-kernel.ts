@@ -64,8 +64,16 @@ export type StepKernel = {
    *
    * @param list number of one of the lists that were laid
    * @param eachOnce for a kind with itself, along a list that names cells from the own one on
+   * @param every 1 for all cells; where a sample is enough, every so many are swept
    */
-  readonly sweep: (kind1: number, kind2: number, list: number, eachOnce: boolean, reachKm: number) => void;
+  readonly sweep: (
+    kind1: number,
+    kind2: number,
+    list: number,
+    eachOnce: boolean,
+    every: number,
+    reachKm: number,
+  ) => void;
   /** Number of looks that sweeps have taken since the last call: each at one object against four. */
   readonly takeVisits: () => number;
 };
@@ -176,9 +184,9 @@ export function createStepKernel(
       );
       kernel.sort(places.candidates, count, GROUPS_PER_CELL * cellCount, SHELLS);
     },
-    sweep: (kind1, kind2, list, eachOnce, reachKm) => {
+    sweep: (kind1, kind2, list, eachOnce, every, reachKm) => {
       const { start, cells } = listPlaces[list];
-      kernel.sweep(kind1, kind2, cellCount, start, cells, eachOnce ? 1 : 0, halfStep, reachKm);
+      kernel.sweep(kind1, kind2, cellCount, start, cells, eachOnce ? 1 : 0, every, halfStep, reachKm);
       const count = kernel.pairCount.value as number;
       if (count > 0) takePairs(pairs.subarray(0, 2 * count));
       kernel.pairCount.value = 0;

@@ -340,7 +340,7 @@ describe('the kernel', () => {
       );
     });
     expect(shells, 'in other shells').toEqual([]);
-    kernel.sweep(FLAT, FLAT, 1, true, reachKm);
+    kernel.sweep(FLAT, FLAT, 1, true, 1, reachKm);
     expect(calls).toBeGreaterThan(1);
     expect([...times.values()].every((each) => each === 1)).toBe(true);
     const wide = [...times.keys()].filter((pair) => {

@@ -2,6 +2,7 @@ import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
 import { type ClosestApproach, distinctApproaches } from '../../src/encounters/closest-approach.js';
 import { createRecentStates, slowMinima } from '../../src/encounters/refine.js';
+import { SLOW_GRID_MS } from '../../src/encounters/refine-on-sgp4.js';
 import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
@@ -199,7 +200,7 @@ function everyMinimum(sets: readonly ElementSet[], hours: number, missKm: number
   for (let fromMs = START_MS; fromMs < endMs; fromMs += 300_000) {
     objects.forEach((object1, first) => {
       objects.slice(first + 1).forEach((object2, k) => {
-        for (const minimum of slowMinima(object1, object2, fromMs, fromMs + 300_000, 40_000)) {
+        for (const minimum of slowMinima(object1, object2, fromMs, fromMs + 300_000, SLOW_GRID_MS)) {
           if (minimum.missKm <= missKm && minimum.tcaMs < endMs)
             found.push({ first, second: first + 1 + k, ...minimum });
         }

@@ -217,6 +217,7 @@ function addUp(counts: usize, count: i32): void {
  * @param kind1 side x KINDS + kind; four objects of it are held against one of `kind2`
  * @param listStart where the list of cells of each cell starts in `list`
  * @param eachOnce the kinds are the same and the lists name cells from the own one on: each pair is met once
+ * @param every 1 for all cells; only every so many are swept otherwise
  */
 export function sweep(
   kind1: i32,
@@ -225,12 +226,13 @@ export function sweep(
   listStart: usize,
   list: usize,
   eachOnce: bool,
+  every: i32,
   halfStepS: f32,
   reachKm: f32,
 ): void {
   const groups1 = groupStart + ((<usize>(kind1 * cellCount)) << 2);
   const groups2 = groupStart + ((<usize>(kind2 * cellCount)) << 2);
-  for (let cell = 0; cell < cellCount; cell++) {
+  for (let cell = 0; cell < cellCount; cell += every) {
     const own = groups1 + ((<usize>cell) << 2);
     const start = load<i32>(own);
     const end = load<i32>(own, 4);
