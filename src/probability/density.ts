@@ -25,8 +25,16 @@ function smallestSigmaOf(inverse: Matrix3): number {
 
 /** Logarithm of the density at a point, 1/m^3. */
 export function logDensity({ inverse, logNorm }: Density, x: number, y: number, z: number): number {
-  const [[xx, xy, xz], [, yy, yz], [, , zz]] = inverse;
-  return logNorm - 0.5 * (x * (xx * x + 2 * (xy * y + xz * z)) + y * (yy * y + 2 * yz * z) + zz * z * z);
+  // By index: taking the rows apart by patterns costs several times as much.
+  const first = inverse[0];
+  const second = inverse[1];
+  return (
+    logNorm -
+    0.5 *
+      (x * (first[0] * x + 2 * (first[1] * y + first[2] * z)) +
+        y * (second[1] * y + 2 * second[2] * z) +
+        inverse[2][2] * z * z)
+  );
 }
 
 /** The largest that it can be at a point within `reachM` of `centerM`. */

@@ -124,10 +124,18 @@ function enteringFirst(
   const chords = polygon.length / 3 - 1;
   let sum = before;
   for (let i = 0; i < chords; i++) {
-    const [fx, fy, fz, tx, ty, tz] = polygon.subarray(3 * i, 3 * i + 6);
-    const along: Vector3 = [tx - fx, ty - fy, tz - fz];
+    const at = 3 * i;
+    const along: Vector3 = [
+      polygon[at + 3] - polygon[at],
+      polygon[at + 4] - polygon[at + 1],
+      polygon[at + 5] - polygon[at + 2],
+    ];
     const length = norm(along);
-    const middle: Vector3 = [0.5 * (fx + tx), 0.5 * (fy + ty), 0.5 * (fz + tz)];
+    const middle: Vector3 = [
+      0.5 * (polygon[at] + polygon[at + 3]),
+      0.5 * (polygon[at + 1] + polygon[at + 4]),
+      0.5 * (polygon[at + 2] + polygon[at + 5]),
+    ];
     const volume = radius * radius * length;
     const most = volume * Math.exp(logDensityWithin(density, middle, radius));
     if (!(Math.PI * most > NEGLIGIBLE_PART * sum)) continue;
@@ -138,7 +146,9 @@ function enteringFirst(
     const isSwept = sweptBy(near, radius);
     const points = placed(half, middle, scale(along, 1 / length), radius);
     for (let k = 0; k < half.weights.length; k++) {
-      const [x, y, z] = [points[3 * k], points[3 * k + 1], points[3 * k + 2]];
+      const x = points[3 * k];
+      const y = points[3 * k + 1];
+      const z = points[3 * k + 2];
       const entering = volume * half.weights[k] * Math.exp(logDensity(density, x, y, z));
       if (entering > NEGLIGIBLE_PART * sum && !isSwept(x, y, z)) sum += entering;
     }

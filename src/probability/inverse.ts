@@ -12,7 +12,12 @@ const SINGULAR = 1e-12;
 export function inverseOf(
   matrix: Matrix3,
 ): { readonly inverse: Matrix3; readonly determinant: number } | undefined {
-  const [[xx, xy, xz], [, yy, yz], [, , zz]] = matrix;
+  const xx = matrix[0][0];
+  const xy = matrix[0][1];
+  const xz = matrix[0][2];
+  const yy = matrix[1][1];
+  const yz = matrix[1][2];
+  const zz = matrix[2][2];
   const cofactorXx = yy * zz - yz * yz;
   const cofactorXy = xz * yz - xy * zz;
   const cofactorXz = xy * yz - xz * yy;

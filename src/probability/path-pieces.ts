@@ -56,9 +56,18 @@ export function knotsOf(encounter: PathEncounter): Knot[] | undefined {
     const state = turningStateAt(encounter, timeMs);
     const density = densityOf(state.covarianceM2);
     if (density === undefined) return undefined;
-    knots.push({ ...state, ...density, timeMs });
+    knots.push(knotOf(timeMs, state, density));
   }
   return knots;
+}
+
+/** Field by field: spread syntax takes a good part of the time of a knot. */
+function knotOf(
+  timeMs: number,
+  { positionM, velocityMPerS, covarianceM2 }: TurningState,
+  { inverse, logNorm, smallestSigmaM }: Density,
+): Knot {
+  return { timeMs, positionM, velocityMPerS, covarianceM2, inverse, logNorm, smallestSigmaM };
 }
 
 /**
@@ -154,12 +163,15 @@ function bendAt(span: Span, part: number): Vector3 {
 
 function combined({ left, right }: Span, a: number, b: number, c: number, d: number): Vector3 {
   const seconds = (right.timeMs - left.timeMs) / 1000;
-  const component = (k: 0 | 1 | 2) =>
-    a * left.positionM[k] +
-    b * seconds * left.velocityMPerS[k] +
-    c * right.positionM[k] +
-    d * seconds * right.velocityMPerS[k];
-  return [component(0), component(1), component(2)];
+  const p = left.positionM;
+  const v = left.velocityMPerS;
+  const q = right.positionM;
+  const w = right.velocityMPerS;
+  return [
+    a * p[0] + b * seconds * v[0] + c * q[0] + d * seconds * w[0],
+    a * p[1] + b * seconds * v[1] + c * q[1] + d * seconds * w[1],
+    a * p[2] + b * seconds * v[2] + c * q[2] + d * seconds * w[2],
+  ];
 }
 
 /** The density at a time between the knots. One that is flat for that moment only is taken from the knot before. */

@@ -147,7 +147,7 @@ export function boundStraightLine(
   const { positionKm, velocityKmPerS } = object1;
   const squareKm2 = dot(positionKm, positionKm);
   const turning = (norm(cross(positionKm, velocityKmPerS)) / squareKm2) * seconds;
-  const gradient = ((2 * EARTH_MU_KM3_PER_S2) / squareKm2 ** 1.5) * seconds * seconds;
+  const gradient = ((2 * EARTH_MU_KM3_PER_S2) / (squareKm2 * Math.sqrt(squareKm2))) * seconds * seconds;
   const shiftM = MARGIN * (turning + gradient) * reachM + Math.hypot(offLineM(0), offLineM(1), offLineM(2));
   const deviationSigmas = shiftM / plane.sigmaYM;
   return {
