@@ -17,11 +17,14 @@ export function polygonOf({ span, from, to, lengthM }: Piece, longestM: number):
   return corners;
 }
 
+/** Doubles of a chord as it is held against points: start, way, and 1 over the square of its length. */
+const CHORD = 7;
+
 /**
  * Collects the chords that come within a reach of a point.
  *
  * @param chords how many of the polygon count, from its start
- * @param near takes both ends of each such chord
+ * @param near takes each such chord, for `sweptBy`
  */
 export function addNearChords(
   polygon: Polygon,
@@ -31,13 +34,21 @@ export function addNearChords(
   near: number[],
 ): void {
   for (let i = 0; i < 3 * chords; i += 3) {
-    if (squareFrom(center[0], center[1], center[2], polygon, i) < reachM * reachM) {
-      for (let k = 0; k < 6; k++) near.push(polygon[i + k]);
-    }
+    const at = near.length;
+    const dx = polygon[i + 3] - polygon[i];
+    const dy = polygon[i + 4] - polygon[i + 1];
+    const dz = polygon[i + 5] - polygon[i + 2];
+    const square = dx * dx + dy * dy + dz * dz;
+    near.push(polygon[i], polygon[i + 1], polygon[i + 2], dx, dy, dz, square === 0 ? 0 : 1 / square);
+    if (squareFrom(center[0], center[1], center[2], near, at) >= reachM * reachM) near.length = at;
   }
 }
 
-/** Tells whether a ball has swept a point on its way along chords, each given by both ends. */
+/**
+ * Tells whether a ball has swept a point on its way along chords.
+ *
+ * @param chords as `addNearChords` collects them
+ */
 export function sweptBy(
   chords: readonly number[],
   radiusM: number,
@@ -48,7 +59,7 @@ export function sweptBy(
   return (x, y, z) => {
     if (chords.length === 0) return false;
     if (squareFrom(x, y, z, chords, latest) < limit) return true;
-    for (let i = 0; i < chords.length; i += 6) {
+    for (let i = 0; i < chords.length; i += CHORD) {
       if (squareFrom(x, y, z, chords, i) < limit) {
         latest = i;
         return true;
@@ -58,16 +69,15 @@ export function sweptBy(
   };
 }
 
-/** Square of the distance of a point from the chord whose ends stand at `at` and after it. */
-function squareFrom(x: number, y: number, z: number, ends: ArrayLike<number>, at: number): number {
-  const px = x - ends[at];
-  const py = y - ends[at + 1];
-  const pz = z - ends[at + 2];
-  const dx = ends[at + 3] - ends[at];
-  const dy = ends[at + 4] - ends[at + 1];
-  const dz = ends[at + 5] - ends[at + 2];
-  const square = dx * dx + dy * dy + dz * dz;
-  const part = square === 0 ? 0 : Math.min(1, Math.max(0, (px * dx + py * dy + pz * dz) / square));
+/** Square of the distance of a point from the chord that stands at `at`. */
+function squareFrom(x: number, y: number, z: number, chords: readonly number[], at: number): number {
+  const px = x - chords[at];
+  const py = y - chords[at + 1];
+  const pz = z - chords[at + 2];
+  const dx = chords[at + 3];
+  const dy = chords[at + 4];
+  const dz = chords[at + 5];
+  const part = Math.min(1, Math.max(0, (px * dx + py * dy + pz * dz) * chords[at + 6]));
   const ox = px - part * dx;
   const oy = py - part * dy;
   const oz = pz - part * dz;
