@@ -1,6 +1,7 @@
 import { describe, expect, it } from 'vitest';
 import { FIELD, FIELDS } from '../../src/jobs/encounter-records.js';
 import { fillPairProbabilities } from '../../src/jobs/pair-probabilities.js';
+import { seededRandom } from '../synthetic/random.js';
 import { recordsWith } from './made-records.js';
 
 type Met = readonly [first: number, second: number, probability: number];
@@ -57,5 +58,20 @@ describe('the total of a pair', () => {
     ];
     expect(totals(met, 3)).toEqual([0.5, 0.5]);
     expect(totals(met, 3, [0, 0, 2])).toEqual([0.75, 0.75]);
+  });
+
+  it('is that of its own encounters among very many pairs', () => {
+    const random = seededRandom(9);
+    const met = Array.from(
+      { length: 20_000 },
+      (): Met => [random.integer(150), 100_000 + random.integer(150), 10 ** random.between(-9, 0)],
+    );
+    const none = new Map<string, number>();
+    const nameOf = ([first, second]: Met) => `${first} ${second}`;
+    for (const each of met) none.set(nameOf(each), (none.get(nameOf(each)) ?? 1) * (1 - each[2]));
+    const found = totals(met, 100_200);
+    const worst = met.map((each, k) => Math.abs(found[k] - (1 - none.get(nameOf(each))!)));
+    expect(Math.max(...worst)).toBeLessThan(1e-14);
+    expect(totals([])).toEqual([]);
   });
 });
