@@ -11,7 +11,7 @@ import { radialAcceleration, type StepBounds, stepBounds, stepToleranceKm } from
 import { cheapestStepS, LONGEST_STEP_S, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
 import type { ClosestApproach } from './closest-approach.js';
 import { type CellLists, type DirectionCells, directionCells } from './direction-cells.js';
-import { goneTimes } from './gone-objects.js';
+import { goneFromMs } from './gone-objects.js';
 import { createNearPairs, listsOf, type NearPairs, sweepStep, takeNearPairs } from './near-pairs.js';
 import { refinePairs } from './refine-pairs.js';
 import { type SearchObjects, type SearchRules, slabOf } from './search-problem.js';
@@ -75,7 +75,9 @@ type StepPlan = {
 export function createGridSearcher(objects: SearchObjects, rules: SearchRules): GridSearcher {
   const { eccentricity, perigeeRadiusKm } = objects;
   const axisKm = perigeeRadiusKm.map((radiusKm, i) => radiusKm / (1 - eccentricity[i]));
-  const goneMs = goneTimes(objects, rules.startMs, rules.endMs);
+  const goneMs = Float64Array.from({ length: objects.count }, (_, i) =>
+    goneFromMs(objects.records, i, rules.startMs, rules.endMs),
+  );
   const indices = Int32Array.from(goneMs.keys());
   const order = indices.filter((i) => goneMs[i] > rules.startMs);
   const count = order.length;
@@ -121,7 +123,7 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
 
 /** The others that stay above all primaries for a whole slab are out; `undefined` where all objects are primaries. */
 function outOfReach(
-  { recordOf, epochMs }: SearchObjects,
+  { records, epochMs }: SearchObjects,
   { startMs, endMs, missKm }: SearchRules,
   order: Int32Array,
   primaryCount: number,
@@ -129,13 +131,13 @@ function outOfReach(
   if (primaryCount === order.length) return undefined;
   let ceilingKm = 0;
   for (const i of order.subarray(0, primaryCount)) {
-    const band = primaryBand(recordOf(i), epochMs[i], startMs, endMs);
+    const band = primaryBand({ records, place: i }, epochMs[i], startMs, endMs);
     ceilingKm = Math.max(ceilingKm, (band?.highKm ?? Number.POSITIVE_INFINITY) + missKm);
   }
   return (object, slabStartMs) => {
     if (object < primaryCount) return false;
     const i = order[object];
-    return lowestRadiusKm(recordOf(i), epochMs[i], slabStartMs, slabStartMs + SLAB_S * 1000) > ceilingKm;
+    return lowestRadiusKm(records, i, slabStartMs, slabStartMs + SLAB_S * 1000) > ceilingKm;
   };
 }
 

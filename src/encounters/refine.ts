@@ -1,11 +1,8 @@
 import { recordStateAt } from '../ephemeris/record-states.js';
-import type { Sgp4Records } from '../ephemeris/sgp4-records.js';
+import { type PlacedRecord, placeOf } from '../ephemeris/sgp4-records.js';
 
 /** One side of a pair for work on true SGP4 states. */
-export type RefinedObject = {
-  readonly records: Sgp4Records;
-  /** Of its record among the records. */
-  readonly place: number;
+export type RefinedObject = PlacedRecord & {
   /** Its latest states, where many pairs ask for it at the same times. */
   readonly recent?: RecentStates;
 };
@@ -60,8 +57,11 @@ export function velocityDefectKmPerS(object1: RefinedObject, object2: RefinedObj
   return eccentricityOf(object1) < 0.01 && eccentricityOf(object2) < 0.01 ? 1e-4 : 0.02;
 }
 
+let eccentricityAt: number | undefined;
+
 function eccentricityOf({ records, place }: RefinedObject): number {
-  return records.values[records.size * place + records.at.eccentricity];
+  eccentricityAt ??= placeOf('ecco');
+  return records.values[records.size * place + eccentricityAt];
 }
 
 /** Relative state, object 2 minus object 1; false where SGP4 gives no state for one of them. */

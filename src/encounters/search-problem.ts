@@ -1,4 +1,3 @@
-import type { SatRec } from 'satellite.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
 import type { Sgp4Records } from '../ephemeris/sgp4-records.js';
 
@@ -11,8 +10,6 @@ export type SearchObjects = {
   readonly primaryCount: number;
   /** Their SGP4 records, in the same order. */
   readonly records: Sgp4Records;
-  /** SGP4's record for mean elements, which may be made when it is first asked for. */
-  readonly recordOf: (object: number) => SatRec;
   /** `TERMS_SIZE` numbers an object, as `laySecularTerms` lays them. */
   readonly secularTerms: Float64Array;
   readonly epochMs: Float64Array;

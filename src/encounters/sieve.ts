@@ -1,6 +1,6 @@
 import KDBush from 'kdbush';
-import { type SatRec, sgp4 } from 'satellite.js';
 import { EARTH_RADIUS_KM } from '../elements/orbit.js';
+import { MEAN_AXIS, MEAN_ECCENTRICITY, recordMeansAt } from '../ephemeris/record-states.js';
 import {
   AXIS,
   E_ACROSS_NODE,
@@ -11,6 +11,7 @@ import {
   secularElementsAt,
   TERMS_SIZE,
 } from '../ephemeris/secular-elements.js';
+import { isDeepSpace, type PlacedRecord, placeOf } from '../ephemeris/sgp4-records.js';
 
 /** Distances from the Earth's center between which an object stays during a window, km. */
 export type RadiusBand = { readonly lowKm: number; readonly highKm: number };
@@ -29,6 +30,7 @@ const LOWEST_SURE_KM = EARTH_RADIUS_KM + 50;
 
 const ownTerms = new Float64Array(TERMS_SIZE);
 const secular = new Float64Array(SECULAR_SIZE);
+const means = new Float64Array(4);
 
 /**
  * The band of one object: from the mean semi-major axis and eccentricity that SGP4 gives along the window.
@@ -36,13 +38,13 @@ const secular = new Float64Array(SECULAR_SIZE);
  * @returns `undefined` where SGP4 gives no state at one of the times: such an object is not sieved
  */
 export function radiusBand(
-  record: SatRec,
+  object: PlacedRecord,
   epochMs: number,
   startMs: number,
   endMs: number,
 ): RadiusBand | undefined {
-  laySecularTerms(record, ownTerms, 0);
-  return nearEarthBand(ownTerms, 0, epochMs, startMs, endMs) ?? bandOfStates(record, epochMs, startMs, endMs);
+  laySecularTerms(object.records, object.place, ownTerms, 0);
+  return nearEarthBand(ownTerms, 0, epochMs, startMs, endMs) ?? bandOfMeans(object, startMs, endMs);
 }
 
 /**
@@ -70,19 +72,17 @@ export function nearEarthBand(
   return padded.lowKm > LOWEST_SURE_KM ? padded : undefined;
 }
 
-function bandOfStates(
-  record: SatRec,
-  epochMs: number,
+function bandOfMeans(
+  { records, place }: PlacedRecord,
   startMs: number,
   endMs: number,
 ): RadiusBand | undefined {
   const band = { lowKm: Number.POSITIVE_INFINITY, highKm: 0 };
   for (const timeMs of timesBetween(startMs, endMs)) {
-    const state = sgp4(record, (timeMs - epochMs) / MS_PER_MINUTE);
-    if (state === null || !(record.tempa > 0)) return undefined;
-    widen(band, state.meanElements.am, state.meanElements.em);
+    if (!recordMeansAt(records, place, timeMs, means)) return undefined;
+    widen(band, means[MEAN_AXIS], means[MEAN_ECCENTRICITY]);
   }
-  const padKm = record.method === 'd' ? DEEP_SPACE_PAD_KM : NEAR_EARTH_PAD_KM;
+  const padKm = isDeepSpace(records, place) ? DEEP_SPACE_PAD_KM : NEAR_EARTH_PAD_KM;
   return { lowKm: band.lowKm - padKm, highKm: band.highKm + padKm };
 }
 
@@ -108,16 +108,19 @@ const NOWHERE: RadiusBand = { lowKm: Number.POSITIVE_INFINITY, highKm: Number.NE
  * @returns `undefined` where the object may be anywhere
  */
 export function primaryBand(
-  record: SatRec,
+  object: PlacedRecord,
   epochMs: number,
   startMs: number,
   endMs: number,
 ): RadiusBand | undefined {
-  const whole = radiusBand(record, epochMs, startMs, endMs);
+  const whole = radiusBand(object, epochMs, startMs, endMs);
   if (whole !== undefined) return whole;
-  const atStart = radiusBand(record, epochMs, startMs, startMs);
+  const atStart = radiusBand(object, epochMs, startMs, startMs);
   if (atStart === undefined) return NOWHERE;
-  return record.method === 'n' && record.bstar > 0 ? { lowKm: 0, highKm: atStart.highKm } : undefined;
+  const { records, place } = object;
+  const isSinking =
+    !isDeepSpace(records, place) && records.values[records.size * place + placeOf('bstar')] > 0;
+  return isSinking ? { lowKm: 0, highKm: atStart.highKm } : undefined;
 }
 
 /**

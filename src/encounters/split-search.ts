@@ -52,7 +52,7 @@ export function splitSearch(objects: SearchObjects, rules: SearchRules): SplitSe
 
 /** Those of the others, all with mean orbits, whose heights over the window come near those of any primary. */
 function withinReach(
-  { recordOf, secularTerms, epochMs, validFromMs, validToMs }: SearchObjects,
+  { records, secularTerms, epochMs, validFromMs, validToMs }: SearchObjects,
   { startMs, endMs, missKm }: SearchRules,
   primaries: Int32Array,
   others: Int32Array,
@@ -61,9 +61,8 @@ function withinReach(
   const fromMs = (object: number) => Math.max(startMs, validFromMs[object]);
   const toMs = (object: number) => Math.min(endMs, validToMs[object]);
   const primaryBands = Array.from(primaries, (object) =>
-    primaryBand(recordOf(object), epochMs[object], fromMs(object), toMs(object)),
+    primaryBand({ records, place: object }, epochMs[object], fromMs(object), toMs(object)),
   );
-  // From their secular terms: no record of SGP4 need be made of them.
   const bands = Array.from(others, (object) =>
     nearEarthBand(secularTerms, TERMS_SIZE * object, epochMs[object], fromMs(object), toMs(object)),
   );
@@ -97,7 +96,6 @@ function partOf(
       count: indices.length,
       primaryCount: primaries.length,
       records: pickRecords(objects.records, indices),
-      recordOf: (place) => objects.recordOf(indices[place]),
       secularTerms: termsOf(objects, indices),
       epochMs: pick(objects.epochMs),
       eccentricity: pick(objects.eccentricity),

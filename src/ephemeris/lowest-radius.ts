@@ -1,5 +1,6 @@
-import { type SatRec, sgp4 } from 'satellite.js';
 import { EARTH_RADIUS_KM } from './gravity.js';
+import { MEAN_ANOMALY, MEAN_AXIS, MEAN_ECCENTRICITY, MEAN_MOTION, recordMeansAt } from './record-states.js';
+import { isDeepSpace, type Sgp4Records } from './sgp4-records.js';
 
 const MS_PER_MINUTE = 60_000;
 /**
@@ -9,22 +10,25 @@ const MS_PER_MINUTE = 60_000;
 const NEAR_EARTH_PAD_KM = 100;
 const DEEP_SPACE_PAD_KM = 500;
 
+const means = new Float64Array(4);
+
 /**
  * A radius that an object stays above for some hours: that of its mean ellipse at the end that is nearer to
  * perigee, or the perigee itself, less a pad.
  *
  * @returns 0 where SGP4 gives no state in the middle
  */
-export function lowestRadiusKm(record: SatRec, epochMs: number, fromMs: number, toMs: number): number {
-  const state = sgp4(record, ((fromMs + toMs) / 2 - epochMs) / MS_PER_MINUTE);
-  if (state === null) return 0;
-  const { am, em, mm, nm } = state.meanElements;
-  const half = ((toMs - fromMs) / 2 / MS_PER_MINUTE) * nm;
+export function lowestRadiusKm(records: Sgp4Records, place: number, fromMs: number, toMs: number): number {
+  if (!recordMeansAt(records, place, (fromMs + toMs) / 2, means)) return 0;
+  const axisKm = means[MEAN_AXIS] * EARTH_RADIUS_KM;
+  const eccentricity = means[MEAN_ECCENTRICITY];
+  const anomaly = means[MEAN_ANOMALY];
+  const half = ((toMs - fromMs) / 2 / MS_PER_MINUTE) * means[MEAN_MOTION];
   // Mean anomaly of the middle, from -pi to pi: what is left of it at the nearer end.
-  const middle = mm - 2 * Math.PI * Math.round(mm / (2 * Math.PI));
+  const middle = anomaly - 2 * Math.PI * Math.round(anomaly / (2 * Math.PI));
   const nearest = Math.max(0, Math.abs(middle) - half);
-  const pad = record.method === 'd' ? DEEP_SPACE_PAD_KM : NEAR_EARTH_PAD_KM;
-  return am * EARTH_RADIUS_KM * (1 - em * Math.cos(leastEccentricAnomaly(nearest, em))) - pad;
+  const pad = isDeepSpace(records, place) ? DEEP_SPACE_PAD_KM : NEAR_EARTH_PAD_KM;
+  return axisKm * (1 - eccentricity * Math.cos(leastEccentricAnomaly(nearest, eccentricity))) - pad;
 }
 
 /** Eccentric anomaly for a mean anomaly from 0 to pi, by bisection: a little low, which is the safe side. */

@@ -1,5 +1,5 @@
 import { type NativeModule, sgp4Module, writeRun } from './sgp4-module.js';
-import type { Sgp4Records } from './sgp4-records.js';
+import { placeOf, type Sgp4Records } from './sgp4-records.js';
 
 /** Records that lie in the module's memory at a time: pairs come in turns, and each is asked for several times. */
 const SLOTS = 16;
@@ -15,6 +15,9 @@ type Slots = {
   /** Position, then velocity. */
   readonly state: number;
   readonly error: number;
+  /** Places in a record: time of the integrator of resonances, and the mean elements of the latest run. */
+  readonly integrated: number;
+  readonly means: readonly number[];
   readonly heldPlace: Int32Array;
   readonly heldRecords: (Sgp4Records | undefined)[];
 };
@@ -38,6 +41,49 @@ export function recordStateAt(
   offset = 0,
 ): boolean {
   slots ??= createSlots(records.size);
+  if (run(slots, records, place, timeMs) === NO_STATE) return false;
+  const state = slots.state / 8;
+  const computed = slots.module.HEAPF64;
+  let sum = 0;
+  for (let k = 0; k < 6; k++) {
+    const value = computed[state + k];
+    out[offset + k] = value;
+    sum += value;
+  }
+  return Number.isFinite(sum);
+}
+
+/** Places in what `recordMeansAt` gives: semi-major axis (Earth radii), eccentricity, anomaly, motion (radians a minute). */
+export const MEAN_AXIS = 0;
+export const MEAN_ECCENTRICITY = 1;
+export const MEAN_ANOMALY = 2;
+export const MEAN_MOTION = 3;
+const MEANS = ['am', 'em', 'mm', 'nm'];
+
+/**
+ * Mean elements of one record at one time, as SGP4 has them before its periodic terms. `loadSgp4` must have been
+ * awaited.
+ *
+ * @param out four numbers, at `MEAN_AXIS` and the others
+ * @returns as `recordStateAt`
+ */
+export function recordMeansAt(
+  records: Sgp4Records,
+  place: number,
+  timeMs: number,
+  out: Float64Array,
+): boolean {
+  slots ??= createSlots(records.size);
+  const at = run(slots, records, place, timeMs);
+  if (at === NO_STATE) return false;
+  for (const [k, mean] of slots.means.entries()) out[k] = slots.module.HEAPF64[at + mean];
+  return true;
+}
+
+const NO_STATE = -1;
+
+/** @returns where the record lies, in doubles, which holds its mean elements */
+function run(slots: Slots, records: Sgp4Records, place: number, timeMs: number): number {
   const slot = place % SLOTS;
   const heap = slots.module.HEAPF64;
   const { size } = records;
@@ -50,19 +96,10 @@ export function recordStateAt(
     slots.heldPlace[slot] = place;
     slots.heldRecords[slot] = records;
   }
-  heap[at + records.at.integrated] = 0;
+  heap[at + slots.integrated] = 0;
   heap[slots.day / 8] = (timeMs - records.originMs) / MS_PER_DAY;
   slots.module._compute(slots.runs + slot * slots.runBytes);
-  if (slots.module.HEAP8[slots.error] !== 0) return false;
-  const state = slots.state / 8;
-  const computed = slots.module.HEAPF64;
-  let sum = 0;
-  for (let k = 0; k < 6; k++) {
-    const value = computed[state + k];
-    out[offset + k] = value;
-    sum += value;
-  }
-  return Number.isFinite(sum);
+  return slots.module.HEAP8[slots.error] === 0 ? at : NO_STATE;
 }
 
 function createSlots(recordSize: number): Slots {
@@ -91,6 +128,8 @@ function createSlots(recordSize: number): Slots {
     day,
     state,
     error,
+    integrated: placeOf('atime'),
+    means: MEANS.map(placeOf),
     heldPlace: new Int32Array(SLOTS).fill(-1),
     heldRecords: new Array(SLOTS).fill(undefined),
   };

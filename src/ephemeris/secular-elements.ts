@@ -1,5 +1,5 @@
-import { type SatRec, SatRecError } from 'satellite.js';
 import { EARTH_J2 } from './gravity.js';
+import { integerPlaceOf, isDeepSpace, placeOf, type Sgp4Records } from './sgp4-records.js';
 
 /** Numbers of one set of secular elements. */
 export const SECULAR_SIZE = 5;
@@ -49,59 +49,43 @@ const AT = {
   t5cof: 27,
   isimp: 28,
   inclo: 29,
-} as const satisfies Partial<Record<keyof SatRec, number>>;
+} as const;
 
 export const TERMS_SIZE = Object.keys(AT).length;
 /** Place of the inclination among the terms. */
 export const INCLINATION = AT.inclo;
-
-/** Whether SGP4 treats the orbit as near-earth: without the lunar-solar terms that are not in these formulas. */
-export function isNearEarth(record: SatRec): boolean {
-  return record.method === 'n' && record.error === SatRecError.None;
-}
 
 /** Whether there are terms of an orbit: there are none of deep-space ones. */
 export function hasSecularTerms(terms: Float64Array, at: number): boolean {
   return !Number.isNaN(terms[at]);
 }
 
+/** Where the terms lie in a record; the whole number among them is copied by itself. */
+type TermPlaces = { readonly from: Int32Array; readonly to: Int32Array; readonly isSimple: number };
+
+let places: TermPlaces | undefined;
+
+function termPlaces(): TermPlaces {
+  const doubles = Object.entries(AT).filter(([name]) => name !== 'isimp');
+  return {
+    // satellite.js's module has two motions: this is the Brouwer one.
+    from: Int32Array.from(doubles, ([name]) => placeOf(name === 'no' ? 'no_unkozai' : name)),
+    to: Int32Array.from(doubles, ([, at]) => at),
+    isSimple: integerPlaceOf('isimp'),
+  };
+}
+
 /** Copies what the secular elements of an orbit hang on; `NaN` where it is deep-space. */
-export function laySecularTerms(record: SatRec, terms: Float64Array, at: number): void {
-  if (!isNearEarth(record)) {
+export function laySecularTerms(records: Sgp4Records, place: number, terms: Float64Array, at: number): void {
+  if (isDeepSpace(records, place)) {
     terms[at] = Number.NaN;
     return;
   }
-  // Written out: a loop over names is ten times slower.
-  terms[at + AT.mo] = record.mo;
-  terms[at + AT.mdot] = record.mdot;
-  terms[at + AT.argpo] = record.argpo;
-  terms[at + AT.argpdot] = record.argpdot;
-  terms[at + AT.nodeo] = record.nodeo;
-  terms[at + AT.nodedot] = record.nodedot;
-  terms[at + AT.nodecf] = record.nodecf;
-  terms[at + AT.cc1] = record.cc1;
-  terms[at + AT.t2cof] = record.t2cof;
-  terms[at + AT.no] = record.no;
-  terms[at + AT.ecco] = record.ecco;
-  terms[at + AT.a] = record.a;
-  terms[at + AT.aycof] = record.aycof;
-  terms[at + AT.xlcof] = record.xlcof;
-  terms[at + AT.bstar] = record.bstar;
-  terms[at + AT.cc4] = record.cc4;
-  terms[at + AT.omgcof] = record.omgcof;
-  terms[at + AT.xmcof] = record.xmcof;
-  terms[at + AT.eta] = record.eta;
-  terms[at + AT.delmo] = record.delmo;
-  terms[at + AT.d2] = record.d2;
-  terms[at + AT.d3] = record.d3;
-  terms[at + AT.d4] = record.d4;
-  terms[at + AT.cc5] = record.cc5;
-  terms[at + AT.sinmao] = record.sinmao;
-  terms[at + AT.t3cof] = record.t3cof;
-  terms[at + AT.t4cof] = record.t4cof;
-  terms[at + AT.t5cof] = record.t5cof;
-  terms[at + AT.isimp] = record.isimp;
-  terms[at + AT.inclo] = record.inclo;
+  places ??= termPlaces();
+  const { from, to, isSimple } = places;
+  const record = records.size * place;
+  for (let k = 0; k < from.length; k++) terms[at + to[k]] = records.values[record + from[k]];
+  terms[at + AT.isimp] = records.integers[2 * record + isSimple];
 }
 
 /**

@@ -1,5 +1,5 @@
 import { constants, type SatRec } from 'satellite.js';
-import { type Field, sgp4Module } from './sgp4-module.js';
+import { type Field, type Sgp4Module, sgp4Module } from './sgp4-module.js';
 
 /**
  * SGP4 records as the WebAssembly module of satellite.js holds them, one after the other, in memory that threads
@@ -9,18 +9,16 @@ export type Sgp4Records = {
   readonly count: number;
   /** What the times of the records count from, milliseconds of UTC since 1970-01-01: then doubles resolve them. */
   readonly originMs: number;
+  /** The same memory three times. */
   readonly values: Float64Array;
+  readonly integers: Int32Array;
+  readonly bytes: Uint8Array;
   /** Doubles a record. */
   readonly size: number;
-  /** Places in a record. */
-  readonly at: {
-    readonly eccentricity: number;
-    /** Brouwer mean motion, radians a minute. */
-    readonly meanMotion: number;
-    /** Time of the integrator of resonances, which 0 starts anew. */
-    readonly integrated: number;
-  };
 };
+
+/** A record among others. */
+export type PlacedRecord = { readonly records: Sgp4Records; readonly place: number };
 
 const MS_PER_DAY = 86_400_000;
 /** The fields from the first to the second are of deep-space orbits alone, but for the sidereal time among them. */
@@ -37,79 +35,140 @@ const EARTH: Readonly<Record<string, number>> = {
   j4: constants.j4,
   j3oj2: constants.j3oj2,
 };
+const DEEP_SPACE_METHOD = 'd'.charCodeAt(0);
+
+type OwnField = Field & { readonly key: string; readonly place: number };
+
+/** How the fields of satellite.js's records go into those of its module. */
+type Layout = {
+  readonly size: number;
+  readonly fields: Record<'double' | 'int' | 'char', readonly OwnField[]>;
+  readonly nearEarthDoubles: readonly OwnField[];
+  readonly earth: readonly { readonly place: number; readonly value: number }[];
+};
+
+let known: Layout | undefined;
+
+/** @throws Error where the module's records are laid out otherwise than this was written for */
+function layoutFor(record: SatRec): Layout {
+  known ??= layoutOf(sgp4Module(), record);
+  return known;
+}
+
+function layoutOf({ recordBytes, recordFields }: Sgp4Module, record: SatRec): Layout {
+  if (recordBytes % 8 !== 0) throw new Error(`satellite.js: records of ${recordBytes} bytes`);
+  const [first, last] = DEEP_SPACE.map((name) => recordFields.findIndex((field) => field.name === name));
+  const own = recordFields
+    .map((field, k) => ({
+      ...field,
+      key: RENAMED[field.name] ?? field.name,
+      place: field.offset / 8,
+      isDeepSpace: k >= first && k <= last && field.name !== NOT_DEEP_SPACE,
+    }))
+    .filter(({ key }) => Object.hasOwn(record, key));
+  const ofType = (type: string) => own.filter((field) => field.type === type);
+  return {
+    size: recordBytes / 8,
+    fields: { double: ofType('double'), int: ofType('int'), char: ofType('char') },
+    nearEarthDoubles: ofType('double').filter(({ isDeepSpace }) => !isDeepSpace),
+    earth: Object.entries(EARTH).map(([name, value]) => ({ place: placeOf(name), value })),
+  };
+}
+
+function fieldOf(name: string, type: string): Field {
+  const field = sgp4Module().recordFields.find((each) => each.name === name);
+  if (field?.type !== type) throw new Error(`satellite.js: no ${type} ${name} in a record of its module`);
+  return field;
+}
 
 /**
- * Lays records for the module. `setSatRecs` of satellite.js takes 45 microseconds a record, as long as some fifty
- * states. `loadSgp4` must have been awaited.
+ * Place of a number in a record, in doubles. `loadSgp4` must have been awaited.
  *
- * @param epochMs of each record
- * @param originMs a time near those that states will be asked for
- * @throws Error where the module's records are laid out otherwise than this was written for
+ * @param name as satellite.js's module has it
  */
-export function laySgp4Records(
-  records: readonly SatRec[],
+export function placeOf(name: string): number {
+  return fieldOf(name, 'double').offset / 8;
+}
+
+/** As `placeOf`, of a whole number, in fours of bytes. */
+export function integerPlaceOf(name: string): number {
+  return fieldOf(name, 'int').offset / 4;
+}
+
+/** Room for records, which `laySgp4Record` fills. `loadSgp4` must have been awaited. */
+export function createSgp4Records(count: number, originMs: number): Sgp4Records {
+  const { recordBytes } = sgp4Module();
+  const buffer = new SharedArrayBuffer(recordBytes * count);
+  return {
+    count,
+    originMs,
+    values: new Float64Array(buffer),
+    integers: new Int32Array(buffer),
+    bytes: new Uint8Array(buffer),
+    size: recordBytes / 8,
+  };
+}
+
+/**
+ * Lays a record for the module: satellite.js's own `setSatRecs` takes 45 microseconds, as long as some fifty
+ * states.
+ */
+export function laySgp4Record(records: Sgp4Records, place: number, record: SatRec, epochMs: number): void {
+  const layout = layoutFor(record);
+  const { values, integers, bytes, size } = records;
+  const from = size * place;
+  const own = record as unknown as Readonly<Record<string, number | string>>;
+  const doubles = record.method === 'd' ? layout.fields.double : layout.nearEarthDoubles;
+  for (const field of doubles) values[from + field.place] = own[field.key] as number;
+  for (const { key, offset } of layout.fields.int) integers[2 * from + offset / 4] = own[key] as number;
+  for (const { key, offset } of layout.fields.char) {
+    bytes[8 * from + offset] = (own[key] as string).charCodeAt(0) || 0;
+  }
+  for (const { place: at, value } of layout.earth) values[from + at] = value;
+  layEpoch(records, place, epochMs);
+}
+
+let epochPlaces: { readonly days: number; readonly rest: number } | undefined;
+
+function layEpoch({ values, size, originMs }: Sgp4Records, place: number, epochMs: number): void {
+  epochPlaces ??= { days: placeOf('jdsatepoch'), rest: placeOf('jdsatepochF') };
+  values[size * place + epochPlaces.days] = (epochMs - originMs) / MS_PER_DAY;
+  values[size * place + epochPlaces.rest] = 0;
+}
+
+/**
+ * Copies of records, their times counted from another origin.
+ *
+ * @param epochMs of each
+ */
+export function gatherRecords(
+  placed: readonly PlacedRecord[],
   epochMs: ArrayLike<number>,
   originMs: number,
 ): Sgp4Records {
-  const { recordBytes, recordFields } = sgp4Module();
-  const size = recordBytes / 8;
-  if (!Number.isInteger(size)) throw new Error(`satellite.js: records of ${recordBytes} bytes`);
-  const buffer = new SharedArrayBuffer(recordBytes * records.length);
-  const values = new Float64Array(buffer);
-  const view = new DataView(buffer);
-  const placeOf = (name: string): number => {
-    const field = recordFields.find((each) => each.name === name);
-    if (field?.type !== 'double') throw new Error(`satellite.js: no double ${name} in a record`);
-    return field.offset / 8;
-  };
-  const at = {
-    eccentricity: placeOf('ecco'),
-    meanMotion: placeOf('no_unkozai'),
-    integrated: placeOf('atime'),
-  };
-  const [epoch, epochFraction] = [placeOf('jdsatepoch'), placeOf('jdsatepochF')];
-  const earth = Object.entries(EARTH).map(([name, value]) => ({ place: placeOf(name), value }));
-  const fields = ownFields(recordFields, records[0]);
-  const nearEarthDoubles = fields.doubles.filter(({ isDeepSpace }) => !isDeepSpace);
-  records.forEach((record, index) => {
-    const from = size * index;
-    const own = record as unknown as Readonly<Record<string, number | string>>;
-    for (const { key, place } of record.method === 'd' ? fields.doubles : nearEarthDoubles) {
-      values[from + place] = own[key] as number;
-    }
-    for (const { key, offset } of fields.integers) view.setInt32(8 * from + offset, own[key] as number, true);
-    for (const { key, offset } of fields.letters) {
-      view.setUint8(8 * from + offset, (own[key] as string).charCodeAt(0) || 0);
-    }
-    for (const { place, value } of earth) values[from + place] = value;
-    values[from + epoch] = (epochMs[index] - originMs) / MS_PER_DAY;
-    values[from + epochFraction] = 0;
+  const gathered = createSgp4Records(placed.length, originMs);
+  const { size } = gathered;
+  placed.forEach(({ records, place }, k) => {
+    gathered.values.set(records.values.subarray(size * place, size * (place + 1)), size * k);
+    layEpoch(gathered, k, epochMs[k]);
   });
-  return { count: records.length, originMs, values, size, at };
-}
-
-/** Those of the module's fields that a record of satellite.js has. */
-function ownFields(recordFields: readonly Field[], record: SatRec | undefined) {
-  const [first, last] = DEEP_SPACE.map((name) => recordFields.findIndex((field) => field.name === name));
-  const own = recordFields
-    .map(({ name, type, offset }, k) => ({
-      key: RENAMED[name] ?? name,
-      type,
-      offset,
-      place: offset / 8,
-      isDeepSpace: k >= first && k <= last && name !== NOT_DEEP_SPACE,
-    }))
-    .filter(({ key }) => record !== undefined && Object.hasOwn(record, key));
-  const ofType = (type: string) => own.filter((field) => field.type === type);
-  return { doubles: ofType('double'), integers: ofType('int'), letters: ofType('char') };
+  return gathered;
 }
 
 /** Some of the records, in the order of their places. */
 export function pickRecords(records: Sgp4Records, places: Int32Array): Sgp4Records {
-  const { size, values } = records;
-  const picked = new Float64Array(new SharedArrayBuffer(8 * size * places.length));
+  const { size, values, originMs } = records;
+  const picked = createSgp4Records(places.length, originMs);
   places.forEach((place, k) => {
-    picked.set(values.subarray(size * place, size * (place + 1)), size * k);
+    picked.values.set(values.subarray(size * place, size * (place + 1)), size * k);
   });
-  return { ...records, count: places.length, values: picked };
+  return picked;
 }
+
+/** Whether SGP4 treats the orbit as deep-space: with the Moon, the Sun and resonances. */
+export function isDeepSpace({ bytes, size }: Sgp4Records, place: number): boolean {
+  deepSpaceByte ??= fieldOf('method', 'char').offset;
+  return bytes[8 * size * place + deepSpaceByte] === DEEP_SPACE_METHOD;
+}
+
+let deepSpaceByte: number | undefined;

@@ -1,6 +1,6 @@
 import type { ElementSet, UnusedElements } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
-import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
+import { recordStateAt } from '../ephemeris/record-states.js';
 import type { JobPorts } from './screen-options.js';
 import type { ScreenedObject } from './screened-object.js';
 import type { SearchOutcome } from './search-in-workers.js';
@@ -16,10 +16,10 @@ export function failedSets(
   return [...outcome.lastMsOf]
     .sort(([a], [b]) => a - b)
     .map(([index, lastMs]) => {
-      const { set, designator, record, validFromMs } = objects[index];
+      const { set, designator, records, place, validFromMs } = objects[index];
       const unused = { source: set.source, designator, reason: 'failed' } as const;
       const fromMs = Math.max(startMs, validFromMs);
-      if (!sgp4StateAt(record, set.epochMs, fromMs, state, 0)) {
+      if (!recordStateAt(records, place, fromMs, state)) {
         const detail = `SGP4 gives no state at ${formatUtc(fromMs)}, where its screening starts (decayed before, or elements too old): not screened`;
         return { ...unused, detail };
       }

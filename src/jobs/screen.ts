@@ -1,6 +1,5 @@
 import { CAUTION } from '../caution.js';
 import { expectCurrentFleet } from '../elements/age.js';
-import type { ElementSet } from '../elements/element-set.js';
 import { formatUtc } from '../elements/utc.js';
 import { findCompanions } from '../encounters/companions.js';
 import { pairKey, slabCount } from '../encounters/search-problem.js';
@@ -27,10 +26,10 @@ import { publishRun, writeResults } from './publish-run.js';
 import { warnOfRejected } from './rejected-sets.js';
 import { recordedOptions } from './run-record.js';
 import type { JobPorts, ScreenOptions, ScreenOutcome } from './screen-options.js';
-import { screenedObject } from './screened-object.js';
+import { screenedObjects } from './screened-object.js';
 import { searchAndRank, type Window } from './search-and-rank.js';
 import { withSearchWorkers } from './search-in-workers.js';
-import { objectsOfPlan, rulesOfPlan, searchPlanOf } from './search-plan.js';
+import { rulesOfPlan, searchPlanOf } from './search-plan.js';
 import { createTimings } from './timings.js';
 import { warnOfUnlisted } from './unlisted-objects.js';
 import { withinReach } from './within-reach.js';
@@ -169,9 +168,8 @@ function prepareSearch(
   ports: JobPorts,
 ) {
   const { allOnAll, volume, maxAgeDays } = options;
-  const screened = (set: ElementSet) => screenedObject(set, knowledge);
-  const primaries = (allOnAll ? inputs.catalog : inputs.fleet).map(screened);
-  const others = (allOnAll ? [] : inputs.catalog).map(screened);
+  const primaries = screenedObjects(allOnAll ? inputs.catalog : inputs.fleet, knowledge);
+  const others = screenedObjects(allOnAll ? [] : inputs.catalog, knowledge);
   warnOfUnlisted(knowledge.listed, options.objectsPath, [...primaries, ...others], ports);
   const missKm = enclosingRadiusKm(volume);
   const objects = [...primaries, ...withinReach(others, primaries, missKm, startMs, endMs)];
@@ -182,8 +180,7 @@ function prepareSearch(
       'every object of the catalog is one of the fleet, so there is nothing to screen it against: give another --catalog, or --within-fleet for the fleet against itself',
     );
   }
-  const whole = searchPlanOf(objects, {
-    primaryCount,
+  const whole = searchPlanOf(objects, primaryCount, {
     startMs,
     endMs,
     withinPrimaries,
@@ -191,7 +188,7 @@ function prepareSearch(
     volume,
     maxAgeDays,
   });
-  const companions = findCompanions(objectsOfPlan(whole), rulesOfPlan(whole));
+  const companions = findCompanions(whole.objects, rulesOfPlan(whole));
   const skippedPairs = companions.map(({ first, second }) => pairKey(first, second, objects.length));
   const plan = { ...whole, skippedPairs };
   return { primaries, others, objects, withinPrimaries, companions, plan };

@@ -3,7 +3,7 @@ import { createSlabSearcher, searchSlab } from '../encounters/search-slab.js';
 import { loadSgp4 } from '../ephemeris/sgp4-module.js';
 import { assessApproaches } from './assess-approach.js';
 import { createEncounterRecords, FIELDS } from './encounter-records.js';
-import { objectsOfPlan, rulesOfPlan, type SearchPlan } from './search-plan.js';
+import { rulesOfPlan, type SearchPlan } from './search-plan.js';
 import type { ThreadMessage } from './worker-threads.js';
 
 /** What a worker answers for one slab. */
@@ -32,7 +32,7 @@ async function serve(): Promise<void> {
 }
 
 function searchOf(plan: SearchPlan): (slab: number) => SlabAnswer {
-  const objects = objectsOfPlan(plan);
+  const { objects } = plan;
   const searcher = createSlabSearcher(objects, rulesOfPlan(plan));
   return (slab) => {
     const { approaches, ...facts } = searchSlab(searcher, slab);

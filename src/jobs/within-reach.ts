@@ -16,8 +16,8 @@ export function withinReach(
 ): ScreenedObject[] {
   if (others.length === 0) return [];
   const bandsOf = (objects: readonly ScreenedObject[], bandOf: typeof primaryBand) =>
-    objects.map(({ record, set, validFromMs, validToMs }) =>
-      bandOf(record, set.epochMs, Math.max(startMs, validFromMs), Math.min(endMs, validToMs)),
+    objects.map(({ records, place, set, validFromMs, validToMs }) =>
+      bandOf({ records, place }, set.epochMs, Math.max(startMs, validFromMs), Math.min(endMs, validToMs)),
     );
   const passes = sieve(bandsOf(others, radiusBand), bandsOf(primaries, primaryBand), missKm);
   return others.filter((_, i) => passes[i] === 1);

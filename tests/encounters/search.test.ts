@@ -6,10 +6,10 @@ import { SLOW_GRID_MS } from '../../src/encounters/refine-on-sgp4.js';
 import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { setPassing } from '../synthetic/passing-orbit.js';
 import { seededRandom } from '../synthetic/random.js';
-import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 import { type BruteForceEncounter, bruteForceEncounters } from './brute-force.js';
 import { searchObjectsOf } from './search-objects.js';
 

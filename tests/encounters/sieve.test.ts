@@ -1,12 +1,16 @@
-import { describe, expect, it } from 'vitest';
+import { beforeAll, describe, expect, it } from 'vitest';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { type RadiusBand, radiusBand, sieve } from '../../src/encounters/sieve.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const DAY_MS = 86_400_000;
+
+beforeAll(loadSgp4);
 
 describe('radiusBand', () => {
   it('holds every radius that SGP4 gives in the window', () => {
@@ -15,7 +19,7 @@ describe('radiusBand', () => {
     let banded = 0;
     for (const set of syntheticCatalog({ seed: 31, count: 160, epochMs: START_MS })) {
       const record = sgp4RecordOf(set);
-      const band = radiusBand(record, set.epochMs, START_MS, endMs);
+      const band = radiusBand({ records: sgp4RecordsOf([set]), place: 0 }, set.epochMs, START_MS, endMs);
       if (band === undefined) continue;
       banded++;
       for (let timeMs = START_MS; timeMs <= endMs; timeMs += 2_717_000) {

@@ -1,8 +1,8 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import { enclosingRadiusKm, passageThrough, type ScreeningVolume } from '../../src/encounters/volume.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
-import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 import { bruteForceEncounters, bruteForcePassages } from './brute-force.js';
 
 const START_MS = Date.UTC(2026, 11, 1);

@@ -1,8 +1,8 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import { createBulkNodes } from '../../src/ephemeris/bulk-nodes.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
-import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const TIMES_MS = [START_MS, START_MS + 3_600_000, START_MS + 5 * 86_400_000];

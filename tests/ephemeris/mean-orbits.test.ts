@@ -6,7 +6,6 @@ import {
   AXIS,
   E_ACROSS_NODE,
   E_ALONG_NODE,
-  isNearEarth,
   LATITUDE,
   laySecularTerms,
   NODE,
@@ -14,8 +13,12 @@ import {
   secularElementsAt,
   TERMS_SIZE,
 } from '../../src/ephemeris/secular-elements.js';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
+
+await loadSgp4();
 
 const START_MS = Date.UTC(2026, 11, 1);
 const HALF_SPAN_S = 7200;
@@ -30,9 +33,9 @@ const objects = [
   }),
 ].flatMap((set) => {
   const record = sgp4RecordOf(set);
-  if (!isNearEarth(record)) return [];
+  if (record.method === 'd') return [];
   const terms = new Float64Array(TERMS_SIZE);
-  laySecularTerms(record, terms, 0);
+  laySecularTerms(sgp4RecordsOf([set]), 0, terms, 0);
   return [{ set, record, terms }];
 });
 

@@ -1,13 +1,20 @@
-import { BulkPropagator, createSingleThreadRuntime, EciBaseCalculator } from 'satellite.js';
+import { BulkPropagator, createSingleThreadRuntime, EciBaseCalculator, sgp4 } from 'satellite.js';
 import { beforeAll, describe, expect, it } from 'vitest';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
-import { recordStateAt } from '../../src/ephemeris/record-states.js';
+import {
+  MEAN_ANOMALY,
+  MEAN_AXIS,
+  MEAN_ECCENTRICITY,
+  MEAN_MOTION,
+  recordMeansAt,
+  recordStateAt,
+} from '../../src/ephemeris/record-states.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { laySgp4Records, pickRecords } from '../../src/ephemeris/sgp4-records.js';
+import { gatherRecords, pickRecords } from '../../src/ephemeris/sgp4-records.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
-import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const DAY_MS = 86_400_000;
@@ -59,6 +66,36 @@ describe('states of single records', () => {
     }
   });
 
+  it('are the same to a nanosecond where times count from elsewhere', () => {
+    const records = sgp4RecordsOf(sets);
+    const epochs = sets.map(({ epochMs }) => epochMs);
+    const placed = sets.map((_, place) => ({ records, place }));
+    const moved = gatherRecords(placed, epochs, START_MS + 3 * DAY_MS);
+    const [one, other] = [new Float64Array(6), new Float64Array(6)];
+    for (let place = 0; place < sets.length; place++) {
+      if (!recordStateAt(records, place, START_MS, one)) continue;
+      expect(recordStateAt(moved, place, START_MS, other)).toBe(true);
+      expect(Math.hypot(...[0, 1, 2].map((axis) => one[axis] - other[axis]))).toBeLessThan(1e-8);
+    }
+  });
+
+  it('come with the mean elements that SGP4 in JavaScript has', () => {
+    const records = sgp4RecordsOf(sets);
+    const means = new Float64Array(4);
+    let compared = 0;
+    for (const [place, set] of sets.entries()) {
+      const timeMs = START_MS + 2 * DAY_MS;
+      const expected = sgp4(sgp4RecordOf(set), (timeMs - set.epochMs) / 60_000)?.meanElements;
+      if (!recordMeansAt(records, place, timeMs, means) || expected === undefined) continue;
+      compared++;
+      expect(means[MEAN_AXIS]).toBeCloseTo(expected.am, 12);
+      expect(means[MEAN_ECCENTRICITY]).toBeCloseTo(expected.em, 12);
+      expect(means[MEAN_ANOMALY]).toBeCloseTo(expected.mm, 9);
+      expect(means[MEAN_MOTION]).toBeCloseTo(expected.nm, 12);
+    }
+    expect(compared).toBeGreaterThan(350);
+  });
+
   it('are of the records that are asked, where two share a place', () => {
     const records = sgp4RecordsOf(sets);
     const picked = pickRecords(records, Int32Array.of(7, 3));
@@ -75,11 +112,10 @@ describe('states of single records', () => {
   });
 });
 
-describe('laySgp4Records', () => {
+describe('laySgp4Record', () => {
   it('lays every number that satellite.js hands to its own propagator', async () => {
     const own = sets.map(sgp4RecordOf);
-    const epochs = sets.map(({ epochMs }) => epochMs);
-    const { values, size, count } = laySgp4Records(own, epochs, START_MS);
+    const { values, size, count } = sgp4RecordsOf(sets);
     const runtime = await createSingleThreadRuntime();
     const propagator = new BulkPropagator({
       runtime,

@@ -8,9 +8,9 @@ import type { Sgp4Records } from '../../src/ephemeris/sgp4-records.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
 import { createCursorRoom, createTrackCursor, stateOnTrack } from '../../src/ephemeris/track-cursor.js';
 import { createTrackMaker, type TrackedObject } from '../../src/ephemeris/tracks.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { type CatalogMix, syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
-import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 import { move } from './motion-under-gravity.js';
 
 const START_MS = Date.UTC(2026, 11, 1);

@@ -4,6 +4,7 @@ import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
 import { type PathSide, pathProbability } from '../../src/jobs/path-probability.js';
+import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { assessInFull } from '../../src/probability/assess-encounter.js';
 import { monteCarlo } from '../../src/probability/monte-carlo.js';
 import { testStraightLine } from '../../src/probability/straight-line.js';
@@ -12,7 +13,6 @@ import type { Vector3 } from '../../src/vector.js';
 import { bruteForceEncounters } from '../encounters/brute-force.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
-import { sgp4RecordsOf } from '../synthetic/sgp4-records.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const HOURS_6_MS = 6 * 3_600_000;

@@ -1,10 +1,11 @@
 import { Writable } from 'node:stream';
-import { describe, expect, it } from 'vitest';
+import { beforeAll, describe, expect, it } from 'vitest';
+import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import { sensitivityOf } from '../../src/jobs/conjunctions.js';
 import { createEncounterRecords, extendRecords, FIELD } from '../../src/jobs/encounter-records.js';
 import type { OutputFolder } from '../../src/jobs/output-folder.js';
 import { rankedRecords } from '../../src/jobs/ranked-records.js';
-import { screenedObject } from '../../src/jobs/screened-object.js';
+import { screenedObjects } from '../../src/jobs/screened-object.js';
 import { writeRankedTables } from '../../src/jobs/write-ranked-tables.js';
 import { CONJUNCTION_COLUMNS } from '../../src/tables/conjunctions-csv.js';
 import { csvHeader, csvRow } from '../../src/tables/csv-text.js';
@@ -42,9 +43,7 @@ function folderInMemory(): { folder: OutputFolder; files: Map<string, string> } 
 function manyEncounters(count: number) {
   const random = seededRandom(81);
   const knowledge = { listed: undefined, sigmas: undefined, defaultSigmas: defaultSigmaTable() };
-  const objects = syntheticCatalog({ seed: 82, count: 50, epochMs: START_MS }).map((set) =>
-    screenedObject(set, knowledge),
-  );
+  const objects = screenedObjects(syntheticCatalog({ seed: 82, count: 50, epochMs: START_MS }), knowledge);
   const records = createEncounterRecords(count, SharedArrayBuffer);
   for (let k = 0; k < count; k++) {
     const at = extendRecords(records, 1);
@@ -63,6 +62,8 @@ function manyEncounters(count: number) {
 async function compiled(): Promise<WriteRankedTables> {
   return await import(new URL('../../dist/jobs/write-ranked-tables.js', import.meta.url).href);
 }
+
+beforeAll(loadSgp4);
 
 describe('the ranked tables', () => {
   it('have the same bytes from one thread and from three', async () => {

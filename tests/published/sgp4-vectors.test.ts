@@ -7,7 +7,7 @@ import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { elementLineChecksum } from '../../src/elements/two-line.js';
 import { recordStateAt } from '../../src/ephemeris/record-states.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { laySgp4Records } from '../../src/ephemeris/sgp4-records.js';
+import { createSgp4Records, laySgp4Record } from '../../src/ephemeris/sgp4-records.js';
 import { readText } from '../elements/formats.js';
 
 // Element sets and states: Vallado, Crawford, Hujsak, Kelso, "Revisiting Spacetrack Report #3",
@@ -71,7 +71,8 @@ function largestDifferences(record: SatRec, rows: readonly Row[]): { km: number;
   let km = 0;
   let kmPerS = 0;
   // Times of the verification count from the epoch.
-  const records = laySgp4Records([record], [0], 0);
+  const records = createSgp4Records(1, 0);
+  laySgp4Record(records, 0, record, 0);
   const compiled = new Float64Array(6);
   for (const { minutes, state } of rows) {
     const found = sgp4(record, minutes);

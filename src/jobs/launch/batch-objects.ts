@@ -1,6 +1,10 @@
-import { sgp4RecordOf } from '../../elements/sgp4-record.js';
 import type { SigmaCurve } from '../../uncertainty/sigma-table.js';
-import { type ObjectKnowledge, type ScreenedObject, screenedObject } from '../screened-object.js';
+import {
+  type ObjectKnowledge,
+  type ScreenedObject,
+  screenedObjects,
+  sgp4RecordsOf,
+} from '../screened-object.js';
 import type { BatchPhase } from './phases.js';
 import { slippedSet } from './slip.js';
 
@@ -16,8 +20,14 @@ export function batchObjects(
   knowledge: ObjectKnowledge,
   injection: SigmaCurve,
 ): ScreenedObject[] {
-  return phases.map(({ set, designator, releaseMs, validFromMs, validToMs }) => ({
-    ...screenedObject(set, knowledge, { fromMs: validFromMs, toMs: validToMs }),
+  const objects = screenedObjects(
+    phases.map(({ set }) => set),
+    knowledge,
+  );
+  return phases.map(({ designator, releaseMs, validFromMs, validToMs }, k) => ({
+    ...objects[k],
+    validFromMs,
+    validToMs,
     curve: knowledge.sigmas?.objects.get(designator) ?? injection,
     agesFromMs: releaseMs,
     isPredicted: true,
@@ -25,19 +35,25 @@ export function batchObjects(
 }
 
 /**
- * An object of the batch when its launch slips: everything later by the slip, screened to the end of the
+ * The objects of the batch when its launch slips: everything later by the slip, screened to the end of the
  * window of that launch.
  *
  * @param windowEndMs of the nominal launch
  */
-export function slippedObject(object: ScreenedObject, slipMs: number, windowEndMs: number): ScreenedObject {
-  const set = slipMs === 0 ? object.set : slippedSet(object.set, slipMs);
-  return {
+export function slippedObjects(
+  batch: readonly ScreenedObject[],
+  slipMs: number,
+  windowEndMs: number,
+): ScreenedObject[] {
+  const sets = batch.map(({ set }) => (slipMs === 0 ? set : slippedSet(set, slipMs)));
+  const records = sgp4RecordsOf(sets);
+  return batch.map((object, place) => ({
     ...object,
-    set,
-    record: slipMs === 0 ? object.record : sgp4RecordOf(set),
+    set: sets[place],
+    records,
+    place,
     validFromMs: object.validFromMs + slipMs,
     validToMs: Math.min(object.validToMs, windowEndMs) + slipMs,
     agesFromMs: object.agesFromMs + slipMs,
-  };
+  }));
 }

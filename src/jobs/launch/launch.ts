@@ -19,7 +19,7 @@ import { type OutputFolder, withOutputFolder } from '../output-folder.js';
 import { publishRun, writeResults } from '../publish-run.js';
 import type { RankedRecords } from '../ranked-records.js';
 import type { JobPorts } from '../screen-options.js';
-import { type ObjectKnowledge, type ScreenedObject, screenedObject } from '../screened-object.js';
+import { type ObjectKnowledge, type ScreenedObject, screenedObjects } from '../screened-object.js';
 import { searchAndRank } from '../search-and-rank.js';
 import { withSearchWorkers } from '../search-in-workers.js';
 import { createTimings } from '../timings.js';
@@ -72,8 +72,9 @@ async function launchInto(
   warnOfOldElements({ fleet: inputs.fleet, catalog: inputs.catalog }, startMs, options.maxAgeDays, ports);
   timings.end('reading');
 
+  await loadSgp4();
   const nominal = batchObjects(phases, knowledge, injectionCurve(options.injection));
-  const others = [...inputs.fleet, ...inputs.catalog].map((set) => screenedObject(set, knowledge));
+  const others = screenedObjects([...inputs.fleet, ...inputs.catalog], knowledge);
   warnOfUnlisted(knowledge.listed, options.objectsPath, [...nominal, ...others], ports);
   warnOfIdleSigmas(knowledge, nominal, ports);
   const tooSmall = volumeWarning(nominal, options.volume, endMs);
@@ -84,7 +85,6 @@ async function launchInto(
   const missKm = enclosingRadiusKm(options.volume);
   const threads = Math.min(options.workers, slabCount(window));
   const searched = await withSearchWorkers(threads, ports, async (workers) => {
-    await loadSgp4();
     // On its own, so that its figures are to the last digit those of a run without slips.
     const planned = searchOf([0], false);
     const { objects, flying } = planned;

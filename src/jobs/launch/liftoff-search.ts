@@ -3,7 +3,7 @@ import { enclosingRadiusKm, type ScreeningVolume } from '../../encounters/volume
 import type { ScreenedObject } from '../screened-object.js';
 import { type SearchPlan, searchPlanOf } from '../search-plan.js';
 import { withinReach } from '../within-reach.js';
-import { slippedObject } from './batch-objects.js';
+import { slippedObjects } from './batch-objects.js';
 import { type FlyingAlong, findFlyingAlong } from './flying-along.js';
 
 /** Several liftoffs of one batch as one search. */
@@ -42,15 +42,12 @@ export function liftoffSearch(
   },
 ): LiftoffSearch {
   const phaseCount = batch.length;
-  const copies = slipsMs.flatMap((slipMs) =>
-    batch.map((object) => slippedObject(object, slipMs, window.endMs)),
-  );
+  const copies = slipsMs.flatMap((slipMs) => slippedObjects(batch, slipMs, window.endMs));
   const startMs = window.startMs + Math.min(...slipsMs);
   const endMs = window.endMs + Math.max(...slipsMs);
   const missKm = enclosingRadiusKm(settings.volume);
   const objects = [...copies, ...withinReach(others, copies, missKm, startMs, endMs)];
-  const whole = searchPlanOf(objects, {
-    primaryCount: copies.length,
+  const whole = searchPlanOf(objects, copies.length, {
     startMs,
     endMs,
     withinPrimaries: false,
@@ -59,7 +56,7 @@ export function liftoffSearch(
     maxAgeDays: settings.maxAgeDays,
     onlyProbability: settings.onlyProbability,
   });
-  const flying = findFlyingAlong(objects, whole.records, copies.length, missKm);
+  const flying = findFlyingAlong(objects, whole.objects.records, copies.length, missKm);
   const skipped = new Set<number>();
   for (const { first, second } of flying) {
     const liftoff = Math.floor(first / phaseCount);

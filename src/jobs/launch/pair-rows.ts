@@ -1,4 +1,3 @@
-import { laySgp4Records } from '../../ephemeris/sgp4-records.js';
 import { type BatchPair, type PairRemark, sortBatchPairs } from '../../tables/batch-pairs-csv.js';
 import type { ScreenedObject } from '../screened-object.js';
 import { type FollowedObject, followPairs } from './follow-pairs.js';
@@ -22,21 +21,6 @@ export function pairRows(
 ): BatchPair[] {
   const members = [...groupBy(batch, ({ designator }) => designator).values()];
   const objects = [...members, ...along.map((object) => [object])];
-  const phases = objects.flat();
-  const records = laySgp4Records(
-    phases.map(({ record }) => record),
-    phases.map(({ set }) => set.epochMs),
-    window.startMs,
-  );
-  const placeOf = new Map(phases.map((phase, place) => [phase, place]));
-  const followedObject = (own: readonly ScreenedObject[]): FollowedObject => ({
-    phases: own.map((phase) => ({
-      records,
-      place: placeOf.get(phase) as number,
-      fromMs: phase.validFromMs,
-      toMs: phase.validToMs,
-    })),
-  });
   const followed = followPairs(objects.map(followedObject), members.length, window, (first, second) => {
     return second >= members.length && isSkipped(objects[first][0].designator, objects[second][0]);
   });
@@ -69,6 +53,17 @@ export function pairRows(
       };
     }),
   );
+}
+
+function followedObject(phases: readonly ScreenedObject[]): FollowedObject {
+  return {
+    phases: phases.map(({ records, place, validFromMs, validToMs }) => ({
+      records,
+      place,
+      fromMs: validFromMs,
+      toMs: validToMs,
+    })),
+  };
 }
 
 /** Of the phase that holds at a time. */

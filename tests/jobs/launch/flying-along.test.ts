@@ -1,6 +1,7 @@
 import { sgp4 } from 'satellite.js';
 import { describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../../src/elements/element-set.js';
+import { sgp4RecordOf } from '../../../src/elements/sgp4-record.js';
 import { pairKey } from '../../../src/encounters/search-problem.js';
 import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
 import { findFlyingAlong, probablySame } from '../../../src/jobs/launch/flying-along.js';
@@ -9,13 +10,15 @@ import { pairRows } from '../../../src/jobs/launch/pair-rows.js';
 import {
   type ObjectKnowledge,
   type ScreenedObject,
-  screenedObject,
+  screenedObjects,
+  sgp4RecordsOf,
 } from '../../../src/jobs/screened-object.js';
 import { defaultSigmaTable } from '../../../src/uncertainty/default-sigma-table.js';
 import { syntheticCatalog } from '../../synthetic/catalog.js';
 import { atEpoch } from '../../synthetic/mean-elements.js';
-import { sgp4RecordsOf } from '../../synthetic/sgp4-records.js';
 import { batchSet, RELEASE_MS } from './batch-sets.js';
+
+await loadSgp4();
 
 const HOUR_MS = 3_600_000;
 const KNOWLEDGE: ObjectKnowledge = {
@@ -36,13 +39,14 @@ const catalogSets = batchSets.map((set, k): ElementSet => {
   const later = atEpoch({ ...set, meanAnomalyDeg: set.meanAnomalyDeg + 0.0004 }, RELEASE_MS + 7 * HOUR_MS);
   return { ...(later as ElementSet), designator: String(90_001 + k), name: '' };
 });
-const batch = batchSets.map((set) =>
-  screenedObject(set, KNOWLEDGE, { fromMs: RELEASE_MS, toMs: Number.POSITIVE_INFINITY }),
+const batch = screenedObjects(batchSets, KNOWLEDGE).map((object) => ({ ...object, validFromMs: RELEASE_MS }));
+const others = screenedObjects(
+  [
+    ...syntheticCatalog({ seed: 5, count: 300, epochMs: RELEASE_MS, firstDesignator: 300_001 }),
+    ...catalogSets,
+  ],
+  KNOWLEDGE,
 );
-const others = [
-  ...syntheticCatalog({ seed: 5, count: 300, epochMs: RELEASE_MS, firstDesignator: 300_001 }),
-  ...catalogSets,
-].map((set) => screenedObject(set, KNOWLEDGE));
 
 type Components = { readonly x: number; readonly y: number; readonly z: number };
 
@@ -52,10 +56,11 @@ function apart(a: Components, b: Components): number {
 
 /** The rule in plain words of its own: five minutes apart for a day, and what rests in the orbiting frame taken off. */
 function isTogether(a: ScreenedObject, b: ScreenedObject, missKm: number): boolean {
+  const [record1, record2] = [sgp4RecordOf(a.set), sgp4RecordOf(b.set)];
   let closest = Number.POSITIVE_INFINITY;
   for (let ms = RELEASE_MS; ms <= RELEASE_MS + 24 * HOUR_MS; ms += HOUR_MS / 12) {
-    const one = sgp4(a.record, (ms - a.set.epochMs) / 60_000);
-    const two = sgp4(b.record, (ms - b.set.epochMs) / 60_000);
+    const one = sgp4(record1, (ms - a.set.epochMs) / 60_000);
+    const two = sgp4(record2, (ms - b.set.epochMs) / 60_000);
     if (one === null || two === null) return false;
     const km = apart(one.position, two.position);
     const kmPerS = apart(one.velocity, two.velocity);
@@ -65,8 +70,6 @@ function isTogether(a: ScreenedObject, b: ScreenedObject, missKm: number): boole
   }
   return closest <= missKm;
 }
-
-await loadSgp4();
 
 describe('objects that the catalog holds already', () => {
   const search = liftoffSearch([0], batch, others, WINDOW, VOLUME);
@@ -80,10 +83,12 @@ describe('objects that the catalog holds already', () => {
   });
 
   it('have no encounters with any of the batch', () => {
-    const { skippedPairs, primaryCount } = search.plan;
+    const { skippedPairs, objects } = search.plan;
     const expected = search.objects.flatMap(({ designator }, second) =>
       /^9/.test(designator)
-        ? Array.from({ length: primaryCount }, (_, first) => pairKey(first, second, search.objects.length))
+        ? Array.from({ length: objects.primaryCount }, (_, first) =>
+            pairKey(first, second, search.objects.length),
+          )
         : [],
     );
     expect(expected).toHaveLength(100);
@@ -108,7 +113,7 @@ describe('an object that flies along', () => {
   const flyingAlong = (objects: readonly ScreenedObject[]) =>
     findFlyingAlong(objects, sgp4RecordsOf(objects.map(({ set }) => set)), 1, 25);
   const neighbor = (changes: Partial<ElementSet>) =>
-    screenedObject({ ...batchSets[0], designator: '90001', ...changes }, KNOWLEDGE);
+    screenedObjects([{ ...batchSets[0], designator: '90001', ...changes }], KNOWLEDGE)[0];
   const found = (other: ScreenedObject) =>
     flyingAlong([{ ...batch[0], validToMs: WINDOW.endMs }, other]).length;
 
@@ -125,21 +130,19 @@ describe('an object that flies along', () => {
 
   it('is found by the quick test of orbits wherever the plain search finds it', () => {
     // Neighbors of one orbit, off by what a companion may be off, in every element.
-    const many = Array.from({ length: 400 }, (_, k) => {
+    const sets = Array.from({ length: 400 }, (_, k) => {
       const off = (period: number) => Math.sin(k * period);
-      return screenedObject(
-        {
-          ...batchSets[0],
-          designator: String(300_001 + k),
-          meanAnomalyDeg: 254 + 0.25 * off(1.7),
-          rightAscensionDeg: 203.5 + 0.05 * off(2.3),
-          inclinationDeg: 53.4 + 0.06 * off(3.1),
-          eccentricity: 0.0006 + 0.0005 * off(0.7),
-          meanMotionRevPerDay: 15.8 + 0.002 * off(5.9),
-        },
-        KNOWLEDGE,
-      );
+      return {
+        ...batchSets[0],
+        designator: String(300_001 + k),
+        meanAnomalyDeg: 254 + 0.25 * off(1.7),
+        rightAscensionDeg: 203.5 + 0.05 * off(2.3),
+        inclinationDeg: 53.4 + 0.06 * off(3.1),
+        eccentricity: 0.0006 + 0.0005 * off(0.7),
+        meanMotionRevPerDay: 15.8 + 0.002 * off(5.9),
+      };
     });
+    const many = screenedObjects(sets, KNOWLEDGE);
     const first = { ...batch[0], validToMs: WINDOW.endMs };
     const expected = many.filter((other) => isTogether(first, other, 25)).map(({ designator }) => designator);
     expect(expected.length).toBeGreaterThan(20);

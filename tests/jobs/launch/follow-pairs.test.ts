@@ -9,8 +9,8 @@ import {
   followPairs,
 } from '../../../src/jobs/launch/follow-pairs.js';
 import { pairTrend } from '../../../src/jobs/launch/pair-trend.js';
+import { sgp4RecordsOf } from '../../../src/jobs/screened-object.js';
 import { stateAt } from '../../synthetic/mean-elements.js';
-import { sgp4RecordsOf } from '../../synthetic/sgp4-records.js';
 import { batchSet, RELEASE_MS } from './batch-sets.js';
 
 const HOUR_MS = 3_600_000;

@@ -7,7 +7,7 @@ import { injectionCurve } from '../../../src/jobs/launch/injection-sigma.js';
 import { liftoffRows, withBestRank } from '../../../src/jobs/launch/liftoff-rows.js';
 import { type LiftoffSearch, liftoffSearch, slipGroups } from '../../../src/jobs/launch/liftoff-search.js';
 import type { BatchPhase } from '../../../src/jobs/launch/phases.js';
-import { type ObjectKnowledge, screenedObject } from '../../../src/jobs/screened-object.js';
+import { type ObjectKnowledge, screenedObjects } from '../../../src/jobs/screened-object.js';
 import { defaultSigmaTable } from '../../../src/uncertainty/default-sigma-table.js';
 import { bruteForceEncounters } from '../../encounters/brute-force.js';
 import { walkerShell } from '../../synthetic/catalog.js';
@@ -73,7 +73,7 @@ describe('several liftoffs in one search', () => {
     search = liftoffSearch(
       SLIPS_MS,
       batchObjects(PHASES, KNOWLEDGE, INJECTION),
-      catalog.map((set) => screenedObject(set, KNOWLEDGE)),
+      screenedObjects(catalog, KNOWLEDGE),
       WINDOW,
       { volume: { shape: 'SPHERE', missKm: MISS_KM }, maxAgeDays: 30, onlyProbability: true },
     );

@@ -1,10 +1,13 @@
 import { describe, expect, it } from 'vitest';
+import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
 import { batchObjects } from '../../../src/jobs/launch/batch-objects.js';
 import { injectionCurve } from '../../../src/jobs/launch/injection-sigma.js';
 import { volumeWarning } from '../../../src/jobs/launch/volume-warning.js';
 import { defaultSigmaTable } from '../../../src/uncertainty/default-sigma-table.js';
 import { readSigmaTable, sigmaAt } from '../../../src/uncertainty/sigma-table.js';
 import { batchSet, RELEASE_MS } from './batch-sets.js';
+
+await loadSgp4();
 
 const DAY_MS = 86_400_000;
 const INJECTION = { sigmaRtnM: [1000, 3000, 500], growthMPerDay: 20_000, isDefault: false } as const;
