@@ -14,7 +14,7 @@ import { withWorkerThreads } from './worker-threads.js';
 /** Rows that are made at a time. */
 const ROWS_AT_A_TIME = 2000;
 /** Fewer are made sooner than a thread is there. */
-const LEAST_ROWS_FOR_THREADS = 40_000;
+const LEAST_ROWS_FOR_THREADS = 80_000;
 /** Ranges that threads work ahead of the file, which bounds memory. */
 const AHEAD_PER_THREAD = 3;
 
@@ -77,7 +77,6 @@ async function* inOrder(count: number, ahead: number, textOf: TextOf): AsyncGene
     // Nobody waits for what is under way when the files break off.
     text.catch(() => undefined);
     asked.push(text);
-    spent = NO_TEXT;
     if (asked.length > ahead) {
       spent = await (asked.shift() as Promise<RankedText>);
       yield spent;

@@ -10,12 +10,20 @@ export type BulkColumn<Row> = CsvColumn<Row> & {
 const oneCell: CsvBytes = { bytes: new Uint8Array(256), length: 0 };
 
 /** The column whose cells `put` makes, one for tables of either kind. */
-export function bulkColumn<Row>(definition: Omit<BulkColumn<Row>, 'cell'>): BulkColumn<Row> {
+export function bulkColumn<Row>({
+  name,
+  unit,
+  meaning,
+  put,
+}: Omit<BulkColumn<Row>, 'cell'>): BulkColumn<Row> {
   return {
-    ...definition,
+    name,
+    unit,
+    meaning,
+    put,
     cell: (row, number) => {
       oneCell.length = 0;
-      definition.put(oneCell, row, number);
+      put(oneCell, row, number);
       return Buffer.from(oneCell.bytes.buffer, 0, oneCell.length).toString();
     },
   };

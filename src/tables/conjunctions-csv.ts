@@ -1,6 +1,6 @@
 import { type BulkColumn, bulkColumn } from './bulk-column.js';
 import type { Conjunction, ConjunctionObject } from './conjunction.js';
-import { putExponent, putFixed, putText, putUtc, putWhole } from './csv-bytes.js';
+import { putExponent, putFixed, putOneOfFew, putUtc, putWhole } from './csv-bytes.js';
 import { CAUTION_COLUMN, DOUBTS_COLUMN, OBJECT_COLUMNS, TCA_COLUMN } from './shared-columns.js';
 
 /** What a row says; of its objects, a conjunction knows more. */
@@ -90,7 +90,7 @@ export const CONJUNCTION_COLUMNS: readonly BulkColumn<ConjunctionRow>[] = [
     name: 'collision_probability_method',
     unit: '',
     meaning: 'Method of collision_probability, in the words of CCSDS 508.0-B-1 where it has one',
-    put: (out, row) => putText(out, row.collisionProbabilityMethod),
+    put: (out, row) => putOneOfFew(out, row.collisionProbabilityMethod),
   }),
   bulkColumn({
     name: 'collision_probability_max',

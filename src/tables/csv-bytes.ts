@@ -36,6 +36,8 @@ const floatWords = new Uint32Array(float.buffer);
 /** Which of the two words of a double holds sign and exponent. */
 const HIGH_WORD = new Uint8Array(Uint32Array.of(1).buffer)[0] === 1 ? 1 : 0;
 
+const fewCells = new Map<string, Uint8Array>();
+
 /** The latest day asked for, days since 1970-01-01, and its date as `YYYY-MM-DDT`. */
 let dateDay = Number.NaN;
 let dateBytes: Uint8Array = new Uint8Array(0);
@@ -62,6 +64,16 @@ export function putText(out: CsvBytes, text: string): void {
     allowed = PLAIN;
   }
   out.length = length + text.length;
+}
+
+/** The same for a text out of few, made once. */
+export function putOneOfFew(out: CsvBytes, text: string): void {
+  let ready = fewCells.get(text);
+  if (ready === undefined) {
+    ready = encoder.encode(textCell(text));
+    fewCells.set(text, ready);
+  }
+  putBytes(out, ready);
 }
 
 /** A whole number of 0 or more, below 2^53. */

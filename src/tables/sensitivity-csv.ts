@@ -1,5 +1,5 @@
 import { type BulkColumn, bulkColumn } from './bulk-column.js';
-import { putExponent, putFixed, putText, putWhole } from './csv-bytes.js';
+import { putExponent, putFixed, putOneOfFew, putWhole } from './csv-bytes.js';
 import { CAUTION_COLUMN, DESIGNATOR_COLUMNS, TCA_COLUMN } from './shared-columns.js';
 
 /** How the probability of one conjunction changes when all its sigmas are scaled by one factor. */
@@ -80,7 +80,7 @@ export const SENSITIVITY_COLUMNS: readonly BulkColumn<ConjunctionSensitivity>[] 
     name: 'direction',
     unit: '',
     meaning: 'In words: what smaller sigmas, that is better orbits, would do to the probability',
-    put: (out, row) => putText(out, describeSensitivity(row.peakScale)),
+    put: (out, row) => putOneOfFew(out, describeSensitivity(row.peakScale)),
   }),
   CAUTION_COLUMN,
 ];

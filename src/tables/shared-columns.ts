@@ -7,6 +7,9 @@ type Numbered = { readonly designator: string };
 type Side = 'object1' | 'object2';
 type Named = Numbered & { readonly name: string };
 
+/** Many rows share one list. */
+const remarksCells = new WeakMap<readonly string[], Uint8Array>();
+
 /** Who met whom, for tables without names. */
 export const DESIGNATOR_COLUMNS = [
   designatorColumn('object1', (row: { readonly object1: Numbered }) => row.object1),
@@ -63,7 +66,14 @@ export function remarksColumn(what: string): BulkColumn<{ readonly remarks: read
     name: 'remarks',
     unit: '',
     meaning: `Codes of ${what}, one blank between them; empty if there is none`,
-    put: (out, row) => putText(out, row.remarks.join(' ')),
+    put: (out, { remarks }) => {
+      let cell = remarksCells.get(remarks);
+      if (cell === undefined) {
+        cell = Buffer.from(textCell(remarks.join(' ')));
+        remarksCells.set(remarks, cell);
+      }
+      putBytes(out, cell);
+    },
   });
 }
 

@@ -19,9 +19,9 @@ type WriteRankedTables = typeof import('../../src/jobs/write-ranked-tables.js');
 
 const START_MS = Date.UTC(2026, 11, 1);
 
-/** A folder whose files are kept as text. */
-function folderInMemory(): { folder: OutputFolder; files: Map<string, string> } {
-  const files = new Map<string, string>();
+/** A folder whose files are kept as bytes. */
+function folderInMemory(): { folder: OutputFolder; files: Map<string, Buffer> } {
+  const files = new Map<string, Buffer>();
   const stream = (name: string) => {
     const chunks: Buffer[] = [];
     return new Writable({
@@ -31,7 +31,7 @@ function folderInMemory(): { folder: OutputFolder; files: Map<string, string> } 
         done();
       },
       final(done) {
-        files.set(name, Buffer.concat(chunks).toString());
+        files.set(name, Buffer.concat(chunks));
         done();
       },
     });
@@ -45,9 +45,10 @@ function manyEncounters(count: number) {
   const knowledge = { listed: undefined, sigmas: undefined, defaultSigmas: defaultSigmaTable() };
   const objects = screenedObjects(syntheticCatalog({ seed: 82, count: 50, epochMs: START_MS }), knowledge);
   const records = createEncounterRecords(count, SharedArrayBuffer);
+  const places = Object.values(FIELD);
   for (let k = 0; k < count; k++) {
     const at = extendRecords(records, 1);
-    for (const place of Object.values(FIELD)) records.data[at + place] = random.between(1, 7000);
+    for (const place of places) records.data[at + place] = random.between(1, 7000);
     records.data[at + FIELD.first] = random.integer(25);
     records.data[at + FIELD.second] = 25 + random.integer(25);
     records.data[at + FIELD.tcaMs] = START_MS + random.integer(86_400_000);
@@ -68,7 +69,7 @@ beforeAll(loadSgp4);
 describe('the ranked tables', () => {
   it('have the same bytes from one thread and from three', async () => {
     const { writeRankedTables } = await compiled();
-    const ranked = manyEncounters(41_234);
+    const ranked = manyEncounters(81_234);
     const one = folderInMemory();
     await writeRankedTables(one.folder, ranked, 1, silentPorts());
     const three = folderInMemory();
@@ -76,9 +77,10 @@ describe('the ranked tables', () => {
     await writeRankedTables(three.folder, ranked, 3, ports);
     expect(ports.undos.size, 'what a signal would undo').toBe(0);
     for (const name of ['conjunctions.csv', 'sensitivity.csv']) {
-      const text = one.files.get(name) ?? '';
-      expect(three.files.get(name) === text, name).toBe(true);
-      const ranks = text
+      const bytes = one.files.get(name) ?? Buffer.alloc(0);
+      expect(three.files.get(name)?.equals(bytes), name).toBe(true);
+      const ranks = bytes
+        .toString()
         .split('\r\n')
         .slice(1, -1)
         .map((row) => Number(row.slice(0, row.indexOf(','))));
@@ -96,11 +98,11 @@ describe('the ranked tables', () => {
     const row = (index: number) => csvRow(CONJUNCTION_COLUMNS, at(index), index + 1);
     const conjunctions = csvHeader(CONJUNCTION_COLUMNS) + numbers.map(row).join('');
     // Not by toBe: it would print two million bytes.
-    expect(files.get('conjunctions.csv') === conjunctions).toBe(true);
+    expect(files.get('conjunctions.csv')?.toString() === conjunctions).toBe(true);
     const sensitivityRow = (index: number) =>
       csvRow(SENSITIVITY_COLUMNS, sensitivityOf(records, order[index], index + 1, objects), index + 1);
     const sensitivity = csvHeader(SENSITIVITY_COLUMNS) + numbers.map(sensitivityRow).join('');
-    expect(files.get('sensitivity.csv') === sensitivity).toBe(true);
+    expect(files.get('sensitivity.csv')?.toString() === sensitivity).toBe(true);
   });
 
   it.each(['conjunctions.csv', 'sensitivity.csv'])(
@@ -118,7 +120,7 @@ describe('the ranked tables', () => {
       };
       for (const [count, workers] of [
         [10, 1],
-        [40_000, 2],
+        [80_000, 2],
       ]) {
         const ports = silentPorts();
         const written = writeRankedTables(

@@ -5,6 +5,7 @@ import {
   putBytes,
   putExponent,
   putFixed,
+  putOneOfFew,
   putText,
   putUtc,
   putWhole,
@@ -133,6 +134,12 @@ describe('cells as bytes are those as text', () => {
       // A half of a surrogate pair becomes U+FFFD, as in all UTF-8.
       isSame(text, (bytes) => putText(bytes, text), Buffer.from(textCell(text)).toString());
     }
+  });
+
+  test('of text out of few', () => {
+    const few = ['', 'FOSTER-1992', '=1', 'ONE, "TWO"', '鵲橋'];
+    // Twice: the second time they are at hand.
+    for (const text of [...few, ...few]) isSame(text, (bytes) => putOneOfFew(bytes, text), textCell(text));
   });
 
   test('of whole numbers', () => {
