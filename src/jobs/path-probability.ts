@@ -1,5 +1,6 @@
 import type { RefinedObject } from '../encounters/refine.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
+import { placeOf } from '../ephemeris/sgp4-records.js';
 import { createShortArc } from '../ephemeris/short-arc.js';
 import type { OrbitState } from '../ephemeris/state.js';
 import type { EncounterObject, FullAssessment } from '../probability/assess-encounter.js';
@@ -132,5 +133,5 @@ function directly(object1: PathSide, object2: PathSide, tcaMs: number): StatesAt
 const scratch = new Float64Array(6);
 
 function periodS({ records, place }: PathSide): number {
-  return (120 * Math.PI) / records.values[records.size * place + records.at.meanMotion];
+  return (120 * Math.PI) / records.values[records.size * place + placeOf('no_unkozai')];
 }
