@@ -1,6 +1,7 @@
 import { createBulkNodes } from '../ephemeris/bulk-nodes.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
 import type { Sgp4Records } from '../ephemeris/sgp4-records.js';
+import { createPositionSamples } from './position-samples.js';
 import { slowMinima } from './refine.js';
 import type { ObjectPair } from './refine-on-sgp4.js';
 import type { SearchObjects, SearchRules } from './search-problem.js';
@@ -205,12 +206,12 @@ function withClosest(
   figures: Flight,
   { startMs, endMs }: Span,
 ): Flight {
-  const object1 = { records, place: first };
-  const object2 = { records, place: second };
+  const object1 = createPositionSamples({ records, place: first }, CLOSEST_GRID_MS);
+  const object2 = createPositionSamples({ records, place: second }, CLOSEST_GRID_MS);
   let { closestMs, closestKm } = figures;
   const fromMs = Math.max(startMs, closestMs - SAMPLE_MS);
   const toMs = Math.min(endMs, closestMs + SAMPLE_MS);
-  for (const { tcaMs, missKm } of slowMinima(object1, object2, fromMs, toMs, CLOSEST_GRID_MS)) {
+  for (const { tcaMs, missKm } of slowMinima(object1, object2, fromMs, toMs)) {
     if (missKm < closestKm) {
       closestKm = missKm;
       closestMs = tcaMs;

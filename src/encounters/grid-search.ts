@@ -156,7 +156,7 @@ export function searchGrid(searcher: GridSearcher, slabIndex: number): GridResul
   const work = readySlab(searcher, tracks, lengthS);
   const stepS = rules.stepS ?? chooseStep(searcher, work, lengthS);
   const { bounds, toleranceKm } = planStep(searcher, work, stepS);
-  const refiner = { ...searcher, cursor: work.cursor, bounds, toleranceKm, recent: new Map() };
+  const refiner = { ...searcher, cursor: work.cursor, bounds, toleranceKm, samples: new Map() };
   const approaches: ClosestApproach[] = [];
   let pairsRefined = 0;
   for (let k = 0; k < Math.ceil(lengthS / stepS); k++) {

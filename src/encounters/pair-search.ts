@@ -115,7 +115,7 @@ export function searchPairs(searcher: PairSearcher, slab: number): PairSearchRes
     }
   }
   const search: MeetingSearch = { orbits, frames, halfSpanS, missKm: rules.missKm };
-  const refiner: Sgp4Refiner = { objects, rules, recent: new Map() };
+  const refiner: Sgp4Refiner = { objects, rules, samples: new Map() };
   const windows: MeetingWindow[] = [];
   const approaches: ClosestApproach[] = [];
   let pairsRefined = 0;

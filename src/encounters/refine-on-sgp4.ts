@@ -1,5 +1,7 @@
+import type { PlacedRecord } from '../ephemeris/sgp4-records.js';
 import type { ClosestApproach } from './closest-approach.js';
-import { createRecentStates, type Minimum, type RefinedObject, refineFastTca, slowMinima } from './refine.js';
+import { createPositionSamples, type PositionSamples } from './position-samples.js';
+import { type Minimum, refineFastTca, slowMinima } from './refine.js';
 import type { SearchObjects, SearchRules } from './search-problem.js';
 
 /** Grid of the samples of a slow pair. */
@@ -11,8 +13,8 @@ const EDGE_MS = 0.01;
 export type Sgp4Refiner = {
   readonly objects: SearchObjects;
   readonly rules: SearchRules;
-  /** The objects of slow pairs with their latest states. */
-  readonly recent: Map<number, RefinedObject>;
+  /** Of the objects of slow pairs. */
+  readonly samples: Map<number, PositionSamples>;
 };
 
 /** Object indices, `first` < `second`. */
@@ -50,25 +52,24 @@ export function refineSlowPair(
   stretch: Stretch,
   approaches: ClosestApproach[],
 ): void {
-  const object1 = objectWithRecentStates(refiner, pair.first);
-  const object2 = objectWithRecentStates(refiner, pair.second);
+  const object1 = samplesOf(refiner, pair.first);
+  const object2 = samplesOf(refiner, pair.second);
   const fromMs = stretch.fromMs - EDGE_MS;
   const toMs = stretch.toMs + EDGE_MS;
-  for (const minimum of slowMinima(object1, object2, fromMs, toMs, SLOW_GRID_MS)) {
+  for (const minimum of slowMinima(object1, object2, fromMs, toMs)) {
     accept(refiner, pair, minimum, stretch, approaches);
   }
 }
 
-export function refinedObject({ records }: SearchObjects, object: number): RefinedObject {
+export function refinedObject({ records }: SearchObjects, object: number): PlacedRecord {
   return { records, place: object };
 }
 
-/** Slow pairs are asked for at the same times, and one object is part of many in a train. */
-function objectWithRecentStates({ objects, recent }: Sgp4Refiner, object: number): RefinedObject {
-  let known = recent.get(object);
+function samplesOf({ objects, samples }: Sgp4Refiner, object: number): PositionSamples {
+  let known = samples.get(object);
   if (known === undefined) {
-    known = { ...refinedObject(objects, object), recent: createRecentStates() };
-    recent.set(object, known);
+    known = createPositionSamples(refinedObject(objects, object), SLOW_GRID_MS);
+    samples.set(object, known);
   }
   return known;
 }

@@ -1,35 +1,6 @@
 import { recordStateAt } from '../ephemeris/record-states.js';
 import { type PlacedRecord, placeOf } from '../ephemeris/sgp4-records.js';
-
-/** One side of a pair for work on true SGP4 states. */
-export type RefinedObject = PlacedRecord & {
-  /** Its latest states, where many pairs ask for it at the same times. */
-  readonly recent?: RecentStates;
-};
-
-/** A ring of times with their states; `NaN` positions where SGP4 gives none. */
-export type RecentStates = { readonly times: Float64Array; readonly states: Float64Array; next: number };
-
-const RECENT = 12;
-
-export function createRecentStates(): RecentStates {
-  return { times: new Float64Array(RECENT).fill(Number.NaN), states: new Float64Array(6 * RECENT), next: 0 };
-}
-
-function stateAt({ records, place, recent }: RefinedObject, timeMs: number, out: Float64Array): boolean {
-  if (recent === undefined) return recordStateAt(records, place, timeMs, out);
-  const { times, states } = recent;
-  let at = 0;
-  while (at < RECENT && times[at] !== timeMs) at++;
-  if (at === RECENT) {
-    at = recent.next;
-    recent.next = (at + 1) % RECENT;
-    times[at] = timeMs;
-    if (!recordStateAt(records, place, timeMs, states, 6 * at)) states[6 * at] = Number.NaN;
-  }
-  for (let k = 0; k < 6; k++) out[k] = states[6 * at + k];
-  return !Number.isNaN(out[0]);
-}
+import { type PositionSamples, placeOfSample } from './position-samples.js';
 
 /** Half the base of the difference that gives the relative velocity of the positions, seconds. */
 const DIFFERENCE_S = 0.25;
@@ -53,26 +24,26 @@ const relative = new Float64Array(6);
  * By how much SGP4's velocities of a pair may be off the derivatives of its positions, km/s: 0.02 m/s in low
  * near-circular orbits, up to some m/s in eccentric deep-space ones.
  */
-export function velocityDefectKmPerS(object1: RefinedObject, object2: RefinedObject): number {
+export function velocityDefectKmPerS(object1: PlacedRecord, object2: PlacedRecord): number {
   return eccentricityOf(object1) < 0.01 && eccentricityOf(object2) < 0.01 ? 1e-4 : 0.02;
 }
 
 let eccentricityAt: number | undefined;
 
-function eccentricityOf({ records, place }: RefinedObject): number {
+function eccentricityOf({ records, place }: PlacedRecord): number {
   eccentricityAt ??= placeOf('ecco');
   return records.values[records.size * place + eccentricityAt];
 }
 
 /** Relative state, object 2 minus object 1; false where SGP4 gives no state for one of them. */
 export function relativeStateAt(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   timeMs: number,
   out: Float64Array,
 ): boolean {
-  if (!stateAt(object1, timeMs, state1)) return false;
-  if (!stateAt(object2, timeMs, state2)) return false;
+  if (!recordStateAt(object1.records, object1.place, timeMs, state1)) return false;
+  if (!recordStateAt(object2.records, object2.place, timeMs, state2)) return false;
   for (let k = 0; k < 6; k++) out[k] = state2[k] - state1[k];
   return true;
 }
@@ -84,7 +55,7 @@ export function relativeStateAt(
  *
  * @returns NaN where SGP4 gives no state
  */
-export function closingRateAt(object1: RefinedObject, object2: RefinedObject, timeMs: number): number {
+export function closingRateAt(object1: PlacedRecord, object2: PlacedRecord, timeMs: number): number {
   if (!relativeStateAt(object1, object2, timeMs + DIFFERENCE_S * MS_PER_S, relative)) return Number.NaN;
   const after = relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2;
   if (!relativeStateAt(object1, object2, timeMs - DIFFERENCE_S * MS_PER_S, relative)) return Number.NaN;
@@ -122,8 +93,8 @@ const MOST_STEPS = 20;
  * the approach is wider than `widestKm`; 'unsettled' where the steps lead nowhere within `reachMs` of the guess
  */
 export function refineFastTca(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   guessMs: number,
   reachMs: number,
   widestKm = Number.POSITIVE_INFINITY,
@@ -168,8 +139,8 @@ function newtonStep(state: Float64Array) {
 }
 
 function settledOnVelocities(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   nearMs: number,
   defectKmPerS: number,
 ): Minimum | 'none' | 'unsettled' {
@@ -189,8 +160,8 @@ function settledOnVelocities(
 
 /** Where SGP4's velocities are not good enough, they give the first step, and secants of the closing rate the rest. */
 function settledOnPositions(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   nearMs: number,
   reachMs: number,
   defectKmPerS: number,
@@ -216,7 +187,7 @@ function settledOnPositions(
   return minimumAt(object1, object2, roundTca(timeMs + stepMs)) ?? 'none';
 }
 
-function minimumAt(object1: RefinedObject, object2: RefinedObject, tcaMs: number): Minimum | undefined {
+function minimumAt(object1: PlacedRecord, object2: PlacedRecord, tcaMs: number): Minimum | undefined {
   if (!relativeStateAt(object1, object2, tcaMs, relative)) return undefined;
   return { tcaMs, missKm: Math.sqrt(squareOf(relative)) };
 }
@@ -239,26 +210,28 @@ function newtonError(distanceKm: number, speed2: number, defectKmPerS: number): 
 }
 
 /**
- * All local minima of the distance of a slow pair from `fromMs` to `toMs`: samples at whole multiples of
- * `gridMs`, so that other stretches of time find the same, then a root of the closing rate between the neighbors
- * of each that is lower than these. Two minima that a maximum less than a grid step long divides count as one.
+ * All local minima of the distance of a slow pair from `fromMs` to `toMs`: samples at whole multiples of a step, so
+ * that other stretches of time find the same, then a root of the closing rate between the neighbors of each that
+ * is lower than these. Two minima that a maximum less than a step long divides count as one.
+ *
+ * @param object1, object2 with the same step
  */
 export function slowMinima(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PositionSamples,
+  object2: PositionSamples,
   fromMs: number,
   toMs: number,
-  gridMs: number,
 ): Minimum[] {
+  const { stepMs } = object1;
   const found: Minimum[] = [];
-  const first = Math.ceil(fromMs / gridMs) - 1;
-  const last = Math.floor(toMs / gridMs) + 1;
-  let before = squareAt(object1, object2, (first - 1) * gridMs);
-  let here = squareAt(object1, object2, first * gridMs);
+  const first = Math.ceil(fromMs / stepMs) - 1;
+  const last = Math.floor(toMs / stepMs) + 1;
+  let before = squareAt(object1, object2, first - 1);
+  let here = squareAt(object1, object2, first);
   for (let sample = first; sample <= last; sample++) {
-    const after = squareAt(object1, object2, (sample + 1) * gridMs);
+    const after = squareAt(object1, object2, sample + 1);
     if (before > here && here <= after) {
-      const minimum = minimumAbout(alone(object1), alone(object2), sample * gridMs, gridMs);
+      const minimum = minimumAbout(object1, object2, sample * stepMs, stepMs);
       if (minimum !== undefined && minimum.tcaMs >= fromMs && minimum.tcaMs <= toMs) found.push(minimum);
     }
     before = here;
@@ -267,20 +240,20 @@ export function slowMinima(
   return found;
 }
 
-/** Without its latest states: those of a root are asked for once, and would drive out the samples. */
-function alone({ records, place }: RefinedObject): RefinedObject {
-  return { records, place };
-}
-
-/** NaN where SGP4 gives no state. */
-function squareAt(object1: RefinedObject, object2: RefinedObject, timeMs: number): number {
-  return relativeStateAt(object1, object2, timeMs, relative) ? squareOf(relative) : Number.NaN;
+/** Squared distance at a sample, km^2; NaN where SGP4 gives no state. */
+function squareAt(object1: PositionSamples, object2: PositionSamples, sample: number): number {
+  const a = placeOfSample(object1, sample);
+  const b = placeOfSample(object2, sample);
+  const x = object2.positions[b] - object1.positions[a];
+  const y = object2.positions[b + 1] - object1.positions[a + 1];
+  const z = object2.positions[b + 2] - object1.positions[a + 2];
+  return x * x + y * y + z * z;
 }
 
 /** The minimum next to a sample that is lower than both of its neighbors. */
 function minimumAbout(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   middleMs: number,
   gridMs: number,
 ): Minimum | undefined {
@@ -305,8 +278,8 @@ const MOST_ROOT_STEPS = 60;
  * @param lowRate closing rate at `fromMs`, NaN where it is yet to be worked out; `highRate` at `toMs` likewise
  */
 function closestBetween(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   fromMs: number,
   lowRate: number,
   toMs: number,

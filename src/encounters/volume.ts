@@ -1,6 +1,6 @@
 import { recordStateAt } from '../ephemeris/record-states.js';
+import type { PlacedRecord } from '../ephemeris/sgp4-records.js';
 import type { Vector3 } from '../vector.js';
-import type { RefinedObject } from './refine.js';
 
 /** Screening volume around object 1, in the terms of CCSDS 508.0-B-1. */
 export type ScreeningVolume =
@@ -34,8 +34,8 @@ const GOLDEN = (Math.sqrt(5) - 1) / 2;
  * @returns `undefined` when object 2 stays outside
  */
 export function passageThrough(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   tcaMs: number,
   speedKmPerS: number,
   volume: ScreeningVolume,
@@ -71,8 +71,8 @@ type Sample = { readonly timeMs: number; readonly depth: number; readonly distan
 
 /** 0 at object 1, 1 on the surface of the volume; NaN where SGP4 gives no state. */
 function depth(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   timeMs: number,
   volume: ScreeningVolume,
 ): { depth: number; distanceKm: number } {
@@ -111,8 +111,8 @@ const states = new Float64Array(12);
 
 /** Samples away from the closest approach until the pair leaves the sphere, comes closer again or time is up. */
 function walk(
-  object1: RefinedObject,
-  object2: RefinedObject,
+  object1: PlacedRecord,
+  object2: PlacedRecord,
   volume: ScreeningVolume,
   tcaMs: number,
   stepMs: number,

@@ -1,8 +1,8 @@
 import type { ClosestApproach } from '../encounters/closest-approach.js';
-import type { RefinedObject } from '../encounters/refine.js';
 import type { SearchObjects } from '../encounters/search-problem.js';
 import { passageThrough } from '../encounters/volume.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
+import type { PlacedRecord } from '../ephemeris/sgp4-records.js';
 import { assessInFull } from '../probability/assess-encounter.js';
 import { discProbability } from '../probability/foster.js';
 import { remarkBitsOf } from '../probability/remarks.js';
@@ -110,7 +110,7 @@ function assessApproach(
 }
 
 /** One object at closest approach, where its state has been worked out. */
-function sideFrom(offset: number, { records, place }: RefinedObject, covarianceRtnM2: Matrix3): PathSide {
+function sideFrom(offset: number, { records, place }: PlacedRecord, covarianceRtnM2: Matrix3): PathSide {
   return {
     records,
     place,

@@ -1,6 +1,5 @@
-import type { RefinedObject } from '../encounters/refine.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
-import { placeOf } from '../ephemeris/sgp4-records.js';
+import { type PlacedRecord, placeOf } from '../ephemeris/sgp4-records.js';
 import { createShortArc } from '../ephemeris/short-arc.js';
 import type { OrbitState } from '../ephemeris/state.js';
 import type { EncounterObject, FullAssessment } from '../probability/assess-encounter.js';
@@ -28,7 +27,7 @@ export type PathProbability = {
 };
 
 /** An object with its state at closest approach. */
-export type PathSide = RefinedObject & EncounterObject;
+export type PathSide = PlacedRecord & EncounterObject;
 
 /**
  * The probability of an encounter by the method that its relative path asks for: Foster's where the path

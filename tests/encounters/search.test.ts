@@ -1,7 +1,8 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
 import { type ClosestApproach, distinctApproaches } from '../../src/encounters/closest-approach.js';
-import { createRecentStates, slowMinima } from '../../src/encounters/refine.js';
+import { createPositionSamples } from '../../src/encounters/position-samples.js';
+import { slowMinima } from '../../src/encounters/refine.js';
 import { SLOW_GRID_MS } from '../../src/encounters/refine-on-sgp4.js';
 import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
@@ -194,13 +195,13 @@ describe('the search finds what brute force finds, and nothing else', () => {
 /** No index, no bound, no track: the minima of all pairs from samples of SGP4. */
 function everyMinimum(sets: readonly ElementSet[], hours: number, missKm: number): ClosestApproach[] {
   const records = sgp4RecordsOf(sets);
-  const objects = sets.map((_, place) => ({ records, place, recent: createRecentStates() }));
+  const objects = sets.map((_, place) => createPositionSamples({ records, place }, SLOW_GRID_MS));
   const endMs = START_MS + hours * HOUR_MS;
   const found: ClosestApproach[] = [];
   for (let fromMs = START_MS; fromMs < endMs; fromMs += 300_000) {
     objects.forEach((object1, first) => {
       objects.slice(first + 1).forEach((object2, k) => {
-        for (const minimum of slowMinima(object1, object2, fromMs, fromMs + 300_000, SLOW_GRID_MS)) {
+        for (const minimum of slowMinima(object1, object2, fromMs, fromMs + 300_000)) {
           if (minimum.missKm <= missKm && minimum.tcaMs < endMs)
             found.push({ first, second: first + 1 + k, ...minimum });
         }

@@ -1,9 +1,10 @@
 import { tidePerS2 } from '../../encounters/bounds.js';
-import { type RefinedObject, relativeStateAt, slowMinima } from '../../encounters/refine.js';
+import type { PositionSamples } from '../../encounters/position-samples.js';
+import { relativeStateAt, slowMinima } from '../../encounters/refine.js';
 import { recordStateAt } from '../../ephemeris/record-states.js';
 
 /** A stretch of time in which an object flies on one set; milliseconds of UTC since 1970-01-01. */
-type FollowedPhase = Pick<RefinedObject, 'records' | 'place'> & {
+type FollowedPhase = PositionSamples & {
   readonly fromMs: number;
   /** Exclusive; infinite where nothing ends it. */
   readonly toMs: number;
@@ -36,7 +37,8 @@ export type FollowedPair = {
 };
 
 const SAMPLE_MS = 60_000;
-const REFINE_GRID_MS = 20_000;
+/** Step of the samples of a phase. */
+export const REFINE_GRID_MS = 20_000;
 const EDGE_PRECISION_MS = 1;
 /** More than half the tide of the lowest orbit times the square of a minute, which is 0.005 of the distance. */
 const TIDE_SLACK = 0.01;
@@ -227,7 +229,7 @@ function lookBetween(
   const lowest = Math.min(lowestOnHalf(before, i, j, halfS, 1), lowestOnHalf(after, i, j, halfS, -1));
   if (!(lowest < wanted)) return;
   const [first, second] = pair.phases as readonly [FollowedPhase, FollowedPhase];
-  for (const { tcaMs } of slowMinima(first, second, beforeMs, afterMs, REFINE_GRID_MS)) {
+  for (const { tcaMs } of slowMinima(first, second, beforeMs, afterMs)) {
     if (!relativeStateAt(first, second, tcaMs, relative)) continue;
     const atTcaKm = Math.hypot(relative[0], relative[1], relative[2]);
     if (atTcaKm < pair.closestKm) {

@@ -1,6 +1,7 @@
+import { createPositionSamples } from '../../encounters/position-samples.js';
 import { type BatchPair, type PairRemark, sortBatchPairs } from '../../tables/batch-pairs-csv.js';
 import type { ScreenedObject } from '../screened-object.js';
-import { type FollowedObject, followPairs } from './follow-pairs.js';
+import { type FollowedObject, followPairs, REFINE_GRID_MS } from './follow-pairs.js';
 import { groupBy } from './group-by.js';
 import { pairTrend } from './pair-trend.js';
 
@@ -57,11 +58,10 @@ export function pairRows(
 
 function followedObject(phases: readonly ScreenedObject[]): FollowedObject {
   return {
-    phases: phases.map(({ records, place, validFromMs, validToMs }) => ({
-      records,
-      place,
-      fromMs: validFromMs,
-      toMs: validToMs,
+    phases: phases.map((phase) => ({
+      ...createPositionSamples(phase, REFINE_GRID_MS),
+      fromMs: phase.validFromMs,
+      toMs: phase.validToMs,
     })),
   };
 }

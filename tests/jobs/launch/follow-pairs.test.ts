@@ -2,11 +2,13 @@ import { sgp4 } from 'satellite.js';
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../../src/elements/element-set.js';
 import { sgp4RecordOf } from '../../../src/elements/sgp4-record.js';
+import { createPositionSamples } from '../../../src/encounters/position-samples.js';
 import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
 import {
   type FollowedObject,
   type FollowedPair,
   followPairs,
+  REFINE_GRID_MS,
 } from '../../../src/jobs/launch/follow-pairs.js';
 import { pairTrend } from '../../../src/jobs/launch/pair-trend.js';
 import { sgp4RecordsOf } from '../../../src/jobs/screened-object.js';
@@ -21,8 +23,7 @@ type Stretch = readonly [set: ElementSet, fromMs: number, toMs: number];
 function objectOf(...stretches: readonly Stretch[]): FollowedObject {
   return {
     phases: stretches.map(([set, fromMs, toMs]) => ({
-      records: sgp4RecordsOf([set]),
-      place: 0,
+      ...createPositionSamples({ records: sgp4RecordsOf([set]), place: 0 }, REFINE_GRID_MS),
       fromMs,
       toMs,
     })),
