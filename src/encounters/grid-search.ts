@@ -50,7 +50,7 @@ export type GridSearcher = {
   readonly primaryCount: number;
   /** Objects that SGP4 gives no state for at the start of the window. */
   readonly gone: readonly number[];
-  readonly makeTracks: TrackMaker;
+  readonly trackMaker: TrackMaker;
   /** No track goes farther out, km. */
   readonly farthestKm: Float64Array;
   readonly kernel: StepKernel;
@@ -107,7 +107,7 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
     pairs,
     cellsOf: new Map(),
     plan: { bounds: stepBounds(rules.missKm, SHORTEST_STEP_S / 2, 0), toleranceKm: new Float64Array(0) },
-    makeTracks: createTrackMaker(
+    trackMaker: createTrackMaker(
       objects.records,
       Array.from(order, (i) => ({
         place: i,
@@ -152,7 +152,7 @@ function roomOf({ missKm, stepS = SHORTEST_STEP_S }: SearchRules): CellRoom {
 export function searchGrid(searcher: GridSearcher, slabIndex: number): GridResult {
   const { rules, kernel, pairs } = searcher;
   const { startMs: slabStartMs, lengthS } = slabOf(rules, slabIndex);
-  const tracks = searcher.makeTracks(slabStartMs, slabIndex);
+  const tracks = searcher.trackMaker.tracksOf(slabStartMs, slabIndex);
   const work = readySlab(searcher, tracks, lengthS);
   const stepS = rules.stepS ?? chooseStep(searcher, work, lengthS);
   const { bounds, toleranceKm } = planStep(searcher, work, stepS);

@@ -35,6 +35,11 @@ export function createSlabSearcher(objects: SearchObjects, rules: SearchRules): 
   };
 }
 
+/** Gives back what a searcher holds outside of JavaScript. */
+export function disposeSlabSearcher({ grids }: SlabSearcher): void {
+  for (const { searcher } of grids) searcher.trackMaker.dispose();
+}
+
 /** Finds every closest approach of one slab of the window. */
 export function searchSlab({ objects, grids, pairs }: SlabSearcher, slabIndex: number): SlabResult {
   const approaches: ClosestApproach[] = [];

@@ -74,8 +74,12 @@ export type SlabTracks = {
   readonly worstDefectKm: number;
 };
 
-/** Makes the tracks of a slab, which the next call overwrites; objects keep the order in which they were given. */
-export type TrackMaker = (slabStartMs: number, slabIndex: number) => SlabTracks;
+export type TrackMaker = {
+  /** The tracks of a slab, which the next call overwrites; objects keep the order in which they were given. */
+  readonly tracksOf: (slabStartMs: number, slabIndex: number) => SlabTracks;
+  /** Gives back the memory of the records. */
+  readonly dispose: () => void;
+};
 
 type MutableTracks = { -readonly [K in keyof SlabTracks]: SlabTracks[K] } & {
   nodes: Float64Array<ArrayBuffer>;
@@ -118,7 +122,7 @@ export function createTrackMaker(
           : bulkOf(records, objects, members, segments),
     }));
   let room = new Float64Array(0);
-  return (slabStartMs, slabIndex) => {
+  const tracksOf = (slabStartMs: number, slabIndex: number): SlabTracks => {
     const inReach = groups.map(({ segments, members, bulk }) => {
       if (bulk !== undefined) return { segments, members, bulk };
       const near = members.filter((object) => !isOut?.(object, slabStartMs));
@@ -130,6 +134,12 @@ export function createTrackMaker(
     });
     room = tracks.nodes;
     return tracks;
+  };
+  return {
+    tracksOf,
+    dispose: () => {
+      for (const { bulk } of groups) bulk?.dispose();
+    },
   };
 }
 

@@ -1,5 +1,5 @@
 import { parentPort } from 'node:worker_threads';
-import { createSlabSearcher, searchSlab } from '../encounters/search-slab.js';
+import { createSlabSearcher, disposeSlabSearcher, searchSlab } from '../encounters/search-slab.js';
 import { loadSgp4 } from '../ephemeris/sgp4-module.js';
 import { assessApproaches } from './assess-approach.js';
 import { createEncounterRecords, FIELDS } from './encounter-records.js';
@@ -22,24 +22,30 @@ async function serve(): Promise<void> {
   if (parentPort === null) throw new Error('search-worker runs in a worker thread only');
   const port = parentPort;
   await loadSgp4();
-  let search: ((slab: number) => SlabAnswer) | undefined;
+  let search: PlanSearch | undefined;
   port.on('message', ({ brief: plan, question: slab }: ThreadMessage<SearchPlan, number>) => {
-    if (plan !== undefined) search = searchOf(plan);
+    if (plan !== undefined) {
+      search?.dispose();
+      search = searchOf(plan);
+    }
     if (search === undefined) throw new Error(`slab ${slab} was asked for before any plan came`);
-    const answer = search(slab);
+    const answer = search.answerTo(slab);
     port.postMessage(answer, [answer.records.buffer]);
   });
 }
 
-function searchOf(plan: SearchPlan): (slab: number) => SlabAnswer {
+type PlanSearch = { readonly answerTo: (slab: number) => SlabAnswer; readonly dispose: () => void };
+
+function searchOf(plan: SearchPlan): PlanSearch {
   const { objects } = plan;
   const searcher = createSlabSearcher(objects, rulesOfPlan(plan));
-  return (slab) => {
+  const answerTo = (slab: number): SlabAnswer => {
     const { approaches, ...facts } = searchSlab(searcher, slab);
     const records = createEncounterRecords(approaches.length + 1);
     assessApproaches(approaches, objects, plan, records);
     return { slab, records: records.data.slice(0, FIELDS * records.size), ...facts };
   };
+  return { answerTo, dispose: () => disposeSlabSearcher(searcher) };
 }
 
 await serve();

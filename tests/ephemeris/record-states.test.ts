@@ -7,6 +7,7 @@ import {
   MEAN_ECCENTRICITY,
   MEAN_MOTION,
   recordMeansAt,
+  recordPositionsAt,
   recordStateAt,
 } from '../../src/ephemeris/record-states.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
@@ -64,6 +65,30 @@ describe('states of single records', () => {
       ask(place, START_MS - 3 * DAY_MS);
       expect(ask(place, START_MS + 20 * DAY_MS)).toEqual(first);
     }
+  });
+
+  it('have the positions that a series of times gives, and none where it gives none', () => {
+    const records = sgp4RecordsOf(sets);
+    const state = new Float64Array(6);
+    const positions = new Float64Array(3 * 12 + 3);
+    let compared = 0;
+    let missing = 0;
+    for (let place = 0; place < sets.length; place++) {
+      recordPositionsAt(records, place, START_MS, 0.9 * DAY_MS, 12, positions, 3);
+      for (let k = 0; k < 12; k++) {
+        const [x, y, z] = positions.subarray(3 + 3 * k);
+        if (!recordStateAt(records, place, START_MS + k * 0.9 * DAY_MS, state)) {
+          missing++;
+          expect([x, y, z]).toEqual([Number.NaN, Number.NaN, Number.NaN]);
+          continue;
+        }
+        compared++;
+        expect(Math.hypot(x - state[0], y - state[1], z - state[2])).toBeLessThan(1e-7);
+      }
+    }
+    expect(compared).toBeGreaterThan(4000);
+    expect(missing).toBeGreaterThan(20);
+    expect(() => recordPositionsAt(records, 0, START_MS, 1, 17, positions, 0)).toThrow('17 times');
   });
 
   it('are the same to a nanosecond where times count from elsewhere', () => {

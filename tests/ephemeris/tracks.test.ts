@@ -45,7 +45,7 @@ describe('tracks', () => {
   it.each(kinds)('stay within their tolerance of SGP4: %s', (kind) => {
     const { records, objects } = trackedObjects({ ...NOTHING, [kind]: 1 }, 60, 7);
     const random = seededRandom(8);
-    const makeTracks = createTrackMaker(records, objects);
+    const { tracksOf } = createTrackMaker(records, objects);
     const truth = new Float64Array(6);
     const onTrack = new Float64Array(6);
     let compared = 0;
@@ -55,7 +55,7 @@ describe('tracks', () => {
     let worstSpeed = 0;
     for (const slab of [0, 1, 17]) {
       const slabStartMs = START_MS + slab * SLAB_S * 1000;
-      const tracks = makeTracks(slabStartMs, slab);
+      const tracks = tracksOf(slabStartMs, slab);
       const cursor = createTrackCursor(tracks, createCursorRoom(objects.length));
       objects.forEach(({ record, epochMs }, object) => {
         for (let k = 0; k < 25; k++) {
@@ -83,13 +83,13 @@ describe('tracks', () => {
 
   it('end where SGP4 fails, to the millisecond, and coast on from there', () => {
     const { records, objects } = trackedObjects({ ...NOTHING, decaying: 1 }, 300, 9);
-    const makeTracks = createTrackMaker(records, objects);
+    const { tracksOf } = createTrackMaker(records, objects);
     const state = new Float64Array(6);
     let endings = 0;
     let dead = 0;
     for (let slab = 0; slab < 42; slab += 3) {
       const slabStartMs = START_MS + slab * SLAB_S * 1000;
-      const tracks = makeTracks(slabStartMs, slab);
+      const tracks = tracksOf(slabStartMs, slab);
       const cursor = createTrackCursor(tracks, createCursorRoom(objects.length));
       objects.forEach(({ record, epochMs }, object) => {
         const endS = tracks.endS[object];
@@ -117,11 +117,11 @@ describe('tracks', () => {
 
   it('of one slab do not hang on which slabs came before', () => {
     const { records, objects } = trackedObjects({ ...NOTHING, low: 1, decaying: 1, eccentric: 1 }, 60, 10);
-    const makeTracks = createTrackMaker(records, objects);
-    makeTracks(START_MS, 0);
-    makeTracks(START_MS + 5 * DAY_MS, 30);
-    const again = makeTracks(START_MS + DAY_MS, 6);
-    const fresh = createTrackMaker(records, objects)(START_MS + DAY_MS, 6);
+    const { tracksOf } = createTrackMaker(records, objects);
+    tracksOf(START_MS, 0);
+    tracksOf(START_MS + 5 * DAY_MS, 30);
+    const again = tracksOf(START_MS + DAY_MS, 6);
+    const fresh = createTrackMaker(records, objects).tracksOf(START_MS + DAY_MS, 6);
     const cursors = [again, fresh].map((tracks) =>
       createTrackCursor(tracks, createCursorRoom(objects.length)),
     );
