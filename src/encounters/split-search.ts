@@ -7,7 +7,7 @@ import { nearEarthBand, primaryBand, sieve } from './sieve.js';
 /**
  * More primaries than this are stepped on a grid with all others: looking at pairs one by one costs more then.
  */
-const MOST_PRIMARIES_BY_PAIRS = 400;
+const MOST_PRIMARIES_BY_PAIRS = 250;
 
 /** A search of some of the objects, which are numbered anew. */
 export type PartSearch = {
