@@ -6,6 +6,7 @@ export type ClosestApproach = {
   readonly first: number;
   readonly second: number;
   readonly tcaMs: number;
+  /** To 1e-7 km: that of the states at `tcaMs` hangs on nothing but these. */
   readonly missKm: number;
 };
 

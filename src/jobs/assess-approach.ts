@@ -32,7 +32,7 @@ export function assessApproaches(
 }
 
 function assessApproach(
-  { first, second, tcaMs, missKm }: ClosestApproach,
+  { first, second, tcaMs }: ClosestApproach,
   objects: SearchObjects,
   plan: SearchPlan,
   records: EncounterRecords,
@@ -42,6 +42,7 @@ function assessApproach(
   const object2 = { records: sgp4, place: second };
   recordStateAt(sgp4, first, tcaMs, states, 0);
   recordStateAt(sgp4, second, tcaMs, states, 6);
+  const missKm = Math.hypot(states[6] - states[0], states[7] - states[1], states[8] - states[2]);
   const speedKmPerS = Math.hypot(states[9] - states[3], states[10] - states[4], states[11] - states[5]);
   const fromMs = Math.max(plan.startMs, objects.validFromMs[first], objects.validFromMs[second]);
   const toMs = Math.min(plan.endMs, objects.validToMs[first], objects.validToMs[second]);
