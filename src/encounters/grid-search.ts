@@ -1,12 +1,12 @@
-import { lowestRadiusKm } from '../ephemeris/lowest-radius.js';
 import { SLAB_S } from '../ephemeris/node-spacing.js';
+import { timeBelow } from '../ephemeris/time-below.js';
 import {
   type CursorRoom,
   createTrackCursor,
   moveCursor,
   type TrackCursor,
 } from '../ephemeris/track-cursor.js';
-import { createTrackMaker, type IsOut, type SlabTracks, type TrackMaker } from '../ephemeris/tracks.js';
+import { createTrackMaker, type Reach, type SlabTracks, type TrackMaker } from '../ephemeris/tracks.js';
 import { radialAcceleration, type StepBounds, stepBounds, stepToleranceKm } from './bounds.js';
 import { cheapestStepS, LONGEST_STEP_S, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
 import type { ClosestApproach } from './closest-approach.js';
@@ -115,30 +115,34 @@ export function createGridSearcher(objects: SearchObjects, rules: SearchRules): 
         perigeeRadiusKm: perigeeRadiusKm[i],
         goneFromMs: goneMs[i],
       })),
-      outOfReach(objects, rules, order, primaryCount),
+      reachOf(objects, rules, order, primaryCount),
     ),
   };
   return searcher;
 }
 
-/** The others that stay above all primaries for a whole slab are out; `undefined` where all objects are primaries. */
-function outOfReach(
+/** Others matter while they can be as low as any primary; `undefined` where all objects are primaries. */
+function reachOf(
   { records, epochMs }: SearchObjects,
-  { startMs, endMs, missKm }: SearchRules,
+  rules: SearchRules,
   order: Int32Array,
   primaryCount: number,
-): IsOut | undefined {
+): Reach | undefined {
   if (primaryCount === order.length) return undefined;
+  const { startMs, endMs, missKm } = rules;
   let ceilingKm = 0;
   for (const i of order.subarray(0, primaryCount)) {
     const band = primaryBand({ records, place: i }, epochMs[i], startMs, endMs);
     ceilingKm = Math.max(ceilingKm, (band?.highKm ?? Number.POSITIVE_INFINITY) + missKm);
   }
-  return (object, slabStartMs) => {
-    if (object < primaryCount) return false;
-    const i = order[object];
-    return lowestRadiusKm(records, i, slabStartMs, slabStartMs + SLAB_S * 1000) > ceilingKm;
+  const spanOf = (object: number, slabStartMs: number) => {
+    if (object < primaryCount) return { fromS: 0, toS: SLAB_S };
+    const found = timeBelow(records, order[object], ceilingKm, slabStartMs, slabStartMs + SLAB_S * 1000);
+    if (found === undefined) return undefined;
+    return { fromS: (found.fromMs - slabStartMs) / 1000, toS: (found.toMs - slabStartMs) / 1000 };
   };
+  // Tracks are asked for from the middle of a step on, up to a step away from it.
+  return { spanOf, marginS: 1.5 * (rules.stepS ?? LONGEST_STEP_S) };
 }
 
 /** The finest cells are those of the shortest step and of tracks without error. */
@@ -200,8 +204,8 @@ function readySlab(searcher: GridSearcher, tracks: SlabTracks, lengthS: number):
   const { fromS, toS, candidates } = kernel;
   kernel.segmentS.set(tracks.segmentS);
   order.forEach((i, k) => {
-    fromS[k] = (objects.validFromMs[i] - tracks.startMs) / 1000;
-    toS[k] = Math.min(tracks.endS[k], (objects.validToMs[i] - tracks.startMs) / 1000);
+    fromS[k] = Math.max(tracks.fromS[k], (objects.validFromMs[i] - tracks.startMs) / 1000);
+    toS[k] = Math.min(tracks.toS[k], tracks.endS[k], (objects.validToMs[i] - tracks.startMs) / 1000);
   });
   const there = Int32Array.from(order.keys()).filter(
     (k) => tracks.segmentCount[k] > 0 && fromS[k] < lengthS && toS[k] > 0 && fromS[k] < toS[k],

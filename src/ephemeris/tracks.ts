@@ -52,8 +52,17 @@ export type TrackedObject = {
   readonly goneFromMs?: number;
 };
 
-/** Whether an object stays out of reach of all that matters for a whole slab: no track is laid then. */
-export type IsOut = (object: number, slabStartMs: number) => boolean;
+/** Seconds after a slab's start. */
+export type Span = { readonly fromS: number; readonly toS: number };
+
+/**
+ * When an object can be within reach of anything that matters in a slab: a track is laid for that time, and for
+ * `marginS` before and after; none where it never can.
+ */
+export type Reach = {
+  readonly spanOf: (object: number, slabStartMs: number) => Span | undefined;
+  readonly marginS: number;
+};
 
 /** The objects' paths through one slab, as chains of segments between SGP4 nodes. */
 export type SlabTracks = {
@@ -66,6 +75,9 @@ export type SlabTracks = {
   readonly segmentS: Float64Array;
   /** Where the first segment starts, seconds after the slab's start. */
   readonly originS: Float64Array;
+  /** When each object counts, seconds after the slab's start: all of the slab where no reach says otherwise. */
+  readonly fromS: Float64Array;
+  readonly toS: Float64Array;
   /** Seconds after the slab's start up to which SGP4 gives states; `SLAB_S` for an object that lives on. */
   readonly endS: Float64Array;
   /** Twice the largest distance between each track and SGP4, km. */
@@ -85,10 +97,17 @@ type MutableTracks = { -readonly [K in keyof SlabTracks]: SlabTracks[K] } & {
   nodes: Float64Array<ArrayBuffer>;
 };
 
-type Group = { readonly members: Int32Array; readonly segments: number; readonly bulk: BulkNodes };
+/** Objects with as many segments in a slab, of which the same are laid: `last` not included. */
+type Group = {
+  readonly members: Int32Array;
+  readonly segments: number;
+  readonly first: number;
+  readonly last: number;
+  readonly bulk: BulkNodes;
+};
 
-/** A group whose records the bulk propagator keeps; those that may be out are handed over slab by slab. */
-type LastingGroup = Omit<Group, 'bulk'> & { readonly bulk: BulkNodes | undefined };
+/** A group whose records the bulk propagator keeps; those that may be out of reach are handed over slab by slab. */
+type LastingGroup = Pick<Group, 'members' | 'segments'> & { readonly bulk: BulkNodes | undefined };
 
 /** Groups with more segments hold eccentric orbits: those that can be out of reach for hours. */
 const LEAST_SEGMENTS_OUT = 15;
@@ -97,12 +116,12 @@ const LEAST_SEGMENTS_OUT = 15;
  * Groups the objects by node spacing and hands their records to the bulk propagator once.
  * `loadSgp4` must have been awaited in this thread.
  *
- * @param isOut default: no object ever is
+ * @param reach default: every object may always be within reach
  */
 export function createTrackMaker(
   records: Sgp4Records,
   objects: readonly TrackedObject[],
-  isOut?: IsOut,
+  reach?: Reach,
 ): TrackMaker {
   const bySegments = new Map<number, number[]>();
   objects.forEach((object, index) => {
@@ -117,21 +136,35 @@ export function createTrackMaker(
       segments,
       members: Int32Array.from(members),
       bulk:
-        isOut !== undefined && segments >= LEAST_SEGMENTS_OUT
+        reach !== undefined && segments >= LEAST_SEGMENTS_OUT
           ? undefined
           : bulkOf(records, objects, members, segments),
     }));
   let room = new Float64Array(0);
   const tracksOf = (slabStartMs: number, slabIndex: number): SlabTracks => {
-    const inReach = groups.map(({ segments, members, bulk }) => {
-      if (bulk !== undefined) return { segments, members, bulk };
-      const near = members.filter((object) => !isOut?.(object, slabStartMs));
-      return { segments, members: near, bulk: bulkOf(records, objects, near, segments) };
-    });
-    const tracks = makeTracks(records, objects, inReach, slabStartMs, slabIndex, room);
-    inReach.forEach(({ bulk }, k) => {
-      if (groups[k].bulk === undefined) bulk.dispose();
-    });
+    const spans = new Map<number, Span>();
+    const passing: Group[] = [];
+    const lasting: Group[] = [];
+    for (const { segments, members, bulk } of groups) {
+      if (bulk !== undefined) lasting.push({ segments, members, first: 0, last: segments, bulk });
+      else if (reach !== undefined) {
+        for (const object of members) {
+          const span = reach.spanOf(object, slabStartMs);
+          if (span !== undefined) spans.set(object, span);
+        }
+        passing.push(...passingGroups(records, objects, members, segments, spans, reach.marginS));
+      }
+    }
+    const tracks = makeTracks(
+      records,
+      objects,
+      [...lasting, ...passing],
+      spans,
+      slabStartMs,
+      slabIndex,
+      room,
+    );
+    for (const { bulk } of passing) bulk.dispose();
     room = tracks.nodes;
     return tracks;
   };
@@ -141,6 +174,36 @@ export function createTrackMaker(
       for (const { bulk } of groups) bulk?.dispose();
     },
   };
+}
+
+/** The members with a span, by which of their segments hold it. */
+function passingGroups(
+  records: Sgp4Records,
+  objects: readonly TrackedObject[],
+  members: Int32Array,
+  segments: number,
+  spans: ReadonlyMap<number, Span>,
+  marginS: number,
+): Group[] {
+  const lengthS = SLAB_S / segments;
+  const bySegments = new Map<number, { first: number; last: number; members: number[] }>();
+  for (const object of members) {
+    const span = spans.get(object);
+    if (span === undefined) continue;
+    const first = Math.max(0, Math.floor((span.fromS - marginS) / lengthS));
+    const last = Math.min(segments, Math.ceil((span.toS + marginS) / lengthS));
+    const key = first * (segments + 1) + last;
+    const known = bySegments.get(key);
+    if (known === undefined) bySegments.set(key, { first, last, members: [object] });
+    else known.members.push(object);
+  }
+  return [...bySegments.values()].map(({ first, last, members: own }) => ({
+    members: Int32Array.from(own),
+    segments,
+    first,
+    last,
+    bulk: bulkOf(records, objects, own, last - first),
+  }));
 }
 
 function bulkOf(
@@ -160,12 +223,13 @@ function makeTracks(
   records: Sgp4Records,
   objects: readonly TrackedObject[],
   groups: readonly Group[],
+  spans: ReadonlyMap<number, Span>,
   slabStartMs: number,
   slabIndex: number,
   room: Float64Array<ArrayBuffer>,
 ): SlabTracks & { nodes: Float64Array<ArrayBuffer> } {
   const count = objects.length;
-  const nodeCount = groups.reduce((sum, { members, segments }) => sum + members.length * (segments + 1), 0);
+  const nodeCount = groups.reduce((sum, group) => sum + nodesOf(group), 0);
   const tracks: MutableTracks = {
     startMs: slabStartMs,
     nodes: withRoom(room, nodeCount, 0),
@@ -173,6 +237,8 @@ function makeTracks(
     segmentCount: new Int32Array(count),
     segmentS: new Float64Array(count).fill(SLAB_S),
     originS: new Float64Array(count),
+    fromS: Float64Array.from({ length: count }, (_, object) => spans.get(object)?.fromS ?? 0),
+    toS: Float64Array.from({ length: count }, (_, object) => spans.get(object)?.toS ?? SLAB_S),
     endS: new Float64Array(count).fill(SLAB_S),
     toleranceKm: Float64Array.from(objects, ({ eccentricity }) => trackToleranceKm(eccentricity)),
     worstDefectKm: 0,
@@ -180,9 +246,9 @@ function makeTracks(
   const watched: number[] = [];
   const retried = new Map<number, number[]>();
   let nextNode = 0;
-  for (const { members, segments, bulk } of groups) {
+  for (const group of groups) {
+    const { segments } = group;
     const stride = segments > MOST_SEGMENTS_SAMPLED ? 2 : segments;
-    const group = { members, segments, bulk };
     const { dying, wide } = layTracks(
       tracks,
       objects,
@@ -192,30 +258,33 @@ function makeTracks(
       slabIndex % stride,
       stride,
     );
-    nextNode += members.length * (segments + 1);
+    nextNode += nodesOf(group);
     watched.push(...dying);
-    if (wide.length > 0) retried.set(segments * FINER, wide);
+    if (wide.length > 0) retried.set(segments * FINER, [...(retried.get(segments * FINER) ?? []), ...wide]);
   }
   let node = nextNode;
   const finerGroups = [...retried].map(([segments, members]) => ({
     segments,
+    first: 0,
+    last: segments,
     members: Int32Array.from(members),
     bulk: bulkOf(records, objects, members, segments),
   }));
-  const finerCount = finerGroups.reduce(
-    (sum, { members, segments }) => sum + members.length * (segments + 1),
-    0,
-  );
+  const finerCount = finerGroups.reduce((sum, group) => sum + nodesOf(group), 0);
   tracks.nodes = withRoom(tracks.nodes, nodeCount + finerCount, nodeCount);
   for (const group of finerGroups) {
     const { dying, wide } = layTracks(tracks, objects, group, slabStartMs, node, 0, 1);
-    node += group.members.length * (group.segments + 1);
+    node += nodesOf(group);
     watched.push(...dying, ...wide);
     group.bulk.dispose();
   }
   tracks.nodes = withRoom(tracks.nodes, node + NODES_PER_WATCHED * watched.length, node);
   layWatchedTracks(records, objects, watched, tracks, node);
   return tracks;
+}
+
+function nodesOf({ members, first, last }: Group): number {
+  return members.length * (last - first + 1);
 }
 
 type Laid = {
@@ -229,7 +298,7 @@ type Laid = {
 function layTracks(
   tracks: MutableTracks,
   objects: readonly TrackedObject[],
-  { members, segments, bulk }: Group,
+  { members, segments, first, last, bulk }: Group,
   slabStartMs: number,
   groupNode: number,
   firstMeasured: number,
@@ -239,23 +308,26 @@ function layTracks(
   const dying: number[] = [];
   const wide: number[] = [];
   const lengthS = SLAB_S / segments;
+  const count = last - first;
   const timesMs: number[] = [];
-  for (let k = 0; k <= segments; k++) timesMs.push(slabStartMs + k * lengthS * 1000);
-  for (let k = firstMeasured; k < segments; k += stride) {
-    timesMs.push(Math.round(slabStartMs + (k + MEASURED_PART) * lengthS * 1000));
-  }
+  for (let k = first; k <= last; k++) timesMs.push(slabStartMs + k * lengthS * 1000);
+  // Which ones does not hang on where the track starts.
+  const measured: number[] = [];
+  for (let k = firstMeasured; k < last; k += stride) if (k >= first) measured.push(k);
+  for (const k of measured) timesMs.push(Math.round(slabStartMs + (k + MEASURED_PART) * lengthS * 1000));
   const states = bulk.statesAt(timesMs);
   const { position, error } = states;
   const times = timesMs.length;
   for (let m = 0; m < members.length; m++) {
     const object = members[m];
     const base = m * times;
-    const firstNode = groupNode + m * (segments + 1);
+    const firstNode = groupNode + m * (count + 1);
     tracks.firstNode[object] = firstNode;
-    tracks.segmentCount[object] = segments;
+    tracks.segmentCount[object] = count;
     tracks.segmentS[object] = lengthS;
+    tracks.originS[object] = first * lengthS;
     const isGone = (objects[object].goneFromMs ?? Number.POSITIVE_INFINITY) <= slabStartMs;
-    if (isGone || error[base] !== 0 || Number.isNaN(position[3 * base])) {
+    if (isGone || (first === 0 && (error[base] !== 0 || Number.isNaN(position[3 * base])))) {
       // Dead before the slab begins: no path, and no more work.
       tracks.segmentCount[object] = 0;
       tracks.endS[object] = 0;
@@ -263,7 +335,7 @@ function layTracks(
     }
     let diesOrMay = false;
     for (let k = 0; k < times; k++) if (error[base + k] !== 0) diesOrMay = true;
-    for (let k = 0; k <= segments; k++) {
+    for (let k = 0; k <= count; k++) {
       if (!copyState(states, base + k, nodes, firstNode + k)) diesOrMay = true;
       // Written so that a NaN is watched, too.
       if (!(osculatingPerigeeKm(nodes, 6 * (firstNode + k)) > WATCHED_PERIGEE_KM)) diesOrMay = true;
@@ -273,8 +345,9 @@ function layTracks(
       continue;
     }
     let defectKm = 0;
-    for (let k = firstMeasured, at = base + segments + 1; k < segments; k += stride, at++) {
-      defectKm = Math.max(defectKm, defectAtKm(nodes, firstNode + k, lengthS, position, at));
+    for (const [n, k] of measured.entries()) {
+      const at = base + count + 1 + n;
+      defectKm = Math.max(defectKm, defectAtKm(nodes, firstNode + k - first, lengthS, position, at));
     }
     if (defectKm > tracks.toleranceKm[object] / 2) wide.push(object);
     else if (defectKm > tracks.worstDefectKm) tracks.worstDefectKm = defectKm;
@@ -313,6 +386,7 @@ function layWatchedTracks(
     tracks.firstNode[object] = node;
     tracks.segmentS[object] = WATCHED_STEP_S;
     tracks.segmentCount[object] = WATCHED_STEPS;
+    tracks.originS[object] = 0;
     tracks.toleranceKm[object] = WATCHED_TOLERANCE_KM;
     let alive = 0;
     while (alive < times && copyState(states, m * times + alive, tracks.nodes, node + alive)) alive++;

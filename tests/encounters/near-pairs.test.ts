@@ -116,6 +116,8 @@ function tracksOf(middles: readonly (readonly number[])[], lengthS: number): Sla
     segmentCount: new Int32Array(count).fill(1),
     segmentS: new Float64Array(count).fill(lengthS),
     originS: new Float64Array(count),
+    fromS: new Float64Array(count),
+    toS: new Float64Array(count).fill(lengthS),
     endS: new Float64Array(count).fill(lengthS),
     toleranceKm: new Float64Array(count).fill(0.01),
     worstDefectKm: 0,

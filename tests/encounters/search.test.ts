@@ -17,6 +17,8 @@ import { searchObjectsOf } from './search-objects.js';
 const START_MS = Date.UTC(2026, 11, 1);
 const HOUR_MS = 3_600_000;
 
+const NONE = { low: 0, eccentric: 0, medium: 0, geosynchronous: 0, decaying: 0, train: 0 };
+
 type Screening = {
   readonly fleet: readonly ElementSet[];
   readonly catalog: readonly ElementSet[];
@@ -134,6 +136,36 @@ describe('the search finds what brute force finds, and nothing else', () => {
     expect(expected.length).toBeGreaterThan(20);
     for (const byPairs of [false, true]) {
       const found = search({ fleet, catalog, within: false, hours: 12, missKm: 60, byPairs });
+      expectSameEncounters(found, expected, fleet.length);
+    }
+  });
+
+  it('a fleet against eccentric orbits, which are followed only while they are low', () => {
+    const fleet = syntheticCatalog({ seed: 18, count: 40, epochMs: START_MS, mix: { ...NONE, low: 1 } });
+    const catalog = syntheticCatalog({
+      seed: 19,
+      count: 240,
+      epochMs: START_MS,
+      mix: { ...NONE, eccentric: 0.97, decaying: 0.03 },
+    });
+    const expected = bruteForceEncounters({
+      first: fleet,
+      second: catalog,
+      startMs: START_MS,
+      endMs: START_MS + 13 * HOUR_MS,
+      missKm: 300,
+    });
+    expect(expected.length).toBeGreaterThan(60);
+    for (const forced of [{}, { stepS: 60 }, { stepS: 300 }]) {
+      const found = search({
+        fleet,
+        catalog,
+        within: false,
+        hours: 13,
+        missKm: 300,
+        byPairs: false,
+        ...forced,
+      });
       expectSameEncounters(found, expected, fleet.length);
     }
   });
