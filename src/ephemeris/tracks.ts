@@ -237,12 +237,16 @@ function makeTracks(
     segmentCount: new Int32Array(count),
     segmentS: new Float64Array(count).fill(SLAB_S),
     originS: new Float64Array(count),
-    fromS: Float64Array.from({ length: count }, (_, object) => spans.get(object)?.fromS ?? 0),
-    toS: Float64Array.from({ length: count }, (_, object) => spans.get(object)?.toS ?? SLAB_S),
+    fromS: new Float64Array(count),
+    toS: new Float64Array(count).fill(SLAB_S),
     endS: new Float64Array(count).fill(SLAB_S),
     toleranceKm: Float64Array.from(objects, ({ eccentricity }) => trackToleranceKm(eccentricity)),
     worstDefectKm: 0,
   };
+  for (const [object, { fromS, toS }] of spans) {
+    tracks.fromS[object] = fromS;
+    tracks.toS[object] = toS;
+  }
   const watched: number[] = [];
   const retried = new Map<number, number[]>();
   let nextNode = 0;
