@@ -1,4 +1,5 @@
 import { SLAB_S } from '../ephemeris/node-spacing.js';
+import type { SlabTracks } from '../ephemeris/slab-tracks.js';
 import { timeBelow } from '../ephemeris/time-below.js';
 import {
   type CursorRoom,
@@ -6,7 +7,7 @@ import {
   moveCursor,
   type TrackCursor,
 } from '../ephemeris/track-cursor.js';
-import { createTrackMaker, type Reach, type SlabTracks, type TrackMaker } from '../ephemeris/tracks.js';
+import { createTrackMaker, type Reach, type TrackMaker } from '../ephemeris/tracks.js';
 import { radialAcceleration, type StepBounds, stepBounds, stepToleranceKm } from './bounds.js';
 import { cheapestStepS, LONGEST_STEP_S, SHORTEST_STEP_S, TRIAL_STEP_S } from './choose-step.js';
 import type { ClosestApproach } from './closest-approach.js';

@@ -1,5 +1,5 @@
 import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
-import type { SlabTracks } from './tracks.js';
+import type { SlabTracks } from './slab-tracks.js';
 
 /**
  * A place in time on all tracks of a slab: each object's current segment, fitted when the cursor first

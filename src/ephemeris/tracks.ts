@@ -1,10 +1,11 @@
 import { type BulkNodes, createBulkNodes } from './bulk-nodes.js';
-import { EARTH_RADIUS_KM, gravityAlong } from './gravity.js';
+import { EARTH_RADIUS_KM } from './gravity.js';
 import { SLAB_S, segmentsPerSlab } from './node-spacing.js';
 import { osculatingPerigeeKm } from './osculating-perigee.js';
-import { recordStateAt } from './record-states.js';
 import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
 import type { Sgp4Records } from './sgp4-records.js';
+import { copyState, type MutableTracks, type SlabTracks } from './slab-tracks.js';
+import { layWatchedTracks, NODES_PER_WATCHED } from './watched-tracks.js';
 
 /**
  * How far an interpolated position may lie from SGP4's, doubled. In near-circular orbits it is interpolation
@@ -18,15 +19,10 @@ function trackToleranceKm(eccentricity: number): number {
   return eccentricity < 0.01 ? 0.5 : WIDEST_TOLERANCE_KM;
 }
 
-export const WIDEST_TOLERANCE_KM = 1.6;
+const WIDEST_TOLERANCE_KM = 1.6;
 
 /** Segments of an object that breaks its tolerance are cut into so many. */
 const FINER = 4;
-/** Step of the objects that SGP4 may give up on or that break the tolerance still. */
-const WATCHED_STEP_S = 60;
-const WATCHED_STEP_MS = WATCHED_STEP_S * 1000;
-const WATCHED_STEPS = SLAB_S / WATCHED_STEP_S;
-const WATCHED_TOLERANCE_KM = 0.2;
 /** Below this height SGP4 may give up between two nodes. */
 const WATCHED_PERIGEE_KM = EARTH_RADIUS_KM + 90;
 /**
@@ -39,10 +35,6 @@ const MOST_SEGMENTS_SAMPLED = 12;
  * alike at both ends leave no trace there.
  */
 const MEASURED_PART = 3 / 8;
-/** Steps that a track goes on past the time at which SGP4 fails, for steps that it fails in. */
-const COASTING_STEPS = 3;
-const NODES_PER_WATCHED = WATCHED_STEPS + 1 + COASTING_STEPS;
-
 export type TrackedObject = {
   /** Of its record among the records. */
   readonly place: number;
@@ -64,37 +56,11 @@ export type Reach = {
   readonly marginS: number;
 };
 
-/** The objects' paths through one slab, as chains of segments between SGP4 nodes. */
-export type SlabTracks = {
-  readonly startMs: number;
-  /** Six doubles a node: km and km/s, TEME. */
-  readonly nodes: Float64Array;
-  /** First node of each object; its segments join consecutive nodes, none where no track was laid. */
-  readonly firstNode: Int32Array;
-  readonly segmentCount: Int32Array;
-  readonly segmentS: Float64Array;
-  /** Where the first segment starts, seconds after the slab's start. */
-  readonly originS: Float64Array;
-  /** When each object counts, seconds after the slab's start: all of the slab where no reach says otherwise. */
-  readonly fromS: Float64Array;
-  readonly toS: Float64Array;
-  /** Seconds after the slab's start up to which SGP4 gives states; `SLAB_S` for an object that lives on. */
-  readonly endS: Float64Array;
-  /** Twice the largest distance between each track and SGP4, km. */
-  readonly toleranceKm: Float64Array;
-  /** Largest distance measured between a segment and SGP4, of the objects that were not stepped. */
-  readonly worstDefectKm: number;
-};
-
 export type TrackMaker = {
   /** The tracks of a slab, which the next call overwrites; objects keep the order in which they were given. */
   readonly tracksOf: (slabStartMs: number, slabIndex: number) => SlabTracks;
   /** Gives back the memory of the records. */
   readonly dispose: () => void;
-};
-
-type MutableTracks = { -readonly [K in keyof SlabTracks]: SlabTracks[K] } & {
-  nodes: Float64Array<ArrayBuffer>;
 };
 
 /** Objects with as many segments in a slab, of which the same are laid: `last` not included. */
@@ -283,7 +249,8 @@ function makeTracks(
     group.bulk.dispose();
   }
   tracks.nodes = withRoom(tracks.nodes, node + NODES_PER_WATCHED * watched.length, node);
-  layWatchedTracks(records, objects, watched, tracks, node);
+  const placed = watched.map((object) => ({ object, place: objects[object].place }));
+  layWatchedTracks(records, placed, tracks, node);
   return tracks;
 }
 
@@ -365,119 +332,6 @@ function withRoom(room: Float64Array<ArrayBuffer>, nodes: number, used: number):
   const larger = new Float64Array(6 * Math.ceil(1.1 * nodes));
   larger.set(room.subarray(0, 6 * used));
   return larger;
-}
-
-/** Lays the tracks of watched objects in short steps, to where SGP4 fails. */
-function layWatchedTracks(
-  records: Sgp4Records,
-  objects: readonly TrackedObject[],
-  watched: readonly number[],
-  tracks: MutableTracks,
-  firstNode: number,
-): void {
-  if (watched.length === 0) return;
-  const times = WATCHED_STEPS + 1;
-  const bulk = createBulkNodes(
-    records,
-    watched.map((object) => objects[object].place),
-    times,
-  );
-  const states = bulk.statesAt(Array.from({ length: times }, (_, k) => tracks.startMs + k * WATCHED_STEP_MS));
-  const ending: { object: number; lastGood: number }[] = [];
-  for (let m = 0; m < watched.length; m++) {
-    const object = watched[m];
-    const node = firstNode + m * NODES_PER_WATCHED;
-    tracks.firstNode[object] = node;
-    tracks.segmentS[object] = WATCHED_STEP_S;
-    tracks.segmentCount[object] = WATCHED_STEPS;
-    tracks.originS[object] = 0;
-    tracks.toleranceKm[object] = WATCHED_TOLERANCE_KM;
-    let alive = 0;
-    while (alive < times && copyState(states, m * times + alive, tracks.nodes, node + alive)) alive++;
-    if (alive < times) ending.push({ object, lastGood: alive - 1 });
-  }
-  bulk.dispose();
-  for (const { object, lastGood } of ending)
-    layEndingTrack(records, objects[object].place, object, lastGood, tracks);
-}
-
-/**
- * Finds the millisecond at which SGP4 fails and lays the nodes again so that the last segment ends there.
- *
- * @param lastGood number of the last watched step that has a state
- */
-function layEndingTrack(
-  records: Sgp4Records,
-  place: number,
-  object: number,
-  lastGood: number,
-  tracks: MutableTracks,
-): void {
-  tracks.segmentCount[object] = 0;
-  tracks.endS[object] = 0;
-  if (lastGood < 0) return;
-  let goodMs = tracks.startMs + lastGood * WATCHED_STEP_MS;
-  let badMs = goodMs + WATCHED_STEP_MS;
-  while (badMs - goodMs > 1) {
-    const middleMs = Math.floor((goodMs + badMs) / 2);
-    if (recordStateAt(records, place, middleMs, sample)) goodMs = middleMs;
-    else badMs = middleMs;
-  }
-  const lastS = (goodMs - tracks.startMs) / 1000;
-  const segments = Math.max(1, Math.ceil(lastS / WATCHED_STEP_S));
-  const bulk = createBulkNodes(records, [place], segments);
-  const states = bulk.statesAt(
-    Array.from({ length: segments }, (_, k) => goodMs - (segments - k) * WATCHED_STEP_MS),
-  );
-  const firstNode = tracks.firstNode[object];
-  let complete = recordStateAt(records, place, goodMs, tracks.nodes, 6 * (firstNode + segments));
-  for (let k = 0; k < segments; k++) {
-    if (!copyState(states, k, tracks.nodes, firstNode + k)) complete = false;
-  }
-  bulk.dispose();
-  // Where there is no state before the slab either, there is nothing to draw a path of seconds from.
-  if (!complete) return;
-  for (let k = 0; k < COASTING_STEPS; k++) coast(tracks.nodes, firstNode + segments + k);
-  tracks.segmentCount[object] = segments + COASTING_STEPS;
-  tracks.endS[object] = lastS;
-  tracks.originS[object] = lastS - segments * WATCHED_STEP_S;
-}
-
-const rates = new Float64Array(6);
-
-/** Lays the node after a node one watched step further along its path under gravity: a Taylor series. */
-function coast(nodes: Float64Array, node: number): void {
-  const from = 6 * node;
-  nodes.copyWithin(from + 6, from, from + 6);
-  const parts = 12;
-  const h = WATCHED_STEP_S / parts;
-  for (let part = 0; part < parts; part++) {
-    gravityAlong(nodes, from + 6, rates);
-    for (let axis = 0; axis < 3; axis++) {
-      const at = from + 6 + axis;
-      nodes[at] += h * (nodes[at + 3] + h * (rates[axis] / 2 + (h * rates[3 + axis]) / 6));
-      nodes[at + 3] += h * (rates[axis] + (h * rates[3 + axis]) / 2);
-    }
-  }
-}
-
-/** @returns false when there is no state */
-function copyState(
-  { position, velocity, error }: ReturnType<BulkNodes['statesAt']>,
-  index: number,
-  nodes: Float64Array,
-  node: number,
-): boolean {
-  if (error[index] !== 0) return false;
-  const from = 3 * index;
-  const to = 6 * node;
-  nodes[to] = position[from];
-  nodes[to + 1] = position[from + 1];
-  nodes[to + 2] = position[from + 2];
-  nodes[to + 3] = velocity[from];
-  nodes[to + 4] = velocity[from + 1];
-  nodes[to + 5] = velocity[from + 2];
-  return Number.isFinite(position[from] + velocity[from]);
 }
 
 const segment = new Float64Array(SEGMENT_SIZE);

@@ -16,8 +16,8 @@ import {
   RECORD_SIZE,
   type StepKernel,
 } from '../../src/encounters/step-kernel.js';
+import type { SlabTracks } from '../../src/ephemeris/slab-tracks.js';
 import { createTrackCursor, moveCursor } from '../../src/ephemeris/track-cursor.js';
-import type { SlabTracks } from '../../src/ephemeris/tracks.js';
 import { move, stateOnOrbit } from '../ephemeris/motion-under-gravity.js';
 import { type Random, seededRandom } from '../synthetic/random.js';
 
