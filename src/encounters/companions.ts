@@ -2,9 +2,9 @@ import { createBulkNodes } from '../ephemeris/bulk-nodes.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
 import type { Sgp4Records } from '../ephemeris/sgp4-records.js';
 import { createPositionSamples } from './position-samples.js';
-import { slowMinima } from './refine.js';
 import type { ObjectPair } from './refine-on-sgp4.js';
 import type { SearchObjects, SearchRules } from './search-problem.js';
+import { slowMinima } from './slow-minima.js';
 
 /** Companions never part by more than this, km, or by twice the miss distance where that is more. */
 export const COMPANION_LIMIT_KM = 10;

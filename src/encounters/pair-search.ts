@@ -14,7 +14,6 @@ import {
   meetingWindows,
   type OrbitFrames,
 } from './meeting-windows.js';
-import { velocityDefectKmPerS } from './refine.js';
 import {
   type ObjectPair,
   refinedObject,
@@ -22,6 +21,7 @@ import {
   refineSlowPair,
   type Sgp4Refiner,
 } from './refine-on-sgp4.js';
+import { velocityDefectKmPerS } from './relative-state.js';
 import { pairKey, type SearchObjects, type SearchRules, slabCount, slabOf } from './search-problem.js';
 
 /**

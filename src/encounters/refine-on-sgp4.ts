@@ -1,8 +1,10 @@
 import type { PlacedRecord } from '../ephemeris/sgp4-records.js';
 import type { ClosestApproach } from './closest-approach.js';
+import { fastMinimum } from './fast-minimum.js';
+import type { Minimum } from './minimum.js';
 import { createPositionSamples, type PositionSamples } from './position-samples.js';
-import { type Minimum, refineFastTca, slowMinima } from './refine.js';
 import type { SearchObjects, SearchRules } from './search-problem.js';
+import { slowMinima } from './slow-minima.js';
 
 /** Grid of the samples of a slow pair. */
 export const SLOW_GRID_MS = 40_000;
@@ -39,7 +41,7 @@ export function refineFastPair(
   const object1 = refinedObject(objects, pair.first);
   const object2 = refinedObject(objects, pair.second);
   const reachMs = stretch.toMs - stretch.fromMs;
-  const minimum = refineFastTca(object1, object2, guessMs, reachMs, rules.missKm);
+  const minimum = fastMinimum(object1, object2, guessMs, reachMs, rules.missKm);
   if (minimum === 'none') return;
   if (minimum === 'unsettled') refineSlowPair(refiner, pair, stretch, approaches);
   else accept(refiner, pair, minimum, stretch, approaches);

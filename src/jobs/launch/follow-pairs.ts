@@ -1,6 +1,7 @@
 import { tidePerS2 } from '../../encounters/bounds.js';
 import type { PositionSamples } from '../../encounters/position-samples.js';
-import { relativeStateAt, slowMinima } from '../../encounters/refine.js';
+import { relativeStateAt } from '../../encounters/relative-state.js';
+import { slowMinima } from '../../encounters/slow-minima.js';
 import { recordStateAt } from '../../ephemeris/record-states.js';
 
 /** A stretch of time in which an object flies on one set; milliseconds of UTC since 1970-01-01. */
