@@ -15,7 +15,7 @@ beforeAll(loadSgp4);
 it.each([7000, 7800, 12_000])('holds every moment that SGP4 has an object below %i km', (radiusKm) => {
   const sets = syntheticCatalog({
     seed: 91,
-    count: 160,
+    count: 90,
     epochMs: START_MS,
     mix: { low: 0.1, eccentric: 0.8, medium: 0.05, geosynchronous: 0.05, decaying: 0, train: 0 },
   });
@@ -31,8 +31,8 @@ it.each([7000, 7800, 12_000])('holds every moment that SGP4 has an object below 
       const found = timeBelow(records, place, radiusKm, fromMs, fromMs + SLAB_MS);
       if (found === undefined) none++;
       else if (found.toMs - found.fromMs < SLAB_MS / 2) short++;
-      for (let k = 0; k <= 240; k++) {
-        const timeMs = fromMs + (SLAB_MS * k) / 240;
+      for (let k = 0; k <= 120; k++) {
+        const timeMs = fromMs + (SLAB_MS * k) / 120;
         if (!sgp4StateAt(record, set.epochMs, timeMs, state)) continue;
         if (Math.hypot(state[0], state[1], state[2]) > radiusKm) continue;
         below++;
@@ -42,7 +42,7 @@ it.each([7000, 7800, 12_000])('holds every moment that SGP4 has an object below 
       }
     }
   }
-  expect(none).toBeGreaterThan(50);
-  expect(short).toBeGreaterThan(50);
-  expect(below).toBeGreaterThan(1000);
+  expect(none).toBeGreaterThan(30);
+  expect(short).toBeGreaterThan(30);
+  expect(below).toBeGreaterThan(400);
 });
