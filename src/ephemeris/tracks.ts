@@ -2,7 +2,7 @@ import { type BulkNodes, createBulkNodes } from './bulk-nodes.js';
 import { EARTH_RADIUS_KM } from './gravity.js';
 import { SLAB_S, segmentsPerSlab } from './node-spacing.js';
 import { osculatingPerigeeKm } from './osculating-perigee.js';
-import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
+import { defectAtKm, MEASURED_PART } from './segment-defect.js';
 import type { Sgp4Records } from './sgp4-records.js';
 import { copyState, type MutableTracks, type SlabTracks } from './slab-tracks.js';
 import { layWatchedTracks, NODES_PER_WATCHED } from './watched-tracks.js';
@@ -30,11 +30,6 @@ const WATCHED_PERIGEE_KM = EARTH_RADIUS_KM + 90;
  * is measured, in the next slab the others.
  */
 const MOST_SEGMENTS_SAMPLED = 12;
-/**
- * Where in a segment it is measured. Errors of interpolation are largest half-way, but velocities that are off
- * alike at both ends leave no trace there.
- */
-const MEASURED_PART = 3 / 8;
 export type TrackedObject = {
   /** Of its record among the records. */
   readonly place: number;
@@ -126,6 +121,7 @@ export function createTrackMaker(
       objects,
       [...lasting, ...passing],
       spans,
+      reach?.marginS ?? 0,
       slabStartMs,
       slabIndex,
       room,
@@ -190,6 +186,7 @@ function makeTracks(
   objects: readonly TrackedObject[],
   groups: readonly Group[],
   spans: ReadonlyMap<number, Span>,
+  marginS: number,
   slabStartMs: number,
   slabIndex: number,
   room: Float64Array<ArrayBuffer>,
@@ -250,7 +247,7 @@ function makeTracks(
   }
   tracks.nodes = withRoom(tracks.nodes, node + NODES_PER_WATCHED * watched.length, node);
   const placed = watched.map((object) => ({ object, place: objects[object].place }));
-  layWatchedTracks(records, placed, tracks, node);
+  layWatchedTracks(records, placed, tracks, node, marginS);
   return tracks;
 }
 
@@ -332,23 +329,4 @@ function withRoom(room: Float64Array<ArrayBuffer>, nodes: number, used: number):
   const larger = new Float64Array(6 * Math.ceil(1.1 * nodes));
   larger.set(room.subarray(0, 6 * used));
   return larger;
-}
-
-const segment = new Float64Array(SEGMENT_SIZE);
-const sample = new Float64Array(6);
-
-/** Distance between the segment after a node, in its measured place, and SGP4's position there. */
-function defectAtKm(
-  nodes: Float64Array,
-  node: number,
-  lengthS: number,
-  positions: Float64Array,
-  index: number,
-): number {
-  fitSegment(nodes, 6 * node, 6 * (node + 1), lengthS, segment, 0);
-  evaluateSegment(segment, 0, MEASURED_PART, 1 / lengthS, sample, 0);
-  const dx = sample[0] - positions[3 * index];
-  const dy = sample[1] - positions[3 * index + 1];
-  const dz = sample[2] - positions[3 * index + 2];
-  return Math.sqrt(dx * dx + dy * dy + dz * dz);
 }

@@ -2,6 +2,7 @@ import { createBulkNodes } from './bulk-nodes.js';
 import { gravityAlong } from './gravity.js';
 import { SLAB_S } from './node-spacing.js';
 import { recordStateAt } from './record-states.js';
+import { defectAtKm, MEASURED_PART } from './segment-defect.js';
 import type { Sgp4Records } from './sgp4-records.js';
 import { copyState, type MutableTracks } from './slab-tracks.js';
 
@@ -10,6 +11,14 @@ const WATCHED_STEP_S = 60;
 const WATCHED_STEP_MS = WATCHED_STEP_S * 1000;
 const WATCHED_STEPS = SLAB_S / WATCHED_STEP_S;
 const WATCHED_TOLERANCE_KM = 0.2;
+/** Segments that are measured: a perigee takes more than one. */
+const MEASURED = Array.from({ length: WATCHED_STEPS / 6 }, (_, k) => 6 * k);
+const TIMES = WATCHED_STEPS + 1 + MEASURED.length;
+/** Half the base of a difference of positions. */
+const RATE_MS = 250;
+const RATE_S = RATE_MS / 1000;
+/** Velocities that are this far from the rates of the positions would use up half of the tolerance, km/s. */
+const UNEVEN_KM_PER_S = 0.008;
 /** Steps that a track goes on past the time at which SGP4 fails, for steps that it fails in. */
 const COASTING_STEPS = 3;
 /** Room that each takes. */
@@ -19,41 +28,144 @@ export const NODES_PER_WATCHED = WATCHED_STEPS + 1 + COASTING_STEPS;
 export type WatchedObject = { readonly object: number; readonly place: number };
 
 const sample = new Float64Array(6);
+const before = new Float64Array(6);
+const after = new Float64Array(6);
 
 /**
  * Lays the tracks of watched objects in short steps, to where SGP4 fails.
  *
  * @param firstNode where there is room for `NODES_PER_WATCHED` nodes of each
+ * @param marginS by how much tracks go on beyond the time in which they count
  */
 export function layWatchedTracks(
   records: Sgp4Records,
   watched: readonly WatchedObject[],
   tracks: MutableTracks,
   firstNode: number,
+  marginS: number,
 ): void {
   if (watched.length === 0) return;
-  const times = WATCHED_STEPS + 1;
+  const { startMs } = tracks;
   const bulk = createBulkNodes(
     records,
     watched.map(({ place }) => place),
-    times,
+    TIMES,
   );
-  const states = bulk.statesAt(Array.from({ length: times }, (_, k) => tracks.startMs + k * WATCHED_STEP_MS));
+  const states = bulk.statesAt([
+    ...Array.from({ length: WATCHED_STEPS + 1 }, (_, k) => startMs + k * WATCHED_STEP_MS),
+    ...MEASURED.map((k) => startMs + (k + MEASURED_PART) * WATCHED_STEP_MS),
+  ]);
   const ending: { watchedObject: WatchedObject; lastGood: number }[] = [];
-  for (let m = 0; m < watched.length; m++) {
-    const { object } = watched[m];
+  const uneven: { watchedObject: WatchedObject; positions: Float64Array }[] = [];
+  for (const [m, watchedObject] of watched.entries()) {
+    const { object } = watchedObject;
     const node = firstNode + m * NODES_PER_WATCHED;
+    const base = m * TIMES;
     tracks.firstNode[object] = node;
     tracks.segmentS[object] = WATCHED_STEP_S;
     tracks.segmentCount[object] = WATCHED_STEPS;
     tracks.originS[object] = 0;
     tracks.toleranceKm[object] = WATCHED_TOLERANCE_KM;
     let alive = 0;
-    while (alive < times && copyState(states, m * times + alive, tracks.nodes, node + alive)) alive++;
-    if (alive < times) ending.push({ watchedObject: watched[m], lastGood: alive - 1 });
+    while (alive <= WATCHED_STEPS && copyState(states, base + alive, tracks.nodes, node + alive)) alive++;
+    if (alive <= WATCHED_STEPS) ending.push({ watchedObject, lastGood: alive - 1 });
+    else {
+      const positions = states.position.slice(3 * (base + WATCHED_STEPS + 1), 3 * (base + TIMES));
+      if (worstDefectKm(tracks, object, positions) > WATCHED_TOLERANCE_KM / 2) {
+        uneven.push({ watchedObject, positions });
+      }
+    }
   }
   bulk.dispose();
+  for (const { watchedObject, positions } of uneven) {
+    const { object, place } = watchedObject;
+    // Only where it counts: an eccentric orbit is high for hours.
+    const first = Math.max(0, Math.floor((tracks.fromS[object] - marginS) / WATCHED_STEP_S));
+    const last = Math.min(WATCHED_STEPS, Math.ceil((tracks.toS[object] + marginS) / WATCHED_STEP_S));
+    const node = tracks.firstNode[object] + first;
+    const fromMs = startMs + first * WATCHED_STEP_MS;
+    takeRatesOfPositions(records, place, tracks.nodes, node, last - first + 1, fromMs);
+    tracks.toleranceKm[object] = Math.max(
+      WATCHED_TOLERANCE_KM,
+      2 * worstDefectKm(tracks, object, positions, first, last),
+    );
+  }
   for (const { watchedObject, lastGood } of ending) layEndingTrack(records, watchedObject, lastGood, tracks);
+}
+
+/**
+ * Of the measured segments from `first` to before `last`.
+ *
+ * @param positions at the measured places of a track that lives through the slab
+ */
+function worstDefectKm(
+  { nodes, firstNode }: MutableTracks,
+  object: number,
+  positions: Float64Array,
+  first = 0,
+  last = WATCHED_STEPS,
+): number {
+  let worst = 0;
+  for (const [n, k] of MEASURED.entries()) {
+    if (k < first || k >= last) continue;
+    worst = Math.max(worst, defectAtKm(nodes, firstNode[object] + k, WATCHED_STEP_S, positions, n));
+  }
+  return worst;
+}
+
+/**
+ * Puts the rates of the positions in place of SGP4's velocities: for elements that are years old and low at
+ * perigee these are up to kilometers a second apart.
+ *
+ * @param count of nodes from `firstNode` on, one step apart, the first at `startMs`
+ */
+function takeRatesOfPositions(
+  records: Sgp4Records,
+  place: number,
+  nodes: Float64Array,
+  firstNode: number,
+  count: number,
+  startMs: number,
+): void {
+  for (let k = 0; k < count; k++) {
+    if (!rateAt(records, place, startMs + k * WATCHED_STEP_MS, rate)) continue;
+    for (let axis = 0; axis < 3; axis++) nodes[6 * (firstNode + k) + 3 + axis] = rate[axis];
+  }
+}
+
+const rate = new Float64Array(3);
+
+/** Whether the velocity of a node is far from the rate of the positions there. */
+function isUneven(
+  records: Sgp4Records,
+  place: number,
+  nodes: Float64Array,
+  node: number,
+  timeMs: number,
+): boolean {
+  if (!rateAt(records, place, timeMs, rate)) return false;
+  const [x, y, z] = [0, 1, 2].map((axis) => nodes[6 * node + 3 + axis] - rate[axis]);
+  return Math.hypot(x, y, z) > UNEVEN_KM_PER_S;
+}
+
+/**
+ * Rate of the positions, km/s, by central differences, at the end of SGP4's states by those to one side.
+ *
+ * @returns false where there are not enough states
+ */
+function rateAt(records: Sgp4Records, place: number, timeMs: number, out: Float64Array): boolean {
+  const isLast = !recordStateAt(records, place, timeMs + RATE_MS, after);
+  if (!recordStateAt(records, place, timeMs - RATE_MS, before)) return false;
+  if (!isLast) {
+    for (let axis = 0; axis < 3; axis++) out[axis] = (after[axis] - before[axis]) / (2 * RATE_S);
+    return true;
+  }
+  if (!recordStateAt(records, place, timeMs, after)) return false;
+  if (!recordStateAt(records, place, timeMs - 2 * RATE_MS, sample)) return false;
+  for (let axis = 0; axis < 3; axis++) {
+    out[axis] = (3 * after[axis] - 4 * before[axis] + sample[axis]) / (2 * RATE_S);
+  }
+  return true;
 }
 
 /**
@@ -91,6 +203,16 @@ function layEndingTrack(
   bulk.dispose();
   // Where there is no state before the slab either, there is nothing to draw a path of seconds from.
   if (!complete) return;
+  const startMs = goodMs - segments * WATCHED_STEP_MS;
+  if (isUneven(records, place, tracks.nodes, firstNode + segments, goodMs)) {
+    takeRatesOfPositions(records, place, tracks.nodes, firstNode, segments + 1, startMs);
+    let worstKm = 0;
+    for (let k = 0; k < segments; k++) {
+      if (!recordStateAt(records, place, startMs + (k + MEASURED_PART) * WATCHED_STEP_MS, sample)) continue;
+      worstKm = Math.max(worstKm, defectAtKm(tracks.nodes, firstNode + k, WATCHED_STEP_S, sample, 0));
+    }
+    tracks.toleranceKm[object] = Math.max(WATCHED_TOLERANCE_KM, 2 * worstKm);
+  }
   for (let k = 0; k < COASTING_STEPS; k++) coast(tracks.nodes, firstNode + segments + k);
   tracks.segmentCount[object] = segments + COASTING_STEPS;
   tracks.endS[object] = lastS;

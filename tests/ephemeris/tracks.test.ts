@@ -3,6 +3,7 @@ import { beforeAll, describe, expect, it } from 'vitest';
 import { orbitOf } from '../../src/elements/orbit.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { SLAB_S } from '../../src/ephemeris/node-spacing.js';
+import { recordStateAt } from '../../src/ephemeris/record-states.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import type { Sgp4Records } from '../../src/ephemeris/sgp4-records.js';
 import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
@@ -103,12 +104,17 @@ describe('tracks', () => {
         const endMs = Math.round(slabStartMs + endS * 1000);
         expect(sgp4StateAt(record, epochMs, endMs + 1, state)).toBe(false);
         expect(sgp4StateAt(record, epochMs, endMs, state)).toBe(true);
-        // Half the longest step further on, where nothing but gravity is left to follow.
-        const coasted = move([...state], 150);
+        // Half the longest step further on, where nothing but gravity is left to follow from the rate of positions.
+        const [position, ...earlier] = [0, 250, 500].map((ms) => {
+          sgp4StateAt(record, epochMs, endMs - ms, state);
+          return [...state.subarray(0, 3)];
+        });
+        const rate = position.map((x, axis) => (3 * x - 4 * earlier[0][axis] + earlier[1][axis]) / 0.5);
+        const coasted = move([...position, ...rate], 150);
         stateOnTrack(cursor, object, endS + 150, state, 0);
         const offKm = Math.hypot(...[0, 1, 2].map((axis) => state[axis] - coasted[axis]));
-        // SGP4's drag near its end is not gravity's motion: a few kilometers in 150 s would be wrong still.
-        expect(offKm).toBeLessThan(1);
+        // SGP4's velocity may be off that by 8 m/s, and its drag near the end is not gravity's motion.
+        expect(offKm).toBeLessThan(1.6);
       });
     }
     expect(endings).toBeGreaterThan(10);
@@ -135,5 +141,51 @@ describe('tracks', () => {
       });
       expect(states[0]).toEqual(states[1]);
     });
+  });
+
+  it('hold where the velocities of old elements are far from the rates of their positions', () => {
+    // Years old, low at perigee, much drag: SGP4 goes on with them, for what it is worth.
+    const sets = [0.02, 0.05, 0.1, 0.15, 0.25].flatMap((bstar) =>
+      [400, 700, 1000, 1300].map((ageDays) => ({
+        epochMs: START_MS - ageDays * DAY_MS,
+        meanMotionRevPerDay: 4.25,
+        eccentricity: 0.58,
+        inclinationDeg: 28,
+        rightAscensionDeg: 40,
+        argumentOfPerigeeDeg: 100,
+        meanAnomalyDeg: 200,
+        bstar,
+      })),
+    );
+    const records = sgp4RecordsOf(sets);
+    const objects = sets.map(({ eccentricity }, place) => ({ place, eccentricity, perigeeRadiusKm: 6700 }));
+    const { tracksOf } = createTrackMaker(records, objects);
+    const states = [0, 0, 0].map(() => new Float64Array(6));
+    const onTrack = new Float64Array(6);
+    let worstKmPerS = 0;
+    let compared = 0;
+    for (const slab of [0, 1, 2]) {
+      const startMs = START_MS + slab * SLAB_S * 1000;
+      const tracks = tracksOf(startMs, slab);
+      const cursor = createTrackCursor(tracks, createCursorRoom(objects.length));
+      for (let place = 0; place < sets.length; place++) {
+        for (let timeS = 7; timeS < tracks.endS[place] - 1; timeS += 61) {
+          const isThere = [-100, 0, 100].every((ms, k) =>
+            recordStateAt(records, place, startMs + timeS * 1000 + ms, states[k]),
+          );
+          if (!isThere) continue;
+          compared++;
+          const off = [0, 1, 2].map(
+            (axis) => (states[2][axis] - states[0][axis]) / 0.2 - states[1][3 + axis],
+          );
+          worstKmPerS = Math.max(worstKmPerS, Math.hypot(...off));
+          stateOnTrack(cursor, place, timeS, onTrack, 0);
+          const km = Math.hypot(...[0, 1, 2].map((axis) => onTrack[axis] - states[1][axis]));
+          expect(km).toBeLessThan(tracks.toleranceKm[place]);
+        }
+      }
+    }
+    expect(compared).toBeGreaterThan(1000);
+    expect(worstKmPerS).toBeGreaterThan(0.3);
   });
 });
