@@ -1,5 +1,8 @@
 import type { BulkNodes } from './bulk-nodes.js';
 
+/** No track's tolerance is wider: the cells of a search are laid out for the widest. */
+export const WIDEST_TOLERANCE_KM = 1.6;
+
 /** The objects' paths through one slab, as chains of segments between SGP4 nodes. */
 export type SlabTracks = {
   readonly startMs: number;

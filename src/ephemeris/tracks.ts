@@ -4,7 +4,7 @@ import { SLAB_S, segmentsPerSlab } from './node-spacing.js';
 import { osculatingPerigeeKm } from './osculating-perigee.js';
 import { defectAtKm, MEASURED_PART } from './segment-defect.js';
 import type { Sgp4Records } from './sgp4-records.js';
-import { copyState, type MutableTracks, type SlabTracks } from './slab-tracks.js';
+import { copyState, type MutableTracks, type SlabTracks, WIDEST_TOLERANCE_KM } from './slab-tracks.js';
 import { layWatchedTracks, NODES_PER_WATCHED } from './watched-tracks.js';
 
 /**
@@ -18,8 +18,6 @@ import { layWatchedTracks, NODES_PER_WATCHED } from './watched-tracks.js';
 function trackToleranceKm(eccentricity: number): number {
   return eccentricity < 0.01 ? 0.5 : WIDEST_TOLERANCE_KM;
 }
-
-const WIDEST_TOLERANCE_KM = 1.6;
 
 /** Segments of an object that breaks its tolerance are cut into so many. */
 const FINER = 4;

@@ -4,7 +4,7 @@ import { SLAB_S } from './node-spacing.js';
 import { recordStateAt } from './record-states.js';
 import { defectAtKm, MEASURED_PART } from './segment-defect.js';
 import type { Sgp4Records } from './sgp4-records.js';
-import { copyState, type MutableTracks } from './slab-tracks.js';
+import { copyState, type MutableTracks, WIDEST_TOLERANCE_KM } from './slab-tracks.js';
 
 /** Step of the objects that SGP4 may give up on or that break the tolerance still. */
 const WATCHED_STEP_S = 60;
@@ -85,12 +85,17 @@ export function layWatchedTracks(
     const node = tracks.firstNode[object] + first;
     const fromMs = startMs + first * WATCHED_STEP_MS;
     takeRatesOfPositions(records, place, tracks.nodes, node, last - first + 1, fromMs);
-    tracks.toleranceKm[object] = Math.max(
-      WATCHED_TOLERANCE_KM,
-      2 * worstDefectKm(tracks, object, positions, first, last),
-    );
+    tracks.toleranceKm[object] = toleranceFor(worstDefectKm(tracks, object, positions, first, last));
   }
   for (const { watchedObject, lastGood } of ending) layEndingTrack(records, watchedObject, lastGood, tracks);
+}
+
+/**
+ * What is left are accelerations that no gravity explains, below ground for the most part: beyond the widest
+ * tolerance such elements are not followed truly.
+ */
+function toleranceFor(defectKm: number): number {
+  return Math.min(WIDEST_TOLERANCE_KM, Math.max(WATCHED_TOLERANCE_KM, 2 * defectKm));
 }
 
 /**
@@ -211,7 +216,7 @@ function layEndingTrack(
       if (!recordStateAt(records, place, startMs + (k + MEASURED_PART) * WATCHED_STEP_MS, sample)) continue;
       worstKm = Math.max(worstKm, defectAtKm(tracks.nodes, firstNode + k, WATCHED_STEP_S, sample, 0));
     }
-    tracks.toleranceKm[object] = Math.max(WATCHED_TOLERANCE_KM, 2 * worstKm);
+    tracks.toleranceKm[object] = toleranceFor(worstKm);
   }
   for (let k = 0; k < COASTING_STEPS; k++) coast(tracks.nodes, firstNode + segments + k);
   tracks.segmentCount[object] = segments + COASTING_STEPS;
