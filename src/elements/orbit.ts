@@ -23,9 +23,12 @@ export type OrbitSummary = {
  * The mean orbit as SGP4 sees it: from its own (Brouwer) mean motion, which differs from the published
  * (Kozai) one by up to 0.15 %. Osculating heights swing by some 10 to 20 km about these.
  *
- * @param record the SGP4 record of the set, if there is one already
+ * @param record the SGP4 record of the set, if there is one already, or its Brouwer mean motion (radians a minute)
  */
-export function orbitOf(set: MeanElements, record: SatRec = roundedSgp4RecordOf(set)): OrbitSummary {
+export function orbitOf(
+  set: MeanElements,
+  record: Pick<SatRec, 'no'> = roundedSgp4RecordOf(set),
+): OrbitSummary {
   const meanMotionRadPerS = record.no / SECONDS_PER_MINUTE;
   const semiMajorAxisKm = Math.cbrt(EARTH_MU_KM3_PER_S2 / meanMotionRadPerS ** 2);
   return {

@@ -135,7 +135,7 @@ export function flightsTogether(
 /**
  * Follows some of the pairs through a few times.
  *
- * @param take told of every pair and time that holds
+ * @param tell told of every pair and time that holds
  * @returns those of the pairs that no time breaks
  */
 function follow(
@@ -144,7 +144,7 @@ function follow(
   followed: readonly number[],
   timesMs: readonly number[],
   fastestAt: (distanceKm: number) => number,
-  take: (pair: number, timeMs: number, distanceKm: number, speedKmPerS: number) => void,
+  tell: (pair: number, timeMs: number, distanceKm: number, speedKmPerS: number) => void,
 ): number[] {
   const members = [...new Set(followed.flatMap((k) => [pairs[k].first, pairs[k].second]))];
   const rowOf = new Map(members.map((place, row) => [place, row]));
@@ -161,7 +161,7 @@ function follow(
       const speed = distanceBetween(velocity, 3 * a, 3 * b);
       // Written so that a NaN breaks it, too.
       if (!(speed <= fastestAt(distance))) return false;
-      take(k, timeMs, distance, speed);
+      tell(k, timeMs, distance, speed);
       return true;
     });
   });

@@ -1,6 +1,12 @@
 import type { PlacedRecord } from '../ephemeris/sgp4-records.js';
 import { type Minimum, minimumAt, roundTca, SETTLED_MS } from './minimum.js';
-import { closingRateAt, DIFFERENCE_S, relativeStateAt, velocityDefectKmPerS } from './relative-state.js';
+import {
+  closingRateAt,
+  DIFFERENCE_S,
+  relativeStateAt,
+  straightPath,
+  velocityDefectKmPerS,
+} from './relative-state.js';
 
 const MS_PER_S = 1000;
 /** Where SGP4's velocity could move a TCA by more than this, the last steps are taken on positions alone. */
@@ -45,7 +51,8 @@ export function fastMinimum(
   let rateBefore = Number.NaN;
   for (let step = 0; step < MOST_STEPS; step++) {
     if (!relativeStateAt(object1, object2, timeMs, relative)) return 'none';
-    const { distance, speed2, rate, stepS } = newtonStep(relative);
+    const { distance2, speed2, rate, nearestS: stepS } = straightPath(relative);
+    const distance = Math.sqrt(distance2);
     if (Math.abs(stepS) < STRAIGHT_S) {
       const straight2 = distance * distance - stepS * stepS * speed2;
       const surely = widestKm + STRAIGHT_SLACK_KM;
@@ -66,18 +73,6 @@ export function fastMinimum(
   return 'unsettled';
 }
 
-function newtonStep(state: Float64Array) {
-  const x = state[0];
-  const y = state[1];
-  const z = state[2];
-  const vx = state[3];
-  const vy = state[4];
-  const vz = state[5];
-  const speed2 = vx * vx + vy * vy + vz * vz;
-  const rate = x * vx + y * vy + z * vz;
-  return { distance: Math.sqrt(x * x + y * y + z * z), speed2, rate, stepS: -rate / speed2 };
-}
-
 function settledOnVelocities(
   object1: PlacedRecord,
   object2: PlacedRecord,
@@ -87,7 +82,8 @@ function settledOnVelocities(
   let timeMs = Math.round(nearMs);
   for (let step = 0; step < MOST_STEPS; step++) {
     if (!relativeStateAt(object1, object2, timeMs, relative)) return 'none';
-    const { distance, speed2, stepS } = newtonStep(relative);
+    const { distance2, speed2, nearestS: stepS } = straightPath(relative);
+    const distance = Math.sqrt(distance2);
     const stepMs = stepS * MS_PER_S;
     timeMs += stepMs;
     if (Math.abs(stepMs) * newtonError(distance, speed2, defectKmPerS) >= SETTLED_MS) continue;
@@ -108,8 +104,9 @@ function settledOnPositions(
 ): Minimum | 'none' | 'unsettled' {
   let timeMs = POSITIONS_GRID_MS * Math.round(nearMs / POSITIONS_GRID_MS);
   if (!relativeStateAt(object1, object2, timeMs, relative)) return 'none';
-  const { distance, speed2, stepS } = newtonStep(relative);
-  timeMs += stepS * MS_PER_S;
+  const { distance2, speed2, nearestS } = straightPath(relative);
+  const distance = Math.sqrt(distance2);
+  timeMs += nearestS * MS_PER_S;
   let rate = closingRateAt(object1, object2, timeMs);
   let stepMs = (-rate / speed2) * MS_PER_S;
   const settledMs = Math.max(SETTLED_MS, (MS_PER_S * distance * POSITION_NOISE_KM) / (DIFFERENCE_S * speed2));

@@ -3,6 +3,7 @@ import { farthestInStepKm, isConvex, type StepBounds, tidePerS2 } from './bounds
 import type { ClosestApproach } from './closest-approach.js';
 import type { NearPairs } from './near-pairs.js';
 import { type ObjectPair, refineFastPair, refineSlowPair, type Sgp4Refiner } from './refine-on-sgp4.js';
+import { squareOf, straightPath } from './relative-state.js';
 import { pairKey } from './search-problem.js';
 import { shellFloorKm } from './shell.js';
 import { RECORD_LOW, RECORD_SIZE } from './step-kernel.js';
@@ -123,18 +124,13 @@ function nearestOnTracks(
   let distance2 = 0;
   for (let iteration = 0; iteration < 8; iteration++) {
     relativeOnTracks(cursor, a, b, timeS);
-    const x = relative[0];
-    const y = relative[1];
-    const z = relative[2];
-    const vx = relative[3];
-    const vy = relative[4];
-    const vz = relative[5];
-    const speed2 = vx * vx + vy * vy + vz * vz;
-    distance2 = x * x + y * y + z * z;
+    const straight = straightPath(relative);
+    const { speed2 } = straight;
+    distance2 = straight.distance2;
     // The tracks' errors in place and in speed move their closest approach by no more than this.
     const beyondS = 0.01 + errorKm / Math.sqrt(speed2) + (limitKm * 6.5 * errorKm) / (segmentS * speed2);
     const reachS = halfStepS + Math.min(beyondS, halfStepS);
-    const nextS = timeS - (x * vx + y * vy + z * vz) / speed2;
+    const nextS = timeS + straight.nearestS;
     const clampedS = Math.max(middleS - reachS, Math.min(middleS + reachS, nextS));
     const done = Math.abs(clampedS - timeS) < 1e-3;
     timeS = clampedS;
@@ -156,7 +152,7 @@ function comesNearOnTracks(
   const limitKm = rules.missKm + errorKm + fastestKmPerS * partS * 0.5;
   for (let k = 0; k < parts; k++) {
     relativeOnTracks(cursor, a, b, middleS - halfStepS + (k + 0.5) * partS);
-    if (relative[0] ** 2 + relative[1] ** 2 + relative[2] ** 2 <= limitKm * limitKm) return true;
+    if (squareOf(relative) <= limitKm * limitKm) return true;
   }
   return false;
 }

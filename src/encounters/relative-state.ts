@@ -1,5 +1,5 @@
 import { recordStateAt } from '../ephemeris/record-states.js';
-import { type PlacedRecord, placeOf } from '../ephemeris/sgp4-records.js';
+import { type PlacedRecord, recordNumber } from '../ephemeris/sgp4-records.js';
 
 /** Half the base of the difference that gives the relative velocity of the positions, seconds. */
 export const DIFFERENCE_S = 0.25;
@@ -14,14 +14,7 @@ const relative = new Float64Array(6);
  * near-circular orbits, up to some m/s in eccentric deep-space ones.
  */
 export function velocityDefectKmPerS(object1: PlacedRecord, object2: PlacedRecord): number {
-  return eccentricityOf(object1) < 0.01 && eccentricityOf(object2) < 0.01 ? 1e-4 : 0.02;
-}
-
-let eccentricityAt: number | undefined;
-
-function eccentricityOf({ records, place }: PlacedRecord): number {
-  eccentricityAt ??= placeOf('ecco');
-  return records.values[records.size * place + eccentricityAt];
+  return recordNumber(object1, 'ecco') < 0.01 && recordNumber(object2, 'ecco') < 0.01 ? 1e-4 : 0.02;
 }
 
 /** Relative state, object 2 minus object 1; false where SGP4 gives no state for one of them. */
@@ -50,6 +43,22 @@ export function closingRateAt(object1: PlacedRecord, object2: PlacedRecord, time
   if (!relativeStateAt(object1, object2, timeMs - DIFFERENCE_S * MS_PER_S, relative)) return Number.NaN;
   const before = squareOf(relative);
   return (after - before) / (4 * DIFFERENCE_S);
+}
+
+/**
+ * The straight line through a relative state: squares of distance (km^2) and speed, half the rate of the former
+ * (km^2/s), and when it is nearest, seconds from then.
+ */
+export function straightPath(state: Float64Array) {
+  const x = state[0];
+  const y = state[1];
+  const z = state[2];
+  const vx = state[3];
+  const vy = state[4];
+  const vz = state[5];
+  const speed2 = vx * vx + vy * vy + vz * vz;
+  const rate = x * vx + y * vy + z * vz;
+  return { distance2: x * x + y * y + z * z, speed2, rate, nearestS: -rate / speed2 };
 }
 
 /** Squared length of the first three components. */

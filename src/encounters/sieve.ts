@@ -11,7 +11,7 @@ import {
   secularElementsAt,
   TERMS_SIZE,
 } from '../ephemeris/secular-elements.js';
-import { isDeepSpace, type PlacedRecord, placeOf } from '../ephemeris/sgp4-records.js';
+import { isDeepSpace, type PlacedRecord, recordNumber } from '../ephemeris/sgp4-records.js';
 
 /** Distances from the Earth's center between which an object stays during a window, km. */
 export type RadiusBand = { readonly lowKm: number; readonly highKm: number };
@@ -117,9 +117,7 @@ export function primaryBand(
   if (whole !== undefined) return whole;
   const atStart = radiusBand(object, epochMs, startMs, startMs);
   if (atStart === undefined) return NOWHERE;
-  const { records, place } = object;
-  const isSinking =
-    !isDeepSpace(records, place) && records.values[records.size * place + placeOf('bstar')] > 0;
+  const isSinking = !isDeepSpace(object.records, object.place) && recordNumber(object, 'bstar') > 0;
   return isSinking ? { lowKm: 0, highKm: atStart.highKm } : undefined;
 }
 

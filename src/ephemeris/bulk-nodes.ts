@@ -1,5 +1,5 @@
 import { sgp4Module, writeRun } from './sgp4-module.js';
-import type { Sgp4Records } from './sgp4-records.js';
+import { copyRecord, type Sgp4Records } from './sgp4-records.js';
 
 /** SGP4 states of many objects at common times. */
 export type BulkNodes = {
@@ -32,7 +32,7 @@ export function createBulkNodes(
   mostTimes: number,
 ): BulkNodes {
   const { module, runBytes } = sgp4Module();
-  const { size, values, originMs } = records;
+  const { size, originMs } = records;
   const count = members.length;
   const most = count * mostTimes;
   const run = module._calloc_one(runBytes);
@@ -40,7 +40,7 @@ export function createBulkNodes(
   const days = module._malloc(8 * mostTimes);
   const output = module._malloc(Math.max(8, 49 * most));
   members.forEach((place, k) => {
-    module.HEAPF64.set(values.subarray(size * place, size * (place + 1)), held / 8 + size * k);
+    copyRecord(records, place, module.HEAPF64.subarray(held / 8), k);
   });
   return {
     objectCount: count,

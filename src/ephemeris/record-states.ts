@@ -1,5 +1,5 @@
 import { type NativeModule, sgp4Module, writeRun } from './sgp4-module.js';
-import { placeOf, type Sgp4Records } from './sgp4-records.js';
+import { copyRecord, placeOf, type Sgp4Records } from './sgp4-records.js';
 
 /** Records that lie in the module's memory at a time: pairs come in turns, and each is asked for several times. */
 const SLOTS = 16;
@@ -115,7 +115,7 @@ export function recordPositionsAt(
   series ??= createSeries(module, runBytes, records.size);
   const { record, run, days, positions, errors } = series;
   const heap = module.HEAPF64;
-  heap.set(records.values.subarray(records.size * place, records.size * (place + 1)), record / 8);
+  copyRecord(records, place, heap.subarray(record / 8), 0);
   for (let k = 0; k < MOST_TIMES; k++) {
     heap[days / 8 + k] = (startMs + Math.min(k, count - 1) * stepMs - records.originMs) / MS_PER_DAY;
   }

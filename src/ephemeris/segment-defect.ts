@@ -1,10 +1,11 @@
 import { evaluateSegment, fitSegment, SEGMENT_SIZE } from './septic.js';
 
 /**
- * Where in a segment it is measured against SGP4. Errors of interpolation are largest half-way, but velocities that are off
- * alike at both ends leave no trace there.
+ * Where in a segment it is measured against SGP4. Errors of interpolation are largest half-way, but velocities
+ * that are off alike at both ends leave no trace there.
  */
 export const MEASURED_PART = 3 / 8;
+
 const segment = new Float64Array(SEGMENT_SIZE);
 const sample = new Float64Array(6);
 

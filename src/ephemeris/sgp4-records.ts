@@ -1,4 +1,5 @@
 import { constants, type SatRec } from 'satellite.js';
+import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
 import { type Field, type Sgp4Module, sgp4Module } from './sgp4-module.js';
 
 /**
@@ -6,7 +7,6 @@ import { type Field, type Sgp4Module, sgp4Module } from './sgp4-module.js';
  * share. In JavaScript a record is some hundred numbers, each an object of its own.
  */
 export type Sgp4Records = {
-  readonly count: number;
   /** What the times of the records count from, milliseconds of UTC since 1970-01-01: then doubles resolve them. */
   readonly originMs: number;
   /** The same memory three times. */
@@ -41,7 +41,6 @@ type OwnField = Field & { readonly key: string; readonly place: number };
 
 /** How the fields of satellite.js's records go into those of its module. */
 type Layout = {
-  readonly size: number;
   readonly fields: Record<'double' | 'int' | 'char', readonly OwnField[]>;
   readonly nearEarthDoubles: readonly OwnField[];
   readonly earth: readonly { readonly place: number; readonly value: number }[];
@@ -68,7 +67,6 @@ function layoutOf({ recordBytes, recordFields }: Sgp4Module, record: SatRec): La
     .filter(({ key }) => Object.hasOwn(record, key));
   const ofType = (type: string) => own.filter((field) => field.type === type);
   return {
-    size: recordBytes / 8,
     fields: { double: ofType('double'), int: ofType('int'), char: ofType('char') },
     nearEarthDoubles: ofType('double').filter(({ isDeepSpace }) => !isDeepSpace),
     earth: Object.entries(EARTH).map(([name, value]) => ({ place: placeOf(name), value })),
@@ -81,13 +79,25 @@ function fieldOf(name: string, type: string): Field {
   return field;
 }
 
+const places = new Map<string, number>();
+
 /**
  * Place of a number in a record, in doubles. `loadSgp4` must have been awaited.
  *
  * @param name as satellite.js's module has it
  */
 export function placeOf(name: string): number {
-  return fieldOf(name, 'double').offset / 8;
+  let place = places.get(name);
+  if (place === undefined) {
+    place = fieldOf(name, 'double').offset / 8;
+    places.set(name, place);
+  }
+  return place;
+}
+
+/** A number of a record: in the units of SGP4, by the name that satellite.js's module has for it. */
+export function recordNumber({ records, place }: PlacedRecord, name: string): number {
+  return records.values[records.size * place + placeOf(name)];
 }
 
 /** As `placeOf`, of a whole number, in fours of bytes. */
@@ -95,12 +105,24 @@ export function integerPlaceOf(name: string): number {
   return fieldOf(name, 'int').offset / 4;
 }
 
+/**
+ * Records of element sets that SGP4 accepts, their times counted from the first epoch. Each is gone from
+ * JavaScript before the next is made: kept, they would be most of what memory holds. `loadSgp4` must have been
+ * awaited.
+ */
+export function sgp4RecordsOf(sets: readonly MeanElements[]): Sgp4Records {
+  const records = createSgp4Records(sets.length, sets[0]?.epochMs ?? 0);
+  sets.forEach((set, place) => {
+    laySgp4Record(records, place, sgp4RecordOf(set), set.epochMs);
+  });
+  return records;
+}
+
 /** Room for records, which `laySgp4Record` fills. `loadSgp4` must have been awaited. */
 export function createSgp4Records(count: number, originMs: number): Sgp4Records {
   const { recordBytes } = sgp4Module();
   const buffer = new SharedArrayBuffer(recordBytes * count);
   return {
-    count,
     originMs,
     values: new Float64Array(buffer),
     integers: new Int32Array(buffer),
@@ -128,12 +150,9 @@ export function laySgp4Record(records: Sgp4Records, place: number, record: SatRe
   layEpoch(records, place, epochMs);
 }
 
-let epochPlaces: { readonly days: number; readonly rest: number } | undefined;
-
 function layEpoch({ values, size, originMs }: Sgp4Records, place: number, epochMs: number): void {
-  epochPlaces ??= { days: placeOf('jdsatepoch'), rest: placeOf('jdsatepochF') };
-  values[size * place + epochPlaces.days] = (epochMs - originMs) / MS_PER_DAY;
-  values[size * place + epochPlaces.rest] = 0;
+  values[size * place + placeOf('jdsatepoch')] = (epochMs - originMs) / MS_PER_DAY;
+  values[size * place + placeOf('jdsatepochF')] = 0;
 }
 
 /**
@@ -147,9 +166,8 @@ export function gatherRecords(
   originMs: number,
 ): Sgp4Records {
   const gathered = createSgp4Records(placed.length, originMs);
-  const { size } = gathered;
   placed.forEach(({ records, place }, k) => {
-    gathered.values.set(records.values.subarray(size * place, size * (place + 1)), size * k);
+    copyRecord(records, place, gathered.values, k);
     layEpoch(gathered, k, epochMs[k]);
   });
   return gathered;
@@ -157,12 +175,21 @@ export function gatherRecords(
 
 /** Some of the records, in the order of their places. */
 export function pickRecords(records: Sgp4Records, places: Int32Array): Sgp4Records {
-  const { size, values, originMs } = records;
-  const picked = createSgp4Records(places.length, originMs);
+  const picked = createSgp4Records(places.length, records.originMs);
   places.forEach((place, k) => {
-    picked.values.set(values.subarray(size * place, size * (place + 1)), size * k);
+    copyRecord(records, place, picked.values, k);
   });
   return picked;
+}
+
+/** Copies a record to where `values` holds record number `index`, those before it included. */
+export function copyRecord(
+  { values, size }: Sgp4Records,
+  place: number,
+  into: Float64Array,
+  index: number,
+): void {
+  into.set(values.subarray(size * place, size * (place + 1)), size * index);
 }
 
 /** Whether SGP4 treats the orbit as deep-space: with the Moon, the Sun and resonances. */

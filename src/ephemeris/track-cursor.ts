@@ -15,14 +15,6 @@ export type TrackCursor = {
 /** Room for a cursor, which the next one may use again: `SEGMENT_SIZE` coefficients an object, and one time each. */
 export type CursorRoom = Omit<TrackCursor, 'tracks'>;
 
-export function createCursorRoom(objectCount: number): CursorRoom {
-  return {
-    coefficients: new Float64Array(SEGMENT_SIZE * objectCount),
-    segmentStartS: new Float64Array(objectCount),
-    segmentEndS: new Float64Array(objectCount),
-  };
-}
-
 export function createTrackCursor(tracks: SlabTracks, room: CursorRoom): TrackCursor {
   room.segmentStartS.fill(Number.POSITIVE_INFINITY);
   room.segmentEndS.fill(Number.NEGATIVE_INFINITY);

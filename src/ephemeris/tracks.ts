@@ -28,6 +28,7 @@ const WATCHED_PERIGEE_KM = EARTH_RADIUS_KM + 90;
  * is measured, in the next slab the others.
  */
 const MOST_SEGMENTS_SAMPLED = 12;
+
 export type TrackedObject = {
   /** Of its record among the records. */
   readonly place: number;

@@ -56,7 +56,7 @@ export function layWatchedTracks(
     ...MEASURED.map((k) => startMs + (k + MEASURED_PART) * WATCHED_STEP_MS),
   ]);
   const ending: { watchedObject: WatchedObject; lastGood: number }[] = [];
-  const uneven: { watchedObject: WatchedObject; positions: Float64Array }[] = [];
+  const uneven: WatchedObject[] = [];
   for (const [m, watchedObject] of watched.entries()) {
     const { object } = watchedObject;
     const node = firstNode + m * NODES_PER_WATCHED;
@@ -70,72 +70,70 @@ export function layWatchedTracks(
     while (alive <= WATCHED_STEPS && copyState(states, base + alive, tracks.nodes, node + alive)) alive++;
     if (alive <= WATCHED_STEPS) ending.push({ watchedObject, lastGood: alive - 1 });
     else {
-      const positions = states.position.slice(3 * (base + WATCHED_STEPS + 1), 3 * (base + TIMES));
-      if (worstDefectKm(tracks, object, positions) > WATCHED_TOLERANCE_KM / 2) {
-        uneven.push({ watchedObject, positions });
-      }
+      const first = base + WATCHED_STEPS + 1;
+      const isWide = MEASURED.some(
+        (k, n) =>
+          defectAtKm(tracks.nodes, node + k, WATCHED_STEP_S, states.position, first + n) >
+          WATCHED_TOLERANCE_KM / 2,
+      );
+      if (isWide) uneven.push(watchedObject);
     }
   }
   bulk.dispose();
-  for (const { watchedObject, positions } of uneven) {
-    const { object, place } = watchedObject;
+  for (const { object, place } of uneven) {
     // Only where it counts: an eccentric orbit is high for hours.
     const first = Math.max(0, Math.floor((tracks.fromS[object] - marginS) / WATCHED_STEP_S));
     const last = Math.min(WATCHED_STEPS, Math.ceil((tracks.toS[object] + marginS) / WATCHED_STEP_S));
-    const node = tracks.firstNode[object] + first;
-    const fromMs = startMs + first * WATCHED_STEP_MS;
-    takeRatesOfPositions(records, place, tracks.nodes, node, last - first + 1, fromMs);
-    tracks.toleranceKm[object] = toleranceFor(worstDefectKm(tracks, object, positions, first, last));
+    const stretch: Stretch = {
+      firstNode: tracks.firstNode[object] + first,
+      segments: last - first,
+      startMs: startMs + first * WATCHED_STEP_MS,
+    };
+    const measured = MEASURED.filter((k) => k >= first && k < last).map((k) => k - first);
+    takeRatesOfPositions(records, place, tracks.nodes, stretch);
+    tracks.toleranceKm[object] = toleranceOf(records, place, tracks.nodes, stretch, measured);
   }
   for (const { watchedObject, lastGood } of ending) layEndingTrack(records, watchedObject, lastGood, tracks);
 }
 
-/**
- * What is left are accelerations that no gravity explains, below ground for the most part: beyond the widest
- * tolerance such elements are not followed truly.
- */
-function toleranceFor(defectKm: number): number {
-  return Math.min(WIDEST_TOLERANCE_KM, Math.max(WATCHED_TOLERANCE_KM, 2 * defectKm));
-}
-
-/**
- * Of the measured segments from `first` to before `last`.
- *
- * @param positions at the measured places of a track that lives through the slab
- */
-function worstDefectKm(
-  { nodes, firstNode }: MutableTracks,
-  object: number,
-  positions: Float64Array,
-  first = 0,
-  last = WATCHED_STEPS,
-): number {
-  let worst = 0;
-  for (const [n, k] of MEASURED.entries()) {
-    if (k < first || k >= last) continue;
-    worst = Math.max(worst, defectAtKm(nodes, firstNode[object] + k, WATCHED_STEP_S, positions, n));
-  }
-  return worst;
-}
+/** Segments of a track one after the other. */
+type Stretch = { readonly firstNode: number; readonly segments: number; readonly startMs: number };
 
 /**
  * Puts the rates of the positions in place of SGP4's velocities: for elements that are years old and low at
  * perigee these are up to kilometers a second apart.
- *
- * @param count of nodes from `firstNode` on, one step apart, the first at `startMs`
  */
 function takeRatesOfPositions(
   records: Sgp4Records,
   place: number,
   nodes: Float64Array,
-  firstNode: number,
-  count: number,
-  startMs: number,
+  { firstNode, segments, startMs }: Stretch,
 ): void {
-  for (let k = 0; k < count; k++) {
+  for (let k = 0; k <= segments; k++) {
     if (!rateAt(records, place, startMs + k * WATCHED_STEP_MS, rate)) continue;
     for (let axis = 0; axis < 3; axis++) nodes[6 * (firstNode + k) + 3 + axis] = rate[axis];
   }
+}
+
+/**
+ * Tolerance of a track with the rates of positions. What is left are accelerations that no gravity explains, below
+ * ground for the most part: beyond the widest tolerance such elements are not followed truly.
+ *
+ * @param measured numbers of the segments that are measured
+ */
+function toleranceOf(
+  records: Sgp4Records,
+  place: number,
+  nodes: Float64Array,
+  { firstNode, startMs }: Stretch,
+  measured: readonly number[],
+): number {
+  let worstKm = 0;
+  for (const k of measured) {
+    if (!recordStateAt(records, place, startMs + (k + MEASURED_PART) * WATCHED_STEP_MS, sample)) continue;
+    worstKm = Math.max(worstKm, defectAtKm(nodes, firstNode + k, WATCHED_STEP_S, sample, 0));
+  }
+  return Math.min(WIDEST_TOLERANCE_KM, Math.max(WATCHED_TOLERANCE_KM, 2 * worstKm));
 }
 
 const rate = new Float64Array(3);
@@ -208,15 +206,12 @@ function layEndingTrack(
   bulk.dispose();
   // Where there is no state before the slab either, there is nothing to draw a path of seconds from.
   if (!complete) return;
-  const startMs = goodMs - segments * WATCHED_STEP_MS;
   if (isUneven(records, place, tracks.nodes, firstNode + segments, goodMs)) {
-    takeRatesOfPositions(records, place, tracks.nodes, firstNode, segments + 1, startMs);
-    let worstKm = 0;
-    for (let k = 0; k < segments; k++) {
-      if (!recordStateAt(records, place, startMs + (k + MEASURED_PART) * WATCHED_STEP_MS, sample)) continue;
-      worstKm = Math.max(worstKm, defectAtKm(tracks.nodes, firstNode + k, WATCHED_STEP_S, sample, 0));
-    }
-    tracks.toleranceKm[object] = toleranceFor(worstKm);
+    const stretch: Stretch = { firstNode, segments, startMs: goodMs - segments * WATCHED_STEP_MS };
+    takeRatesOfPositions(records, place, tracks.nodes, stretch);
+    tracks.toleranceKm[object] = toleranceOf(records, place, tracks.nodes, stretch, [
+      ...Array(segments).keys(),
+    ]);
   }
   for (let k = 0; k < COASTING_STEPS; k++) coast(tracks.nodes, firstNode + segments + k);
   tracks.segmentCount[object] = segments + COASTING_STEPS;

@@ -1,5 +1,4 @@
 import type { ClosestApproach } from '../encounters/closest-approach.js';
-import type { SearchObjects } from '../encounters/search-problem.js';
 import { passageThrough } from '../encounters/volume.js';
 import { recordStateAt } from '../ephemeris/record-states.js';
 import type { PlacedRecord } from '../ephemeris/sgp4-records.js';
@@ -24,19 +23,18 @@ const states = new Float64Array(12);
  */
 export function assessApproaches(
   approaches: readonly ClosestApproach[],
-  objects: SearchObjects,
   plan: SearchPlan,
   records: EncounterRecords,
 ): void {
-  for (const approach of approaches) assessApproach(approach, objects, plan, records);
+  for (const approach of approaches) assessApproach(approach, plan, records);
 }
 
 function assessApproach(
   { first, second, tcaMs }: ClosestApproach,
-  objects: SearchObjects,
   plan: SearchPlan,
   records: EncounterRecords,
 ): void {
+  const { objects } = plan;
   const { records: sgp4 } = objects;
   const object1 = { records: sgp4, place: first };
   const object2 = { records: sgp4, place: second };

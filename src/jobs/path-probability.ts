@@ -1,5 +1,5 @@
 import { recordStateAt } from '../ephemeris/record-states.js';
-import { type PlacedRecord, placeOf } from '../ephemeris/sgp4-records.js';
+import { type PlacedRecord, recordNumber } from '../ephemeris/sgp4-records.js';
 import { createShortArc } from '../ephemeris/short-arc.js';
 import type { OrbitState } from '../ephemeris/state.js';
 import type { EncounterObject, FullAssessment } from '../probability/assess-encounter.js';
@@ -131,6 +131,6 @@ function directly(object1: PathSide, object2: PathSide, tcaMs: number): StatesAt
 
 const scratch = new Float64Array(6);
 
-function periodS({ records, place }: PathSide): number {
-  return (120 * Math.PI) / records.values[records.size * place + placeOf('no_unkozai')];
+function periodS(side: PathSide): number {
+  return (120 * Math.PI) / recordNumber(side, 'no_unkozai');
 }

@@ -1,12 +1,6 @@
 import type { ElementSet } from '../elements/element-set.js';
 import { type OrbitSummary, orbitOf } from '../elements/orbit.js';
-import { type MeanElements, sgp4RecordOf } from '../elements/sgp4-record.js';
-import {
-  createSgp4Records,
-  laySgp4Record,
-  type PlacedRecord,
-  type Sgp4Records,
-} from '../ephemeris/sgp4-records.js';
+import { type PlacedRecord, recordNumber, sgp4RecordsOf } from '../ephemeris/sgp4-records.js';
 import { type ListedObject, type Maneuverability, propertiesOf } from '../uncertainty/objects.js';
 import { type SigmaCurve, type SigmaTable, sigmaCurveFor } from '../uncertainty/sigma-table.js';
 
@@ -44,12 +38,9 @@ export function screenedObjects(
   sets: readonly ElementSet[],
   { listed, sigmas, defaultSigmas }: ObjectKnowledge,
 ): ScreenedObject[] {
-  const records = createSgp4Records(sets.length, originOf(sets));
+  const records = sgp4RecordsOf(sets);
   return sets.map((set, place) => {
-    // The record in JavaScript is gone again before the next: kept, they would be most of what memory holds.
-    const record = sgp4RecordOf(set);
-    laySgp4Record(records, place, record, set.epochMs);
-    const orbit = orbitOf(set, record);
+    const orbit = orbitOf(set, { no: recordNumber({ records, place }, 'no_unkozai') });
     const properties = propertiesOf(listed, set.designator);
     return {
       set,
@@ -68,17 +59,4 @@ export function screenedObjects(
       isPredicted: false,
     };
   });
-}
-
-/** SGP4 records of element sets alone. */
-export function sgp4RecordsOf(sets: readonly MeanElements[]): Sgp4Records {
-  const records = createSgp4Records(sets.length, originOf(sets));
-  sets.forEach((set, place) => {
-    laySgp4Record(records, place, sgp4RecordOf(set), set.epochMs);
-  });
-  return records;
-}
-
-function originOf(sets: readonly MeanElements[]): number {
-  return sets[0]?.epochMs ?? 0;
 }

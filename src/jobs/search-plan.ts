@@ -60,9 +60,18 @@ export function searchPlanOf(
   };
 }
 
-/** @param originMs what times count from, near the window */
-function searchObjectsOf(
-  objects: readonly ScreenedObject[],
+/** What a search takes of an object. */
+export type SearchedObject = Pick<
+  ScreenedObject,
+  'records' | 'place' | 'validFromMs' | 'validToMs' | 'orbit'
+> & { readonly set: Pick<ScreenedObject['set'], 'epochMs' | 'eccentricity'> };
+
+/**
+ * @param objects primaries first
+ * @param originMs what times count from, near the window
+ */
+export function searchObjectsOf(
+  objects: readonly SearchedObject[],
   primaryCount: number,
   originMs: number,
 ): SearchObjects {
@@ -93,10 +102,7 @@ export function rulesOfPlan(plan: SearchPlan): SearchRules {
   };
 }
 
-function shared(
-  objects: readonly ScreenedObject[],
-  figureOf: (object: ScreenedObject) => number,
-): Float64Array {
+function shared<Item>(objects: readonly Item[], figureOf: (object: Item) => number): Float64Array {
   const figures = sharedFloat64(objects.length);
   objects.forEach((object, i) => {
     figures[i] = figureOf(object);

@@ -37,12 +37,11 @@ async function serve(): Promise<void> {
 type PlanSearch = { readonly answerTo: (slab: number) => SlabAnswer; readonly dispose: () => void };
 
 function searchOf(plan: SearchPlan): PlanSearch {
-  const { objects } = plan;
-  const searcher = createSlabSearcher(objects, rulesOfPlan(plan));
+  const searcher = createSlabSearcher(plan.objects, rulesOfPlan(plan));
   const answerTo = (slab: number): SlabAnswer => {
     const { approaches, ...facts } = searchSlab(searcher, slab);
     const records = createEncounterRecords(approaches.length + 1);
-    assessApproaches(approaches, objects, plan, records);
+    assessApproaches(approaches, plan, records);
     return { slab, records: records.data.slice(0, FIELDS * records.size), ...facts };
   };
   return { answerTo, dispose: () => disposeSlabSearcher(searcher) };

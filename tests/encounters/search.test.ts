@@ -7,7 +7,7 @@ import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
 import { slowMinima } from '../../src/encounters/slow-minima.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { setPassing } from '../synthetic/passing-orbit.js';
 import { seededRandom } from '../synthetic/random.js';

@@ -2,8 +2,8 @@ import { beforeAll, describe, expect, it } from 'vitest';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { type RadiusBand, radiusBand, sieve } from '../../src/encounters/sieve.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
+import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
 

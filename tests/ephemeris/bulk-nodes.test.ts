@@ -1,7 +1,7 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import { createBulkNodes } from '../../src/ephemeris/bulk-nodes.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 
 const START_MS = Date.UTC(2026, 11, 1);

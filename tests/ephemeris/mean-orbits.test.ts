@@ -14,9 +14,9 @@ import {
   TERMS_SIZE,
 } from '../../src/ephemeris/secular-elements.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
+import { sgp4StateAt } from './sgp4-state.js';
 
 await loadSgp4();
 

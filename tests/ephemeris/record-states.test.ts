@@ -11,11 +11,10 @@ import {
   recordStateAt,
 } from '../../src/ephemeris/record-states.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { gatherRecords, pickRecords } from '../../src/ephemeris/sgp4-records.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
+import { gatherRecords, pickRecords, sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
+import { sgp4StateAt } from './sgp4-state.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const DAY_MS = 86_400_000;
@@ -140,7 +139,8 @@ describe('states of single records', () => {
 describe('laySgp4Record', () => {
   it('lays every number that satellite.js hands to its own propagator', async () => {
     const own = sets.map(sgp4RecordOf);
-    const { values, size, count } = sgp4RecordsOf(sets);
+    const { values, size } = sgp4RecordsOf(sets);
+    const count = sets.length;
     const runtime = await createSingleThreadRuntime();
     const propagator = new BulkPropagator({
       runtime,

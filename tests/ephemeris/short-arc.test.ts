@@ -1,11 +1,11 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
 import { createShortArc } from '../../src/ephemeris/short-arc.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
+import { sgp4StateAt } from './sgp4-state.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 

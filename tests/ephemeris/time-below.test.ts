@@ -2,10 +2,10 @@ import { beforeAll, expect, it } from 'vitest';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { SLAB_S } from '../../src/ephemeris/node-spacing.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
 import { timeBelow } from '../../src/ephemeris/time-below.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
+import { sgp4StateAt } from './sgp4-state.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const SLAB_MS = SLAB_S * 1000;

@@ -4,19 +4,28 @@ import { orbitOf } from '../../src/elements/orbit.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { SLAB_S } from '../../src/ephemeris/node-spacing.js';
 import { recordStateAt } from '../../src/ephemeris/record-states.js';
+import { SEGMENT_SIZE } from '../../src/ephemeris/septic.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
 import type { Sgp4Records } from '../../src/ephemeris/sgp4-records.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
-import { createCursorRoom, createTrackCursor, stateOnTrack } from '../../src/ephemeris/track-cursor.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
+import { type CursorRoom, createTrackCursor, stateOnTrack } from '../../src/ephemeris/track-cursor.js';
 import { createTrackMaker, type TrackedObject } from '../../src/ephemeris/tracks.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { type CatalogMix, syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
 import { move } from './motion-under-gravity.js';
+import { sgp4StateAt } from './sgp4-state.js';
 
 const START_MS = Date.UTC(2026, 11, 1);
 const DAY_MS = 86_400_000;
 const NOTHING: CatalogMix = { low: 0, eccentric: 0, medium: 0, geosynchronous: 0, decaying: 0, train: 0 };
+
+function createCursorRoom(objectCount: number): CursorRoom {
+  return {
+    coefficients: new Float64Array(SEGMENT_SIZE * objectCount),
+    segmentStartS: new Float64Array(objectCount),
+    segmentEndS: new Float64Array(objectCount),
+  };
+}
 
 type Known = TrackedObject & { readonly record: SatRec; readonly epochMs: number };
 

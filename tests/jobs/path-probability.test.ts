@@ -2,15 +2,15 @@ import { beforeAll, describe, expect, it } from 'vitest';
 import type { ElementSet } from '../../src/elements/element-set.js';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
+import { sgp4RecordsOf } from '../../src/ephemeris/sgp4-records.js';
 import { type PathSide, pathProbability } from '../../src/jobs/path-probability.js';
-import { sgp4RecordsOf } from '../../src/jobs/screened-object.js';
 import { assessInFull } from '../../src/probability/assess-encounter.js';
 import { monteCarlo } from '../../src/probability/monte-carlo.js';
 import { testStraightLine } from '../../src/probability/straight-line.js';
 import { covarianceRtnM2 } from '../../src/uncertainty/sigma-table.js';
 import type { Vector3 } from '../../src/vector.js';
 import { bruteForceEncounters } from '../encounters/brute-force.js';
+import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 import { syntheticCatalog } from '../synthetic/catalog.js';
 import { seededRandom } from '../synthetic/random.js';
 

@@ -1,11 +1,11 @@
 import { describe, expect, it } from 'vitest';
 import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
 import { assessEncounter } from '../../src/index.js';
 import { curvedPathProbability } from '../../src/probability/curved-path.js';
 import type { PathEncounter } from '../../src/probability/encounter-path.js';
 import { firstEntryProbability } from '../../src/probability/first-entry.js';
 import { monteCarlo } from '../../src/probability/monte-carlo.js';
+import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 import { diagonal, encounterOf, TCA_MS } from './slow-encounters.js';
 
 function fosterOf(encounter: PathEncounter): number {

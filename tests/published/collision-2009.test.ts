@@ -7,8 +7,8 @@ import { sgp4RecordOf } from '../../src/elements/sgp4-record.js';
 import { slabCount } from '../../src/encounters/search-problem.js';
 import { createSlabSearcher, searchSlab } from '../../src/encounters/search-slab.js';
 import { loadSgp4 } from '../../src/ephemeris/sgp4-module.js';
-import { sgp4StateAt } from '../../src/ephemeris/sgp4-state.js';
 import { searchObjectsOf } from '../encounters/search-objects.js';
+import { sgp4StateAt } from '../ephemeris/sgp4-state.js';
 
 /*
  * The accidental collision of 10 February 2009, from the last public element sets before it. Figures: worked

@@ -1,10 +1,6 @@
+import { sgp4RecordsOf } from '../../ephemeris/sgp4-records.js';
 import type { SigmaCurve } from '../../uncertainty/sigma-table.js';
-import {
-  type ObjectKnowledge,
-  type ScreenedObject,
-  screenedObjects,
-  sgp4RecordsOf,
-} from '../screened-object.js';
+import { type ObjectKnowledge, type ScreenedObject, screenedObjects } from '../screened-object.js';
 import type { BatchPhase } from './phases.js';
 import { slippedSet } from './slip.js';
 

@@ -7,7 +7,7 @@ import {
   flightsTogether,
 } from '../../encounters/companions.js';
 import { EARTH_MU_KM3_PER_S2 } from '../../ephemeris/gravity.js';
-import { isDeepSpace, placeOf, type Sgp4Records } from '../../ephemeris/sgp4-records.js';
+import { isDeepSpace, recordNumber, type Sgp4Records } from '../../ephemeris/sgp4-records.js';
 import { dot, type Vector3 } from '../../vector.js';
 import type { ScreenedObject } from '../screened-object.js';
 import { groupBy } from './group-by.js';
@@ -141,11 +141,11 @@ function orbitTest(
  * Normal of the mean orbit plane at a time, its node moved by SGP4's own rate; `undefined` for deep-space
  * orbits, whose nodes Moon and Sun turn as well.
  */
-function planeNormal({ records, place, set }: ScreenedObject, timeMs: number): Vector3 | undefined {
-  if (isDeepSpace(records, place)) return undefined;
-  const figure = (name: string) => records.values[records.size * place + placeOf(name)];
-  const node = figure('nodeo') + (figure('nodedot') * (timeMs - set.epochMs)) / MS_PER_MINUTE;
-  const inclination = figure('inclo');
+function planeNormal(object: ScreenedObject, timeMs: number): Vector3 | undefined {
+  if (isDeepSpace(object.records, object.place)) return undefined;
+  const turned = (recordNumber(object, 'nodedot') * (timeMs - object.set.epochMs)) / MS_PER_MINUTE;
+  const node = recordNumber(object, 'nodeo') + turned;
+  const inclination = recordNumber(object, 'inclo');
   const sine = Math.sin(inclination);
   return [sine * Math.sin(node), -sine * Math.cos(node), Math.cos(inclination)];
 }

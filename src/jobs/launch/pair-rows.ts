@@ -7,8 +7,8 @@ import { pairTrend } from './pair-trend.js';
 
 /**
  * The pairs of one deployment that are within the limit at some time: objects of the batch with each other,
- * and with those of fleet and catalog that fly along. `loadSgp4` must have been awaited. They are the same for every liftoff, since a slip turns
- * and delays all of the batch alike.
+ * and with those of fleet and catalog that fly along. They are the same for every liftoff, since a slip turns
+ * and delays all of the batch alike. `loadSgp4` must have been awaited.
  *
  * @param batch phases of the nominal launch
  * @param along objects of fleet and catalog that fly along

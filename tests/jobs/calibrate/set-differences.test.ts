@@ -1,7 +1,6 @@
 import { describe, expect, test } from 'vitest';
 import type { ElementSet } from '../../../src/elements/element-set.js';
 import { sgp4RecordOf } from '../../../src/elements/sgp4-record.js';
-import { sgp4StateAt } from '../../../src/ephemeris/sgp4-state.js';
 import { JUMP_LAGS, JUMP_SIZE, setDifferences } from '../../../src/jobs/calibrate/set-differences.js';
 import {
   RECORD_BYTES,
@@ -10,6 +9,7 @@ import {
   writeRecord,
 } from '../../../src/jobs/calibrate/set-records.js';
 import { AGE_KNOTS_DAYS } from '../../../src/uncertainty/calibrate-age-knots.js';
+import { sgp4StateAt } from '../../ephemeris/sgp4-state.js';
 import { syntheticHistory } from './synthetic-history.js';
 
 const MS_PER_DAY = 86_400_000;

@@ -4,6 +4,7 @@ import type { ElementSet } from '../../../src/elements/element-set.js';
 import { sgp4RecordOf } from '../../../src/elements/sgp4-record.js';
 import { pairKey } from '../../../src/encounters/search-problem.js';
 import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
+import { sgp4RecordsOf } from '../../../src/ephemeris/sgp4-records.js';
 import { findFlyingAlong, probablySame } from '../../../src/jobs/launch/flying-along.js';
 import { liftoffSearch } from '../../../src/jobs/launch/liftoff-search.js';
 import { pairRows } from '../../../src/jobs/launch/pair-rows.js';
@@ -11,7 +12,6 @@ import {
   type ObjectKnowledge,
   type ScreenedObject,
   screenedObjects,
-  sgp4RecordsOf,
 } from '../../../src/jobs/screened-object.js';
 import { defaultSigmaTable } from '../../../src/uncertainty/default-sigma-table.js';
 import { syntheticCatalog } from '../../synthetic/catalog.js';

@@ -4,6 +4,7 @@ import type { ElementSet } from '../../../src/elements/element-set.js';
 import { sgp4RecordOf } from '../../../src/elements/sgp4-record.js';
 import { createPositionSamples } from '../../../src/encounters/position-samples.js';
 import { loadSgp4 } from '../../../src/ephemeris/sgp4-module.js';
+import { sgp4RecordsOf } from '../../../src/ephemeris/sgp4-records.js';
 import {
   type FollowedObject,
   type FollowedPair,
@@ -11,7 +12,6 @@ import {
   REFINE_GRID_MS,
 } from '../../../src/jobs/launch/follow-pairs.js';
 import { pairTrend } from '../../../src/jobs/launch/pair-trend.js';
-import { sgp4RecordsOf } from '../../../src/jobs/screened-object.js';
 import { stateAt } from '../../synthetic/mean-elements.js';
 import { batchSet, RELEASE_MS } from './batch-sets.js';
 

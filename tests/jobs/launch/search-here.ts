@@ -14,6 +14,6 @@ export async function searchHere(plan: SearchPlan): Promise<EncounterRecords> {
   const searcher = createSlabSearcher(objects, rules);
   const found = Array.from({ length: slabCount(rules) }, (_, slab) => searchSlab(searcher, slab).approaches);
   const records = createEncounterRecords();
-  assessApproaches(distinctApproaches(found.flat(), objects.count), objects, plan, records);
+  assessApproaches(distinctApproaches(found.flat(), objects.count), plan, records);
   return records;
 }
