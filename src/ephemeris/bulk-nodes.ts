@@ -1,4 +1,4 @@
-import { sgp4Module, writeRun } from './sgp4-module.js';
+import { createRoom, freeRoom, sgp4Module, writeRun } from './sgp4-module.js';
 import { copyRecord, type Sgp4Records } from './sgp4-records.js';
 
 /** SGP4 states of many objects at common times. */
@@ -31,46 +31,29 @@ export function createBulkNodes(
   members: Int32Array | readonly number[],
   mostTimes: number,
 ): BulkNodes {
-  const { module, runBytes } = sgp4Module();
-  const { size, originMs } = records;
+  const { module } = sgp4Module();
   const count = members.length;
-  const most = count * mostTimes;
-  const run = module._calloc_one(runBytes);
-  const held = module._malloc(8 * Math.max(1, size * count));
-  const days = module._malloc(8 * mostTimes);
-  const output = module._malloc(Math.max(8, 49 * most));
+  const room = createRoom(count, mostTimes);
   members.forEach((place, k) => {
-    copyRecord(records, place, module.HEAPF64.subarray(held / 8), k);
+    copyRecord(records, place, module.HEAPF64.subarray(room.records / 8), k);
   });
   return {
     objectCount: count,
-    dispose: () => {
-      for (const place of [run, held, days, output]) module._free(place);
-    },
+    dispose: () => freeRoom(room),
     statesAt: (timesMs) => {
       if (timesMs.length > mostTimes) throw new RangeError(`${timesMs.length} times, expected ${mostTimes}`);
-      const heap = module.HEAPF64;
+      const days = module.HEAPF64.subarray(room.days / 8);
       timesMs.forEach((timeMs, k) => {
-        heap[days / 8 + k] = (timeMs - originMs) / MS_PER_DAY;
+        days[k] = (timeMs - records.originMs) / MS_PER_DAY;
       });
-      const states = count * timesMs.length;
-      const velocities = output + 24 * states;
-      const errors = velocities + 24 * states;
-      writeRun(run, {
-        records: held,
-        recordCount: count,
-        days,
-        dayCount: timesMs.length,
-        positions: output,
-        velocities,
-        errors,
-      });
-      module._compute(run);
+      writeRun(room, timesMs.length);
+      module._compute(room.run);
       const { buffer } = module.HEAP8;
+      const states = count * timesMs.length;
       return {
-        position: new Float64Array(buffer, output, 3 * states),
-        velocity: new Float64Array(buffer, velocities, 3 * states),
-        error: new Int8Array(buffer, errors, states),
+        position: new Float64Array(buffer, room.positions, 3 * states),
+        velocity: new Float64Array(buffer, room.velocities, 3 * states),
+        error: new Int8Array(buffer, room.errors, states),
       };
     },
   };

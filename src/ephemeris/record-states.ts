@@ -1,20 +1,15 @@
-import { type NativeModule, sgp4Module, writeRun } from './sgp4-module.js';
+import { createRoom, type NativeModule, type Room, sgp4Module } from './sgp4-module.js';
 import { copyRecord, placeOf, type Sgp4Records } from './sgp4-records.js';
 
 /** Records that lie in the module's memory at a time: pairs come in turns, and each is asked for several times. */
 const SLOTS = 16;
 const MS_PER_DAY = 86_400_000;
 
-/** Where single states are worked out: for each slot a record, and a run of one record at one time. */
+/** Where single states are worked out. */
 type Slots = {
   readonly module: NativeModule;
-  readonly records: number;
-  readonly runs: number;
-  readonly runBytes: number;
-  readonly day: number;
-  /** Position, then velocity. */
-  readonly state: number;
-  readonly error: number;
+  /** For one record at one time each. */
+  readonly rooms: readonly Room[];
   /** Places in a record: time of the integrator of resonances, and the mean elements of the latest run. */
   readonly integrated: number;
   readonly means: readonly number[];
@@ -40,9 +35,10 @@ export function recordStateAt(
   out: Float64Array,
   offset = 0,
 ): boolean {
-  slots ??= createSlots(records.size);
-  if (run(slots, records, place, timeMs) === NO_STATE) return false;
-  const state = slots.state / 8;
+  slots ??= createSlots();
+  const room = run(slots, records, place, timeMs);
+  if (room === undefined) return false;
+  const state = room.positions / 8;
   const computed = slots.module.HEAPF64;
   let sum = 0;
   for (let k = 0; k < 6; k++) {
@@ -73,9 +69,10 @@ export function recordMeansAt(
   timeMs: number,
   out: Float64Array,
 ): boolean {
-  slots ??= createSlots(records.size);
-  const at = run(slots, records, place, timeMs);
-  if (at === NO_STATE) return false;
+  slots ??= createSlots();
+  const room = run(slots, records, place, timeMs);
+  if (room === undefined) return false;
+  const at = room.records / 8;
   for (const [k, mean] of slots.means.entries()) out[k] = slots.module.HEAPF64[at + mean];
   return true;
 }
@@ -83,16 +80,8 @@ export function recordMeansAt(
 /** Times that positions are worked out for at once. */
 const MOST_TIMES = 16;
 
-/** Room for one record at several times. */
-type Series = {
-  readonly record: number;
-  readonly run: number;
-  readonly days: number;
-  readonly positions: number;
-  readonly errors: number;
-};
-
-let series: Series | undefined;
+/** For one record at several times. */
+let series: Room | undefined;
 
 /**
  * Positions of one record at equal steps, in two thirds of the time that single states take; of them, only
@@ -111,11 +100,11 @@ export function recordPositionsAt(
   offset: number,
 ): void {
   if (count > MOST_TIMES) throw new RangeError(`${count} times, expected up to ${MOST_TIMES}`);
-  const { module, runBytes } = sgp4Module();
-  series ??= createSeries(module, runBytes, records.size);
-  const { record, run, days, positions, errors } = series;
+  const { module } = sgp4Module();
+  series ??= createRoom(1, MOST_TIMES);
+  const { run, days, positions, errors } = series;
   const heap = module.HEAPF64;
-  copyRecord(records, place, heap.subarray(record / 8), 0);
+  copyRecord(records, place, heap.subarray(series.records / 8), 0);
   for (let k = 0; k < MOST_TIMES; k++) {
     heap[days / 8 + k] = (startMs + Math.min(k, count - 1) * stepMs - records.originMs) / MS_PER_DAY;
   }
@@ -129,33 +118,13 @@ export function recordPositionsAt(
   }
 }
 
-function createSeries(module: NativeModule, runBytes: number, recordSize: number): Series {
-  const record = module._malloc(8 * recordSize);
-  const run = module._calloc_one(runBytes);
-  const days = module._malloc(8 * MOST_TIMES);
-  const positions = module._malloc(2 * 24 * MOST_TIMES);
-  const errors = module._malloc(MOST_TIMES);
-  const velocities = positions + 24 * MOST_TIMES;
-  writeRun(run, {
-    records: record,
-    recordCount: 1,
-    days,
-    dayCount: MOST_TIMES,
-    positions,
-    velocities,
-    errors,
-  });
-  return { record, run, days, positions, errors };
-}
-
-const NO_STATE = -1;
-
-/** @returns where the record lies, in doubles, which holds its mean elements */
-function run(slots: Slots, records: Sgp4Records, place: number, timeMs: number): number {
+/** @returns the room with the state and, in its record, the mean elements; `undefined` where there are none */
+function run(slots: Slots, records: Sgp4Records, place: number, timeMs: number): Room | undefined {
   const slot = place % SLOTS;
+  const room = slots.rooms[slot];
   const heap = slots.module.HEAPF64;
   const { size } = records;
-  const at = slots.records / 8 + slot * size;
+  const at = room.records / 8;
   if (slots.heldPlace[slot] !== place || slots.heldRecords[slot] !== records) {
     const { values } = records;
     const from = size * place;
@@ -165,37 +134,15 @@ function run(slots: Slots, records: Sgp4Records, place: number, timeMs: number):
     slots.heldRecords[slot] = records;
   }
   heap[at + slots.integrated] = 0;
-  heap[slots.day / 8] = (timeMs - records.originMs) / MS_PER_DAY;
-  slots.module._compute(slots.runs + slot * slots.runBytes);
-  return slots.module.HEAP8[slots.error] === 0 ? at : NO_STATE;
+  heap[room.days / 8] = (timeMs - records.originMs) / MS_PER_DAY;
+  slots.module._compute(room.run);
+  return slots.module.HEAP8[room.errors] === 0 ? room : undefined;
 }
 
-function createSlots(recordSize: number): Slots {
-  const { module, runBytes } = sgp4Module();
-  const records = module._malloc(8 * recordSize * SLOTS);
-  const runs = module._calloc_one(runBytes * SLOTS);
-  const day = module._malloc(8);
-  const state = module._malloc(48);
-  const error = module._malloc(8);
-  for (let slot = 0; slot < SLOTS; slot++) {
-    writeRun(runs + slot * runBytes, {
-      records: records + 8 * recordSize * slot,
-      recordCount: 1,
-      days: day,
-      dayCount: 1,
-      positions: state,
-      velocities: state + 24,
-      errors: error,
-    });
-  }
+function createSlots(): Slots {
   return {
-    module,
-    records,
-    runs,
-    runBytes,
-    day,
-    state,
-    error,
+    module: sgp4Module().module,
+    rooms: Array.from({ length: SLOTS }, () => createRoom(1, 1)),
     integrated: placeOf('atime'),
     means: MEANS.map(placeOf),
     heldPlace: new Int32Array(SLOTS).fill(-1),

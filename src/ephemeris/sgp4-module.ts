@@ -43,35 +43,61 @@ function fieldsOf(module: NativeModule, pointer: number): Field[] {
   return layout.map(([name, type, offset]) => ({ name, type, offset }));
 }
 
-/** What one run of the module works on: places in its memory. */
-export type Run = {
+/** Memory of the module in which states of some records at some times are worked out, all places in bytes. */
+export type Room = {
+  /** The structure that tells `module._compute` of the others. */
+  readonly run: number;
   readonly records: number;
   readonly recordCount: number;
   /** Days since the origin that the records count from, a double each. */
   readonly days: number;
   readonly dayCount: number;
-  /** Three doubles for each record and time, and one byte with the error. */
+  /** Three doubles for each record and time, the velocities right after the positions; one byte with the error. */
   readonly positions: number;
   readonly velocities: number;
   readonly errors: number;
 };
 
-/** Writes what a run works on into a structure of the module, for `module._compute`. */
-export function writeRun(place: number, run: Run): void {
+/** @param dayCount most times that states will be asked for at once */
+export function createRoom(recordCount: number, dayCount: number): Room {
+  const { module, recordBytes, runBytes } = sgp4Module();
+  const states = recordCount * dayCount;
+  const positions = module._malloc(Math.max(1, 49 * states));
+  const room: Room = {
+    run: module._calloc_one(runBytes),
+    records: module._malloc(Math.max(1, recordBytes * recordCount)),
+    recordCount,
+    days: module._malloc(8 * dayCount),
+    dayCount,
+    positions,
+    velocities: positions + 24 * states,
+    errors: positions + 48 * states,
+  };
+  writeRun(room, dayCount);
+  return room;
+}
+
+export function freeRoom({ run, records, days, positions }: Room): void {
+  const { module } = sgp4Module();
+  for (const place of [run, records, days, positions]) module._free(place);
+}
+
+/** Readies the next run of a room for as many of its times. */
+export function writeRun(room: Room, dayCount: number): void {
   const { module, runFields } = sgp4Module();
   const view = new DataView(module.HEAP8.buffer);
   const offsetOf = (name: string): number => {
     const field = runFields.find((each) => each.name === name);
     if (field === undefined) throw new Error(`satellite.js: no field ${name} in a run of its module`);
-    return place + field.offset;
+    return room.run + field.offset;
   };
   const integer = (name: string, value: number) => view.setInt32(offsetOf(name), value, true);
-  integer('satellitesPointer', run.records);
-  integer('satellitesCount', run.recordCount);
-  integer('jdaysPointer', run.days);
-  integer('jdaysCount', run.dayCount);
-  integer('eciPositions', run.positions);
-  integer('eciVelocities', run.velocities);
-  integer('sgp4Errors', run.errors);
+  integer('satellitesPointer', room.records);
+  integer('satellitesCount', room.recordCount);
+  integer('jdaysPointer', room.days);
+  integer('jdaysCount', dayCount);
+  integer('eciPositions', room.positions);
+  integer('eciVelocities', room.velocities);
+  integer('sgp4Errors', room.errors);
   view.setInt8(offsetOf('communityDecayCheckEnabled'), 1);
 }
